@@ -1,0 +1,42 @@
+//! What the section's edge does: the sides and the slots in them.
+
+/// Condition on a side of the section, where no slot is.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub enum SideCondition {
+    /// No-slip wall without heat flow.
+    Adiabatic,
+    /// Mirror plane: no flow through it, no shear, no heat flow. The axis of an axisymmetric
+    /// section is one too.
+    Symmetry,
+    /// Outside air: inflow from still ambient air (total pressure), outflow to ambient pressure.
+    Open,
+    /// No-slip wall at a fixed temperature [K].
+    Temperature(f64),
+    /// No-slip wall through which heat enters [W/m²].
+    Flux(f64),
+    /// No-slip wall with a film coefficient to outside.
+    Film {
+        /// Film coefficient [W/(m²·K)].
+        coefficient: f64,
+        /// Outside temperature [K].
+        temperature: f64,
+    },
+    /// Adiabatic no-slip wall sliding along itself (model problems) [m/s], positive along x or y.
+    Sliding(f64),
+}
+
+impl SideCondition {
+    /// Whether air sticks to the side.
+    pub fn is_wall(&self) -> bool {
+        !matches!(self, SideCondition::Symmetry | SideCondition::Open)
+    }
+}
+
+/// What happens in a slot.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Slot {
+    /// Loss coefficient K on the speed through the opening [-].
+    pub loss: f64,
+    /// Pressure rise that drives air into the section through the slot [Pa] (zero: none).
+    pub drive: f64,
+}

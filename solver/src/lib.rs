@@ -1,0 +1,23 @@
+//! Steady laminar buoyant air flow coupled with conduction in solid blocks.
+//!
+//! A [`Problem`] (mesh, materials, boundaries) becomes a [`Solution`]: velocities, pressure and
+//! temperature rise, with the numbers read off them. No files, no screen, no clock here.
+
+mod air;
+mod boundary;
+mod conduction;
+mod error;
+mod problem;
+mod settings;
+mod simple;
+mod solution;
+mod state;
+
+pub use air::{Air, AirModel};
+pub use boundary::{SideCondition, Slot};
+pub use error::{ProblemError, SolveError};
+pub use problem::{Block, Description, Problem, Solid, Sources};
+pub use settings::{Convection, Settings};
+pub use simple::solve;
+pub use solution::{Control, Progress, Residuals, Solution, StopReason, Verdict};
+pub use state::State;

@@ -1,0 +1,160 @@
+//! The problem: a mesh with materials, heat and boundaries. Checked once, then fixed.
+
+use ventrise_mesh::{AIR, Geometry, Mesh, Side};
+
+use crate::{AirModel, ProblemError, SideCondition, Slot};
+
+/// A solid material.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Solid {
+    /// Conductivity along x and y [W/(m·K)], > 0.
+    pub conductivity: [f64; 2],
+    /// Density [kg/m³].
+    pub density: f64,
+    /// Specific heat [J/(kg·K)].
+    pub specific_heat: f64,
+}
+
+/// What a block of the mesh is made of and the heat released in it.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Block {
+    /// Index into [`Description::solids`].
+    pub solid: usize,
+    /// Heat in the whole block [W], spread evenly over its volume.
+    pub heat: f64,
+}
+
+/// Extra sources of manufactured solutions: integrals over each control volume.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Sources {
+    /// Force along x on each x-face's volume [N], (nx + 1)·ny.
+    pub x_force: Vec<f64>,
+    /// Force along y on each y-face's volume [N], nx·(ny + 1).
+    pub y_force: Vec<f64>,
+    /// Heat in each cell [W], nx·ny.
+    pub heat: Vec<f64>,
+}
+
+/// All that a problem consists of.
+#[derive(Debug, Clone)]
+pub struct Description {
+    /// The mesh.
+    pub mesh: Mesh,
+    /// The air.
+    pub air: AirModel,
+    /// Ambient temperature [K]; temperatures are solved as rises above it.
+    pub ambient: f64,
+    /// Acceleration of gravity along x and y [m/s²], usually [0, −9.80665].
+    pub gravity: [f64; 2],
+    /// Materials.
+    pub solids: Vec<Solid>,
+    /// One per block of the mesh, in its order.
+    pub blocks: Vec<Block>,
+    /// One per slot of the mesh, in its order.
+    pub slots: Vec<Slot>,
+    /// Conditions by [`Side::index`].
+    pub sides: [SideCondition; 4],
+    /// Groups of blocks whose temperatures are watched.
+    pub parts: Vec<Vec<usize>>,
+    /// Extra sources, for manufactured solutions.
+    pub sources: Option<Sources>,
+}
+
+/// A checked description.
+#[derive(Debug, Clone)]
+pub struct Problem {
+    description: Description,
+}
+
+impl Problem {
+    /// Checks a description.
+    ///
+    /// # Errors
+    /// Numbers out of range, indices that point nowhere, heat without a way out.
+    pub fn new(mut description: Description) -> Result<Self, ProblemError> {
+        if description.mesh.geometry() == Geometry::Axisymmetric {
+            description.sides[Side::Left.index()] = SideCondition::Symmetry;
+        }
+        check(&description)?;
+        Ok(Problem { description })
+    }
+
+    /// The mesh.
+    pub fn mesh(&self) -> &Mesh {
+        &self.description.mesh
+    }
+
+    /// Everything else, as checked.
+    pub fn description(&self) -> &Description {
+        &self.description
+    }
+}
+
+fn check(d: &Description) -> Result<(), ProblemError> {
+    let number = |what, value: f64, good: bool, bound| {
+        if good && value.is_finite() {
+            Ok(())
+        } else {
+            Err(ProblemError::Number { what, value, bound })
+        }
+    };
+    number("ambient temperature", d.ambient, d.ambient > 0.0, "above absolute zero")?;
+    if let AirModel::Given(air) = d.air {
+        number("air density", air.density, air.density > 0.0, "positive")?;
+        number("air viscosity", air.viscosity, air.viscosity > 0.0, "positive")?;
+        number("air conductivity", air.conductivity, air.conductivity > 0.0, "positive")?;
+        number("air specific heat", air.specific_heat, air.specific_heat > 0.0, "positive")?;
+        number("air expansion", air.expansion, air.expansion >= 0.0, "zero or more")?;
+    }
+    for solid in &d.solids {
+        for k in solid.conductivity {
+            number("conductivity", k, k > 0.0, "positive")?;
+        }
+        number("density", solid.density, solid.density > 0.0, "positive")?;
+        number("specific heat", solid.specific_heat, solid.specific_heat > 0.0, "positive")?;
+    }
+    for block in &d.blocks {
+        let count = d.solids.len();
+        if block.solid >= count {
+            return Err(ProblemError::Index { what: "material", index: block.solid, count });
+        }
+        number("heat", block.heat, true, "finite")?;
+    }
+    let regions = d.mesh.regions();
+    if let Some(b) = regions.iter().filter(|r| **r != AIR).map(|r| *r as usize).max() {
+        let count = d.blocks.len();
+        if b >= count {
+            return Err(ProblemError::Index { what: "block", index: b, count });
+        }
+    }
+    for side in Side::ALL {
+        if let Some(s) = d.mesh.slots(side).iter().flatten().max() {
+            let (index, count) = (*s as usize, d.slots.len());
+            if index >= count {
+                return Err(ProblemError::Index { what: "slot", index, count });
+            }
+        }
+    }
+    for slot in &d.slots {
+        number("loss", slot.loss, slot.loss >= 0.0, "zero or more")?;
+        number("drive", slot.drive, true, "finite")?;
+    }
+    let mut way_out = !d.slots.is_empty();
+    for side in &d.sides {
+        match *side {
+            SideCondition::Temperature(t) => number("temperature", t, t > 0.0, "positive")?,
+            SideCondition::Flux(q) => number("flux", q, true, "finite")?,
+            SideCondition::Film { coefficient, temperature } => {
+                number("film coefficient", coefficient, coefficient > 0.0, "positive")?;
+                number("temperature", temperature, temperature > 0.0, "positive")?;
+            }
+            SideCondition::Sliding(u) => number("speed", u, true, "finite")?,
+            _ => {}
+        }
+        way_out |= matches!(
+            side,
+            SideCondition::Open | SideCondition::Temperature(_) | SideCondition::Film { .. }
+        );
+    }
+    if way_out { Ok(()) } else { Err(ProblemError::NoWayOut) }
+}

@@ -1,0 +1,1 @@
+//! Ventrise: from a case file to part temperatures, vent flows and fields.

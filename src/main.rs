@@ -1,0 +1,2 @@
+//! The `ventrise` program.
+fn main() {}
