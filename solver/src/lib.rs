@@ -6,12 +6,21 @@
 mod air;
 mod boundary;
 mod conduction;
+mod equations;
 mod error;
+mod fas;
+mod level;
+mod linear;
+mod newton;
+mod par;
 mod problem;
+mod residual;
 mod settings;
 mod simple;
+mod simplec;
 mod solution;
 mod state;
+mod transfer;
 
 pub use air::{Air, AirModel};
 pub use boundary::{SideCondition, Slot};

@@ -84,6 +84,13 @@ impl Problem {
         &self.description.mesh
     }
 
+    /// The same problem on another mesh of the same layout; extra sources belong to one mesh only
+    /// and are dropped.
+    pub(crate) fn with_mesh(&self, mesh: Mesh) -> Problem {
+        let description = Description { mesh, sources: None, ..self.description.clone() };
+        Problem { description }
+    }
+
     /// Everything else, as checked.
     pub fn description(&self) -> &Description {
         &self.description

@@ -26,4 +26,11 @@ impl State {
             t: vec![0.0; nx * ny],
         }
     }
+
+    /// Sets every value to zero.
+    pub(crate) fn clear(&mut self) {
+        for field in [&mut self.u, &mut self.v, &mut self.p, &mut self.t] {
+            field.fill(0.0);
+        }
+    }
 }

@@ -1,0 +1,197 @@
+//! The full approximation scheme: SIMPLEC iterations smooth on every mesh, the coarser mesh brings
+//! what they leave, the coarsest is solved by Newton's method.
+//!
+//! On a coarser mesh the unknowns are full states, not corrections: its right-hand side is chosen
+//! so that the restricted fine state is its solution once the fine residual is gone,
+//! f_c = R·r − S_c(x̂), x̂ the restricted state, and the change x_c − x̂ is carried back.
+//!
+//! # Source
+//! brandt-1977 (full approximation scheme), van-doormaal-1984 (SIMPLEC).
+
+use crate::level::Level;
+use crate::linear::multigrid::Link;
+use crate::newton::Newton;
+use crate::residual::{self, Scales};
+use crate::simplec::{Smoothing, Work, smooth};
+use crate::transfer::Transfer;
+use crate::{Air, Convection, Problem, Residuals, SolveError, State};
+
+/// Coarsening stops at about this many cells, few enough for the direct solution.
+const COARSEST_CELLS: usize = 6000;
+/// Coarser meshes keep this many cells across every slot, gap and block.
+const LEAST_ACROSS: usize = 2;
+
+/// The chain of meshes with their equations, finest first.
+pub(crate) struct Stack {
+    levels: Vec<Level>,
+    transfers: Vec<Transfer>,
+    work: Vec<Work>,
+    newton: Newton,
+    pub smoothing: Smoothing,
+}
+
+impl Stack {
+    pub fn new(problem: &Problem, air: &Air, convection: Convection) -> Stack {
+        let mut levels = vec![Level::new(problem, air, convection)];
+        let mut transfers = Vec::new();
+        let mut links = Vec::new();
+        let mut mesh = problem.mesh().clone();
+        while mesh.cell_count() > COARSEST_CELLS {
+            let Some(coarsening) = mesh.coarsened(LEAST_ACROSS) else { break };
+            if coarsening.mesh.cell_count() * 5 > mesh.cell_count() * 4 {
+                break;
+            }
+            transfers.push(Transfer::new(&mesh, &coarsening));
+            links.push(Link::new(&mesh, &coarsening));
+            mesh = coarsening.mesh;
+            levels.push(Level::new(&problem.with_mesh(mesh.clone()), air, convection));
+        }
+        while let Some(coarsening) = mesh.coarsened(1) {
+            links.push(Link::new(&mesh, &coarsening));
+            mesh = coarsening.mesh;
+        }
+        let work = levels.iter().enumerate().map(|(l, level)| Work::new(level, &links[l..])).collect();
+        let newton = Newton::new(&levels[levels.len() - 1]);
+        Stack { levels, transfers, work, newton, smoothing: Smoothing::default() }
+    }
+
+    /// Number of meshes.
+    pub fn depth(&self) -> usize {
+        self.levels.len()
+    }
+
+    pub fn level(&self, l: usize) -> &Level {
+        &self.levels[l]
+    }
+
+    pub fn state(&self, l: usize) -> &State {
+        &self.work[l].state
+    }
+
+    pub fn set_state(&mut self, l: usize, state: &State) {
+        self.work[l].state.clone_from(state);
+    }
+
+    /// Makes level `l` the finest in use: its right-hand side is its own problem's.
+    pub fn pose(&mut self, l: usize) {
+        self.work[l].rhs.clone_from(&self.levels[l].source);
+    }
+
+    /// Solves the coarsest mesh's own problem by Newton's method.
+    pub fn solve_coarsest(&mut self, tolerance: f64, from_rest: bool) -> Result<f64, SolveError> {
+        let l = self.levels.len() - 1;
+        self.pose(l);
+        let (level, work) = (&self.levels[l], &mut self.work[l]);
+        let scales = residual::scales(level, &work.state);
+        let outcome = self.newton.solve(
+            level,
+            &mut work.state,
+            &work.rhs,
+            &scales,
+            (tolerance, 80),
+            from_rest,
+        )?;
+        Ok(outcome.end)
+    }
+
+    /// Starts level `l` from the state of the next coarser one.
+    pub fn start_from_coarser(&mut self, l: usize) {
+        let (fine, coarse) = self.work.split_at_mut(l + 1);
+        let fine = &mut fine[l];
+        fine.state.clear();
+        let state = &coarse[0].state;
+        self.transfers[l].prolong(
+            &self.levels[l],
+            &self.levels[l + 1],
+            state,
+            &mut fine.state,
+            1.0,
+        );
+    }
+
+    /// Restricts the finest state down to every coarser mesh.
+    pub fn restrict_all(&mut self) {
+        for l in 0..self.transfers.len() {
+            let (fine, coarse) = self.work.split_at_mut(l + 1);
+            self.transfers[l].restrict_state(
+                &self.levels[l],
+                &self.levels[l + 1],
+                &fine[l].state,
+                &mut coarse[0].state,
+            );
+        }
+    }
+
+    /// Relative residuals of level `l`, and their scales.
+    pub fn residuals(&mut self, l: usize) -> (Residuals, Scales) {
+        let (level, work) = (&self.levels[l], &mut self.work[l]);
+        residual::evaluate(level, &work.state, &work.rhs, &mut work.residual);
+        let scales = residual::scales(level, &work.state);
+        (residual::relative(level, &work.residual, &scales), scales)
+    }
+
+    /// One cycle from level `l` down to the coarsest and back.
+    pub fn cycle(&mut self, l: usize) -> Result<(), SolveError> {
+        let smoothing = self.smoothing;
+        if l + 1 == self.levels.len() {
+            let (level, work) = (&self.levels[l], &mut self.work[l]);
+            let scales = residual::scales(level, &work.state);
+            residual::evaluate(level, &work.state, &work.rhs, &mut work.residual);
+            let now = residual::relative(level, &work.residual, &scales).largest();
+            self.newton.solve(
+                level,
+                &mut work.state,
+                &work.rhs,
+                &scales,
+                ((0.01 * now).max(1e-13), 6),
+                false,
+            )?;
+            return Ok(());
+        }
+        for _ in 0..smoothing.iterations[0] {
+            smooth(&self.levels[l], &mut self.work[l], &smoothing);
+        }
+        {
+            let (fine, coarse) = self.work.split_at_mut(l + 1);
+            let (fine, coarse) = (&mut fine[l], &mut coarse[0]);
+            let (fine_level, coarse_level) = (&self.levels[l], &self.levels[l + 1]);
+            let transfer = &self.transfers[l];
+            residual::evaluate(fine_level, &fine.state, &fine.rhs, &mut fine.residual);
+            transfer.restrict_state(fine_level, coarse_level, &fine.state, &mut coarse.state);
+            transfer.restrict_residual(
+                fine_level,
+                coarse_level,
+                &fine.residual,
+                &mut coarse.rhs,
+            );
+            coarse.start.clone_from(&coarse.state);
+            // With R·r as right-hand side the coarse residual is R·r + S_c(x̂).
+            residual::evaluate(coarse_level, &coarse.state, &coarse.rhs, &mut coarse.residual);
+            each_field(&mut coarse.rhs, &coarse.residual, |f, r| *f = 2.0 * *f - r);
+        }
+        self.cycle(l + 1)?;
+        let (fine, coarse) = self.work.split_at_mut(l + 1);
+        let (fine, coarse) = (&mut fine[l], &mut coarse[0]);
+        let Work { state, start, .. } = coarse;
+        each_field(start, state, |start, state| *start = state - *start);
+        self.transfers[l].prolong(
+            &self.levels[l],
+            &self.levels[l + 1],
+            start,
+            &mut fine.state,
+            1.0,
+        );
+        for _ in 0..smoothing.iterations[1] {
+            smooth(&self.levels[l], &mut self.work[l], &smoothing);
+        }
+        Ok(())
+    }
+}
+
+/// Applies `f(a, b)` place by place to all four fields.
+fn each_field(a: &mut State, b: &State, f: impl Fn(&mut f64, f64)) {
+    let pairs = [(&mut a.u, &b.u), (&mut a.v, &b.v), (&mut a.p, &b.p), (&mut a.t, &b.t)];
+    for (a, b) in pairs {
+        a.iter_mut().zip(b).for_each(|(a, b)| f(a, *b));
+    }
+}

@@ -1,0 +1,400 @@
+//! Newton's method with a sparse direct solution: the solver of the coarsest mesh.
+//!
+//! Far from the solution the steady equations may have no good linear model (an opening's loss has
+//! no slope at rest), so a pseudo-time term V·ρ/Δt is added to the air's equations and fades as the
+//! residual falls. Near it, a factorisation serves several steps.
+
+use faer::Mat;
+use faer::linalg::solvers::Solve;
+use faer::sparse::linalg::solvers::{Lu, SymbolicLu};
+use faer::sparse::{SparseColMatRef, SymbolicSparseColMatRef};
+use sprs::TriMat;
+
+use crate::level::Level;
+use crate::residual::{self, Scales};
+use crate::{SolveError, State};
+
+/// Which unknown of the system a place in a field is; `None` where the value is fixed.
+#[derive(Debug)]
+struct Numbering {
+    u: Vec<Option<u32>>,
+    v: Vec<Option<u32>>,
+    p: Vec<Option<u32>>,
+    t: Vec<Option<u32>>,
+    count: usize,
+}
+
+/// Newton's method on one mesh, with its last factorisation.
+pub(crate) struct Newton {
+    numbers: Numbering,
+    symbolic: Option<SymbolicLu<usize>>,
+    factors: Option<Lu<usize, f64>>,
+    residual: State,
+    trial: State,
+    trial_residual: State,
+    /// Factorisations so far.
+    pub factorisations: usize,
+}
+
+/// How a coarse solution ended.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub(crate) struct Outcome {
+    /// Largest relative residual at the start and at the end.
+    pub start: f64,
+    pub end: f64,
+    /// Steps taken.
+    pub steps: usize,
+}
+
+/// Columns of one colour are this far apart, so that their rows do not meet.
+const COLOUR_STEP: usize = 3;
+
+impl Newton {
+    pub fn new(level: &Level) -> Newton {
+        Newton {
+            numbers: Numbering::new(level),
+            symbolic: None,
+            factors: None,
+            residual: rest(level),
+            trial: rest(level),
+            trial_residual: rest(level),
+            factorisations: 0,
+        }
+    }
+
+    /// Improves `state` until the largest relative residual is below `target` or `limit` steps are
+    /// done. `scales` are raised where the state outgrows them.
+    pub fn solve(
+        &mut self,
+        level: &Level,
+        state: &mut State,
+        rhs: &State,
+        scales: &Scales,
+        (target, limit): (f64, usize),
+        from_rest: bool,
+    ) -> Result<Outcome, SolveError> {
+        residual::evaluate(level, state, rhs, &mut self.residual);
+        let mut norm = size(level, &self.residual, state, scales);
+        let start = norm;
+        // Pseudo-time step in units of the buoyant transit time; none is infinite.
+        let mut pseudo = if from_rest { FIRST_STEP * transit_time(level) } else { f64::INFINITY };
+        let mut stale = self.factors.is_some() && !from_rest;
+        let mut steps = 0;
+        let mut failures = 0;
+        while norm > target && steps < limit {
+            if !stale {
+                self.factorise(level, state, rhs, pseudo)?;
+            }
+            steps += 1;
+            let step = self.step(level)?;
+            self.trial.clone_from(state);
+            self.numbers.add(&step, 1.0, &mut self.trial);
+            residual::evaluate(level, &self.trial, rhs, &mut self.trial_residual);
+            let trial_norm = size(level, &self.trial_residual, &self.trial, scales);
+            let allowed = if pseudo.is_finite() { 3.0 } else { 1.0 };
+            if trial_norm.is_finite() && trial_norm <= allowed * norm {
+                std::mem::swap(state, &mut self.trial);
+                std::mem::swap(&mut self.residual, &mut self.trial_residual);
+                let ratio = trial_norm / norm;
+                norm = trial_norm;
+                failures = 0;
+                if pseudo.is_finite() {
+                    pseudo *= (1.0 / ratio).clamp(1.5, 10.0);
+                    if pseudo > LAST_STEP * transit_time(level) {
+                        pseudo = f64::INFINITY;
+                    }
+                    stale = false;
+                } else {
+                    stale = ratio < STALE_RATIO;
+                }
+            } else if stale {
+                stale = false;
+            } else {
+                failures += 1;
+                if failures > 12 {
+                    break;
+                }
+                pseudo = if pseudo.is_finite() { 0.2 * pseudo } else { transit_time(level) };
+            }
+        }
+        Ok(Outcome { start, end: norm, steps })
+    }
+
+    /// Solves J·δ = r with the current factors.
+    fn step(&self, level: &Level) -> Result<Vec<f64>, SolveError> {
+        let mut right = vec![0.0; self.numbers.count];
+        self.numbers.gather(&self.residual, &mut right);
+        for region in &level.closed_regions {
+            if let Some(n) = self.numbers.p[region[0] as usize] {
+                right[n as usize] = 0.0;
+            }
+        }
+        let Some(factors) = &self.factors else {
+            return Err(SolveError::Factorisation { reason: "no factors".into() });
+        };
+        let right = Mat::from_fn(right.len(), 1, |i, _| right[i]);
+        let step = factors.solve(&right);
+        Ok((0..self.numbers.count).map(|i| step[(i, 0)]).collect())
+    }
+
+    /// Factorises the Jacobian at a state, found column by column from residual differences.
+    fn factorise(
+        &mut self,
+        level: &Level,
+        state: &State,
+        rhs: &State,
+        pseudo: f64,
+    ) -> Result<(), SolveError> {
+        let matrix = self.jacobian(level, state, rhs, pseudo).to_csc::<usize>();
+        let failed = |reason: String| SolveError::Factorisation { reason };
+        let n = self.numbers.count;
+        let (starts, rows, values) =
+            (matrix.proper_indptr().to_vec(), matrix.indices(), matrix.data());
+        let symbol = SymbolicSparseColMatRef::new_checked(n, n, &starts, None, rows);
+        let symbolic = match self.symbolic.take() {
+            Some(s) => s,
+            None => SymbolicLu::try_new(symbol).map_err(|e| failed(format!("{e:?}")))?,
+        };
+        let lu =
+            Lu::try_new_with_symbolic(symbolic.clone(), SparseColMatRef::new(symbol, values))
+                .map_err(|e| failed(format!("{e:?}")))?;
+        self.symbolic = Some(symbolic);
+        self.factors = Some(lu);
+        self.factorisations += 1;
+        Ok(())
+    }
+
+    /// −∂r/∂x with the pseudo-time terms. The pattern never depends on the values.
+    fn jacobian(&self, level: &Level, state: &State, rhs: &State, pseudo: f64) -> TriMat<f64> {
+        let (nx, ny) = (level.nx, level.ny);
+        let numbers = &self.numbers;
+        let n = numbers.count;
+        let mut matrix = TriMat::with_capacity((n, n), 30 * n);
+        let (mut moved, mut changed) = (state.clone(), rest(level));
+        let largest = |f: &[f64]| f.iter().fold(0.0_f64, |a, b| a.max(b.abs()));
+        let speed = largest(&state.u).max(largest(&state.v)).max(1e-3 * reference_speed(level));
+        let warmth = largest(&state.t).max(1e-6);
+        let pressure = (level.air.density * speed * speed).max(1e-12);
+        let pinned: Vec<u32> =
+            level.closed_regions.iter().filter_map(|r| numbers.p[r[0] as usize]).collect();
+        for field in 0..4 {
+            let step = 1e-6 * [speed, speed, pressure, warmth][field];
+            let width = if field == 0 { nx + 1 } else { nx };
+            let height = if field == 1 { ny + 1 } else { ny };
+            for colour in 0..COLOUR_STEP * COLOUR_STEP {
+                let (ci, cj) = (colour % COLOUR_STEP, colour / COLOUR_STEP);
+                let places = || {
+                    (cj..height).step_by(COLOUR_STEP).flat_map(move |j| {
+                        (ci..width).step_by(COLOUR_STEP).map(move |i| (i, j))
+                    })
+                };
+                for (i, j) in places() {
+                    field_of(&mut moved, field)[i + j * width] += step;
+                }
+                residual::evaluate(level, &moved, rhs, &mut changed);
+                for (i, j) in places() {
+                    let value = field_ref(state, field)[i + j * width];
+                    field_of(&mut moved, field)[i + j * width] = value;
+                    let Some(column) = numbers.of(field)[i + j * width] else { continue };
+                    // Every row within one place in each direction may depend on it.
+                    for row_field in 0..4 {
+                        let row_width = if row_field == 0 { nx + 1 } else { nx };
+                        let row_height = if row_field == 1 { ny + 1 } else { ny };
+                        for jr in j.saturating_sub(1)..(j + 2).min(row_height) {
+                            for ir in i.saturating_sub(1)..(i + 2).min(row_width) {
+                                if !may_depend(row_field, field, ir, jr, i, j) {
+                                    continue;
+                                }
+                                let place = ir + jr * row_width;
+                                let Some(row) = numbers.of(row_field)[place] else { continue };
+                                if row_field == 2 && pinned.contains(&row) {
+                                    continue;
+                                }
+                                let slope = (field_ref(&self.residual, row_field)[place]
+                                    - field_ref(&changed, row_field)[place])
+                                    / step;
+                                matrix.add_triplet(row as usize, column as usize, slope);
+                            }
+                        }
+                    }
+                }
+            }
+        }
+        // One pressure of every closed region keeps its value.
+        for row in pinned {
+            matrix.add_triplet(row as usize, row as usize, 1.0);
+        }
+        let rate = if pseudo.is_finite() { level.air.density / pseudo } else { 0.0 };
+        for j in 0..ny {
+            for i in 0..=nx {
+                if let Some(n) = numbers.u[i + j * (nx + 1)] {
+                    let term = rate * level.u_area[i] * level.dy[j];
+                    matrix.add_triplet(n as usize, n as usize, term);
+                }
+            }
+        }
+        for j in 0..=ny {
+            for i in 0..nx {
+                if let Some(n) = numbers.v[i + j * nx] {
+                    let term = rate * level.y_area[i] * level.v_height[j];
+                    matrix.add_triplet(n as usize, n as usize, term);
+                }
+            }
+        }
+        for j in 0..ny {
+            for i in 0..nx {
+                if let (Some(n), true) = (numbers.t[i + j * nx], level.fluid[i + j * nx]) {
+                    let volume = level.y_area[i] * level.dy[j];
+                    let term = rate * level.air.specific_heat * volume;
+                    matrix.add_triplet(n as usize, n as usize, term);
+                }
+            }
+        }
+        matrix
+    }
+}
+
+/// First and last pseudo-time step over the transit time.
+const FIRST_STEP: f64 = 0.3;
+const LAST_STEP: f64 = 300.0;
+/// A factorisation is kept while a step cuts the residual to this.
+const STALE_RATIO: f64 = 0.2;
+
+/// Whether the residual of `row` at (ir, jr) can depend on `field` at (i, j): the fixed pattern.
+fn may_depend(row: usize, field: usize, ir: usize, jr: usize, i: usize, j: usize) -> bool {
+    let (di, dj) = (i as isize - ir as isize, j as isize - jr as isize);
+    match (row, field) {
+        // Own velocity and temperature: the five-point star.
+        (0, 0) | (1, 1) | (3, 3) => di == 0 || dj == 0,
+        // x-momentum at a face: the four y-faces around it, the two cells beside it.
+        (0, 1) => (di == -1 || di == 0) && (dj == 0 || dj == 1),
+        (0, 2) | (0, 3) => (di == -1 || di == 0) && dj == 0,
+        (1, 0) => (di == 0 || di == 1) && (dj == -1 || dj == 0),
+        (1, 2) | (1, 3) => di == 0 && (dj == -1 || dj == 0),
+        // Mass and energy of a cell: its own faces.
+        (2, 0) | (3, 0) => dj == 0 && (di == 0 || di == 1),
+        (2, 1) | (3, 1) => di == 0 && (dj == 0 || dj == 1),
+        // The pinned pressure needs its diagonal.
+        (2, 2) => di == 0 && dj == 0,
+        _ => false,
+    }
+}
+
+/// Free-fall speed √(βg·ΔT·L) for ΔT = 1 K, with a viscous floor.
+fn reference_speed(level: &Level) -> f64 {
+    let height: f64 = level.dy.iter().sum();
+    let g = level.gravity[0].hypot(level.gravity[1]);
+    let viscous = level.air.viscosity / level.air.density / height;
+    (level.air.expansion * g * height).sqrt().max(viscous)
+}
+
+/// Time a free-falling parcel takes through the section [s].
+fn transit_time(level: &Level) -> f64 {
+    level.dy.iter().sum::<f64>() / reference_speed(level)
+}
+
+/// Largest relative residual, with the scales of the state where those are larger.
+fn size(level: &Level, residual: &State, state: &State, scales: &Scales) -> f64 {
+    let own = residual::scales(level, state);
+    let scales = Scales {
+        mass: scales.mass.max(own.mass),
+        force: scales.force.max(own.force),
+        heat: scales.heat.max(own.heat),
+    };
+    residual::relative(level, residual, &scales).largest()
+}
+
+fn rest(level: &Level) -> State {
+    State {
+        u: vec![0.0; level.u_open.len()],
+        v: vec![0.0; level.v_open.len()],
+        p: vec![0.0; level.fluid.len()],
+        t: vec![0.0; level.fluid.len()],
+    }
+}
+
+fn field_of(state: &mut State, field: usize) -> &mut [f64] {
+    match field {
+        0 => &mut state.u,
+        1 => &mut state.v,
+        2 => &mut state.p,
+        _ => &mut state.t,
+    }
+}
+
+fn field_ref(state: &State, field: usize) -> &[f64] {
+    match field {
+        0 => &state.u,
+        1 => &state.v,
+        2 => &state.p,
+        _ => &state.t,
+    }
+}
+
+impl Numbering {
+    fn new(level: &Level) -> Numbering {
+        let (nx, ny) = (level.nx, level.ny);
+        let mut n = Numbering {
+            u: vec![None; level.u_open.len()],
+            v: vec![None; level.v_open.len()],
+            p: vec![None; nx * ny],
+            t: vec![None; nx * ny],
+            count: 0,
+        };
+        let mut count = 0;
+        let mut next = |there: bool| {
+            there.then(|| {
+                count += 1;
+                count - 1
+            })
+        };
+        for j in 0..=ny {
+            for i in 0..=nx {
+                if j < ny {
+                    let f = i + j * (nx + 1);
+                    n.u[f] = next(level.u_open[f] > 0.0);
+                }
+                if i < nx {
+                    let f = i + j * nx;
+                    n.v[f] = next(level.v_open[f] > 0.0);
+                }
+                if i < nx && j < ny {
+                    let c = i + j * nx;
+                    n.t[c] = next(true);
+                    n.p[c] = next(level.fluid[c]);
+                }
+            }
+        }
+        n.count = count as usize;
+        n
+    }
+
+    fn of(&self, field: usize) -> &[Option<u32>] {
+        match field {
+            0 => &self.u,
+            1 => &self.v,
+            2 => &self.p,
+            _ => &self.t,
+        }
+    }
+
+    fn gather(&self, from: &State, to: &mut [f64]) {
+        for field in 0..4 {
+            for (n, value) in self.of(field).iter().zip(field_ref(from, field)) {
+                if let Some(n) = n {
+                    to[*n as usize] = *value;
+                }
+            }
+        }
+    }
+
+    fn add(&self, step: &[f64], scale: f64, to: &mut State) {
+        for field in 0..4 {
+            for (n, value) in self.of(field).iter().zip(field_of(to, field)) {
+                if let Some(n) = n {
+                    *value += scale * step[*n as usize];
+                }
+            }
+        }
+    }
+}

@@ -1,0 +1,99 @@
+//! Residuals of all equations and the scales they are measured by.
+
+use crate::equations::{energy, mass, momentum};
+use crate::level::Level;
+use crate::{Residuals, State, par};
+use ventrise_mesh::Side;
+
+/// All residuals of a state with the given right-hand sides, into `out` (mass in `p`).
+pub(crate) fn evaluate(level: &Level, state: &State, rhs: &State, out: &mut State) {
+    let nx = level.nx;
+    par::each_row(&mut out.u, nx + 1, |j, row| {
+        momentum::x_row(level, state, &rhs.u, j, |i, r, _| row[i] = r);
+    });
+    par::each_row(&mut out.v, nx, |j, row| {
+        momentum::y_row(level, state, &rhs.v, j, |i, r, _| row[i] = r);
+    });
+    for side in Side::ALL {
+        let (speeds, forces) = match side {
+            Side::Left | Side::Right => (&state.u, &mut out.u),
+            Side::Bottom | Side::Top => (&state.v, &mut out.v),
+        };
+        for o in &level.openings[side.index()] {
+            let speed = speeds[o.face];
+            let [force, _] =
+                momentum::opening_force(level.air.density, o.area, o.loss, o.outward, speed);
+            forces[o.face] += force;
+        }
+    }
+    par::each_row(&mut out.p, nx, |j, row| mass::row(level, state, &rhs.p, j, row));
+    par::each_row(&mut out.t, nx, |j, row| {
+        energy::row(level, state, &rhs.t, j, |i, r, _| row[i] = r);
+    });
+}
+
+/// What the residuals are compared with.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub(crate) struct Scales {
+    /// Largest mass flow across any mesh line or through all openings [kg/s].
+    pub mass: f64,
+    /// Sum of the sizes of buoyancy, pressure and opening forces over the control volumes [N].
+    pub force: f64,
+    /// Heat put in by blocks and sides [W].
+    pub heat: f64,
+}
+
+/// The scales of a state.
+pub(crate) fn scales(level: &Level, state: &State) -> Scales {
+    let (nx, ny) = (level.nx, level.ny);
+    let lift = level.gravity.map(|g| (level.air.density * level.air.expansion * g).abs());
+    let [force, heat] = par::sum_rows(ny, nx, |j| {
+        let (mut force, mut heat) = (0.0, 0.0);
+        for i in 0..nx {
+            let n = i + j * nx;
+            let (t, p) = (state.t[n], state.p[n]);
+            if level.fluid[n] {
+                let volume = level.y_area[i] * level.dy[j];
+                force += (lift[0] + lift[1]) * volume * t.abs();
+                if i > 0 && level.fluid[n - 1] {
+                    force += level.x_area[i] * level.dy[j] * (p - state.p[n - 1]).abs();
+                }
+                if j > 0 && level.fluid[n - nx] {
+                    force += level.y_area[i] * (p - state.p[n - nx]).abs();
+                }
+            }
+            heat += (level.source.t[n] - level.side_conductance[n] * t).max(0.0);
+        }
+        [force, heat]
+    });
+    // Half of the flows' sizes across a line is what circulates through it in a closed cavity.
+    let mut through = 0.0_f64;
+    for j in 1..ny {
+        let across: f64 = (0..nx).map(|i| level.y_flow(&state.v, i, j).abs()).sum();
+        through = through.max(0.5 * across);
+    }
+    let mut columns = vec![0.0; nx + 1];
+    for j in 0..ny {
+        columns.iter_mut().enumerate().for_each(|(i, c)| *c += level.x_flow(&state.u, i, j).abs());
+    }
+    let across = columns.iter().fold(0.0_f64, |a, b| a.max(*b));
+    Scales { mass: through.max(0.5 * across), force, heat }
+}
+
+/// Sums of the residuals' sizes over their scales.
+pub(crate) fn relative(level: &Level, residual: &State, scales: &Scales) -> Residuals {
+    let nx = level.nx;
+    let sum = |values: &[f64], width: usize| {
+        let [s] = par::sum_rows(values.len() / width, width, |j| {
+            [values[j * width..(j + 1) * width].iter().map(|r| r.abs()).sum()]
+        });
+        s
+    };
+    let over = |sum: f64, scale: f64| if sum == 0.0 { 0.0 } else { sum / scale };
+    Residuals {
+        mass: over(sum(&residual.p, nx), scales.mass),
+        momentum_x: over(sum(&residual.u, nx + 1), scales.force),
+        momentum_y: over(sum(&residual.v, nx), scales.force),
+        energy: over(sum(&residual.t, nx), scales.heat),
+    }
+}
