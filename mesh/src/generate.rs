@@ -1,6 +1,6 @@
 //! From a layout to its mesh: edges, what is crossed, lines along each axis, cells.
 
-use crate::crossing::{self, Axis, Span};
+use crate::crossing::{self, Axis, Crossing, Span};
 use crate::spacing::{self, Lines};
 use crate::{Layout, Mesh, MeshError, uniform};
 
@@ -10,6 +10,10 @@ pub const CELL_LIMIT: usize = 20_000_000;
 /// Blocks, slots and gaps thinner than this share of the section's longer extent are not given
 /// their cells: 1e-5, 5 µm in half a metre, is a mistake in the drawing and no sheet or film.
 const THINNEST: f64 = 1e-5;
+
+/// Below this share of `wall`, the cells across a block, slot or gap are worth a word: 1/16 is
+/// what a 0.3 mm sheet with 8 cells and a first cell of 0.6 mm comes to.
+const FINE: f64 = 0.0625;
 
 /// Places listed one by one in a note before the rest is only counted.
 const LISTED: usize = 6;
@@ -80,8 +84,10 @@ pub fn generate(layout: &Layout, spacing: &Spacing) -> Result<Generated, MeshErr
         }
     };
     let mesh = Mesh::from_lines(layout, x, y)?;
-    if let Spacing::Graded { across, .. } = *spacing {
-        notes.extend(across_note(layout, &mesh, across)?);
+    if let Spacing::Graded { wall, cell, across, .. } = *spacing {
+        let crossings = mesh.crossings(layout)?;
+        notes.extend(across_note(&crossings, across));
+        notes.extend(fine_note(&crossings, wall.min(cell)));
     }
     Ok(Generated { mesh, notes })
 }
@@ -217,23 +223,38 @@ fn growth_note(axis: Axis, lines: &[f64], growth: f64) -> Option<String> {
     ))
 }
 
-fn across_note(layout: &Layout, mesh: &Mesh, across: usize) -> Result<Option<String>, MeshError> {
-    let short: Vec<String> = mesh
-        .crossings(layout)?
+fn across_note(crossings: &[Crossing], across: usize) -> Option<String> {
+    let short: Vec<String> = crossings
         .iter()
         .filter(|c| c.cells < c.crossed.wanted(across))
-        .map(|c| {
-            format!(
-                "{} from {} to {} mm along {} ({} mm): {} instead of {}",
-                c.crossed.word(),
-                mm(c.from),
-                mm(c.to),
-                c.axis.letter(),
-                mm(c.size()),
-                c.cells,
-                c.crossed.wanted(across)
-            )
-        })
+        .map(|c| format!("{}: {} instead of {}", place(c), c.cells, c.crossed.wanted(across)))
         .collect();
-    Ok((!short.is_empty()).then(|| format!("too few cells across: {}", listed(&short))))
+    (!short.is_empty()).then(|| format!("too few cells across: {}", listed(&short)))
+}
+
+/// Blocks, slots and gaps that force the mesh to be far finer than the surfaces do.
+fn fine_note(crossings: &[Crossing], wall: f64) -> Option<String> {
+    let fine: Vec<String> = crossings
+        .iter()
+        .filter(|c| c.cells > 1 && c.size() < FINE * wall * c.cells as f64)
+        .map(|c| format!("{}: cells of {} mm", place(c), mm(c.size() / c.cells as f64)))
+        .collect();
+    (!fine.is_empty()).then(|| {
+        format!(
+            "very fine cells because something is very thin (should it be closed or left out?): {}",
+            listed(&fine)
+        )
+    })
+}
+
+/// What is crossed and where.
+fn place(crossing: &Crossing) -> String {
+    format!(
+        "{} from {} to {} mm along {} ({} mm)",
+        crossing.crossed.word(),
+        mm(crossing.from),
+        mm(crossing.to),
+        crossing.axis.letter(),
+        mm(crossing.size())
+    )
 }

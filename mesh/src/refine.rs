@@ -94,3 +94,37 @@ fn slopes(lines: &[f64]) -> Vec<f64> {
     slopes.push(end(sizes[n - 1], sizes[n - 2]));
     slopes
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn equal_cells_stay_equal() {
+        let lines: Vec<f64> = (0..=8).map(|i| f64::from(i) * 0.125).collect();
+        let fine = fine_lines(&lines, 5);
+        assert!(fine.windows(2).all(|l| (l[1] - l[0] - 0.025).abs() < 1e-15));
+    }
+
+    #[test]
+    fn geometric_cells_stay_geometric() {
+        let growth: f64 = 1.2;
+        let mut lines = vec![0.0, 1.0];
+        for i in 1..20 {
+            lines.push(lines[i] + growth.powi(i as i32));
+        }
+        let fine = fine_lines(&lines, 2);
+        let ratios: Vec<f64> = fine.windows(3).map(|l| (l[2] - l[1]) / (l[1] - l[0])).collect();
+        // The exact family has the ratio sqrt(1.2) everywhere; the slopes are off by a²/24 of
+        // themselves, a = ln 1.2, which shows as 2·a²/24 in a ratio at most.
+        let off = growth.ln().powi(2) / 12.0;
+        assert!(ratios.iter().all(|r| (r / growth.sqrt() - 1.0).abs() < off), "{ratios:?}");
+    }
+
+    #[test]
+    fn a_jump_in_size_does_not_fold_the_lines() {
+        let fine = fine_lines(&[0.0, 1.0, 1.0 + 1e-6, 2.0, 2.5], 7);
+        assert!(fine.windows(2).all(|l| l[1] > l[0]), "{fine:?}");
+        assert_eq!(fine.len(), 29);
+    }
+}

@@ -9,7 +9,7 @@
 //!   |h(s) - h(t)| <= a·|s - t|       everywhere
 //! ```
 //!
-//! with a = 0.97·ln(growth) and h0 = wall·a / (exp(a) - 1). Within a segment it rises from the
+//! with a = 0.97·ln(growth) and h0 = wall·a / (exp(a) - 1), see `first_size`. Within a segment it rises from the
 //! left edge with slope a, stays at c_k and falls to the right edge with slope -a; any of the
 //! three pieces may be missing. The mesh coordinate is ξ(s) = ∫ ds / h, the cells are its unit
 //! steps. Since |d ln(ds/dξ) / dξ| = |dh/ds| <= a, neighbouring cells differ by a factor of at
@@ -32,8 +32,11 @@ const SLOPE_SHARE: f64 = 0.97;
 /// Tolerated excess of I_k over N_k, as a share of ln(growth): two neighbours use up 0.02.
 const EXCESS_SHARE: f64 = 0.01;
 /// A segment's cells are not made smaller than this share of the size function around it for the
-/// sake of a multiple. Our choice: growth 1.2 bridges a factor of 8 in twelve cells.
-const SLIVER_SHARE: f64 = 0.125;
+/// sake of a multiple. Our choice: growth 1.2 bridges a factor of 8 in twelve cells. A little less
+/// than an eighth, so that round-off decides nothing where a segment is just as long as a cell.
+const SLIVER_SHARE: f64 = 0.1249;
+/// Excess of I_k over a whole number that is round-off.
+const ROUND_OFF: f64 = 1e-9;
 /// Rounds of raising counts; the rise ends after a few in practice.
 const ROUNDS: usize = 60;
 
@@ -114,7 +117,7 @@ struct SizeFunction {
 impl SizeFunction {
     fn new(axis: &AxisRequest) -> Self {
         let slope = SLOPE_SHARE * axis.growth.ln();
-        let start = axis.wall * slope / slope.exp_m1();
+        let start = first_size(axis.wall, slope, axis.cell);
         let lengths: Vec<f64> = axis.edges.windows(2).map(|e| e[1] - e[0]).collect();
         let at_edge =
             axis.graded.iter().map(|g| if *g { start } else { f64::INFINITY }).collect::<Vec<_>>();
@@ -204,6 +207,7 @@ impl SizeFunction {
         let mut sliver = vec![false; n];
         for round in 0..ROUNDS {
             let mut raised = false;
+            let excess = if round == 0 { ROUND_OFF } else { excess };
             for k in 0..n {
                 let cells = self.piece(k).cells();
                 if sliver[k] || cells <= counts[k] as f64 * (1.0 + excess) {
@@ -272,6 +276,25 @@ impl SizeFunction {
         }
         (1.0 / inverse).min(most)
     }
+}
+
+/// h0, the size function at a graded edge that makes the first cell `wall`: wall·a / (exp(a) - 1)
+/// while it rises over the whole cell, more where it reaches `cell` before, `wall` itself when
+/// that is `cell`. By halving between the first and the last.
+fn first_size(wall: f64, slope: f64, cell: f64) -> f64 {
+    let (mut low, mut high) = (wall * slope / slope.exp_m1(), wall);
+    let cells = |start: f64| {
+        let right = (start + slope * wall).min(cell);
+        Piece { length: wall, slope, ceiling: cell, left: start.min(cell), right }.cells()
+    };
+    if low + slope * wall <= cell || wall >= cell {
+        return if wall >= cell { cell } else { low };
+    }
+    for _ in 0..60 {
+        let middle = 0.5 * (low + high);
+        if cells(middle) > 1.0 { low = middle } else { high = middle }
+    }
+    low
 }
 
 /// The smallest multiple of `multiple` that is at least `cells`; for few cells, a smaller power
@@ -343,5 +366,126 @@ impl Piece {
             std::cmp::Ordering::Equal => 0.5 * (up() + down()),
             std::cmp::Ordering::Greater => down(),
         }
+    }
+}
+
+#[cfg(test)]
+#[allow(clippy::unwrap_used)]
+mod tests {
+    use super::*;
+
+    fn request<'a>(edges: &'a [f64], graded: &'a [bool]) -> AxisRequest<'a> {
+        AxisRequest { edges, graded, spans: &[], cell: 1.0, wall: 0.1, growth: 1.2, multiple: 1 }
+    }
+
+    fn sizes(request: &AxisRequest) -> Vec<f64> {
+        let lines = graded_lines(request, 1_000_000).unwrap().lines;
+        lines.windows(2).map(|l| l[1] - l[0]).collect()
+    }
+
+    #[test]
+    fn without_surfaces_cells_are_equal() {
+        let sizes = sizes(&request(&[0.0, 7.5], &[false, false]));
+        assert_eq!(sizes.len(), 8);
+        assert!(sizes.iter().all(|s| (s - 0.9375).abs() < 1e-14), "{sizes:?}");
+    }
+
+    #[test]
+    fn from_a_surface_cells_grow_geometrically_from_exactly_wall() {
+        let sizes = sizes(&request(&[0.0, 30.0], &[true, false]));
+        let ratio = 1.2_f64.powf(SLOPE_SHARE);
+        assert!((sizes[0] - 0.1).abs() < 1e-12, "{}", sizes[0]);
+        // The cell grows from 0.1 to nearly 1, ln(10) / ln(ratio) = 13.02 steps.
+        for pair in sizes[..13].windows(2) {
+            assert!((pair[1] / pair[0] - ratio).abs() < 1e-10, "{pair:?}");
+        }
+        assert!(sizes[14..].iter().all(|s| (s / sizes[20] - 1.0).abs() < 1e-9 && *s <= 1.0));
+    }
+
+    #[test]
+    fn the_first_cell_is_wall_up_to_the_largest_cell() {
+        for wall in [0.05, 0.5, 0.9, 0.97, 1.0] {
+            let request = AxisRequest { wall, ..request(&[0.0, 40.0], &[true, false]) };
+            let first = sizes(&request)[0];
+            // The ramp stays as it is; rounding up takes from the level piece, where wall is it.
+            assert!((0.97 * wall..=wall * (1.0 + 1e-9)).contains(&first), "{first} for {wall}");
+        }
+        assert!((first_size(1.0, 0.18, 1.0) - 1.0).abs() < 1e-15);
+    }
+
+    #[test]
+    fn both_sides_of_a_gap_are_graded_alike() {
+        let sizes = sizes(&request(&[0.0, 12.0], &[true, true]));
+        let reversed: Vec<f64> = sizes.iter().rev().copied().collect();
+        assert!(sizes.iter().zip(&reversed).all(|(a, b)| (a - b).abs() < 1e-14));
+        assert!((sizes[0] - 0.1).abs() < 1e-12 && sizes[sizes.len() / 2] > 0.8);
+    }
+
+    #[test]
+    fn pieces_invert_their_own_integral() {
+        for piece in [
+            Piece { length: 9.0, slope: 0.2, ceiling: 1.0, left: 0.1, right: 0.3 },
+            Piece { length: 2.0, slope: 0.2, ceiling: 1.0, left: 0.1, right: 0.3 },
+            Piece { length: 2.0, slope: 0.2, ceiling: 0.1, left: 0.1, right: 0.1 },
+            Piece { length: 1.0, slope: 0.2, ceiling: 1.0, left: 0.1, right: 0.3 },
+        ] {
+            // Midpoint rule over h itself, against the closed form.
+            let h = |s: f64| {
+                let up = piece.left + piece.slope * s;
+                up.min(piece.right + piece.slope * (piece.length - s)).min(piece.ceiling)
+            };
+            let n = 200_000;
+            let step = piece.length / n as f64;
+            let sum: f64 = (0..n).map(|k| step / h((k as f64 + 0.5) * step)).sum();
+            assert!((sum - piece.cells()).abs() < 1e-6 * sum, "{piece:?}: {sum}");
+            assert!((piece.distance(piece.cells()) - piece.length).abs() < 1e-12);
+            let half: f64 = (0..n / 2).map(|k| step / h((k as f64 + 0.5) * step)).sum();
+            assert!((piece.distance(half) - 0.5 * piece.length).abs() < 1e-5, "{piece:?}");
+        }
+    }
+
+    #[test]
+    fn a_span_of_two_segments_gets_its_cells_as_a_whole() {
+        let edges = [0.0, 10.0, 11.0, 12.5, 30.0];
+        let spans = [([1, 3], 10)];
+        let graded = [false; 5];
+        let request = AxisRequest { spans: &spans, ..request(&edges, &graded) };
+        let lines = graded_lines(&request, 1000).unwrap().lines;
+        let across = lines.iter().filter(|l| **l > 10.0 && **l <= 12.5).count();
+        assert_eq!(across, 10);
+    }
+
+    #[test]
+    fn a_sliver_is_one_cell_and_costs_about_a_dozen_more() {
+        let plain = sizes(&request(&[0.0, 20.0, 40.0], &[false, true, false])).len();
+        for width in [1e-2, 1e-4, 1e-8] {
+            let edges = [0.0, 20.0, 20.0 + width, 40.0];
+            let graded = [false, true, true, false];
+            for multiple in [1, 8] {
+                let request = AxisRequest { multiple, ..request(&edges, &graded) };
+                let found = graded_lines(&request, 10_000).unwrap();
+                assert_eq!(found.slivers, [1]);
+                assert!(found.lines.len() <= plain + 28 + multiple, "{}", found.lines.len());
+            }
+        }
+    }
+
+    #[test]
+    fn too_many_cells_are_refused_before_they_are_made() {
+        let request = AxisRequest { cell: 1e-12, ..request(&[0.0, 1.0], &[false; 2]) };
+        let refused = graded_lines(&request, 1000).err();
+        assert!(matches!(
+            refused,
+            Some(MeshError::TooMany { limit: 1000, needed: 900_000_000_000.. })
+        ));
+    }
+
+    #[test]
+    fn few_cells_get_a_smaller_power_of_two() {
+        assert_eq!(whole(9.5, 8), 16);
+        assert_eq!(whole(1.0, 8), 8);
+        assert_eq!(whole(0.6, 8), 4);
+        assert_eq!(whole(0.01, 8), 1);
+        assert_eq!(whole(2.0, 1), 2);
     }
 }

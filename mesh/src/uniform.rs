@@ -71,8 +71,9 @@ pub(crate) fn uniform_lines(axis: Axis, edges: &[f64], count: usize) -> Result<U
     Ok(Uniform { lines, note: Some(note) })
 }
 
-/// Shares `count` cells out among segments, see the module's text; at least one each. Mirrored
-/// segments get mirrored counts, except where an odd cell has no middle segment to go to.
+/// Shares `count` cells out among segments, see the module's text; at least one each. When the
+/// segments are their own mirror image, so are the counts, except where an odd cell has no middle
+/// segment to go to.
 fn shared_out(lengths: &[f64], count: usize) -> Vec<usize> {
     let total: f64 = lengths.iter().sum();
     let n = lengths.len();
@@ -82,26 +83,68 @@ fn shared_out(lengths: &[f64], count: usize) -> Vec<usize> {
     if counts.iter().sum::<usize>() > count {
         counts = vec![1; n];
     }
-    let off_middle = |k: usize| (2 * k + 1).abs_diff(n);
-    for _ in counts.iter().sum::<usize>()..count {
+    let mirror = |k: usize| n - 1 - k;
+    let is_mirrored = (0..n).all(|k| (lengths[k] - lengths[mirror(k)]).abs() <= EQUAL * total);
+    let mut left = count - counts.iter().sum::<usize>();
+    while left > 0 {
         let size = |k: usize| lengths[k] / counts[k] as f64;
         let largest = (0..n).map(size).fold(0.0, f64::max);
-        let next = (0..n)
-            .filter(|k| size(*k) >= largest * (1.0 - EQUAL))
-            .min_by_key(|k| (off_middle(*k), *k));
-        match next {
-            Some(k) => counts[k] += 1,
-            None => break,
-        }
-    }
-    let mirrored = |k: usize| n - 1 - k;
-    let is_mirrored = (0..n).all(|k| (lengths[k] - lengths[mirrored(k)]).abs() <= EQUAL * total);
-    if is_mirrored && n % 2 == 1 {
-        for k in 0..n / 2 {
-            let fewer = counts[k].min(counts[mirrored(k)]);
-            counts[n / 2] += counts[k] + counts[mirrored(k)] - 2 * fewer;
-            (counts[k], counts[mirrored(k)]) = (fewer, fewer);
+        // Of a mirrored pair and the middle, equal in size, the pair comes first.
+        let next = (0..n).find(|k| size(*k) >= largest * (1.0 - EQUAL)).unwrap_or(0);
+        match (is_mirrored && mirror(next) != next, left) {
+            (true, 2..) => {
+                counts[next] += 1;
+                counts[mirror(next)] += 1;
+                left -= 2;
+            }
+            (true, _) if n % 2 == 1 => {
+                counts[n / 2] += 1;
+                left -= 1;
+            }
+            _ => {
+                counts[next] += 1;
+                left -= 1;
+            }
         }
     }
     counts
+}
+
+#[cfg(test)]
+#[allow(clippy::unwrap_used)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn edges_on_uniform_lines_give_exactly_equal_cells() {
+        let found = uniform_lines(Axis::X, &[0.0, 0.03, 0.1], 10).unwrap();
+        assert!(found.note.is_none());
+        for (i, line) in found.lines.iter().enumerate() {
+            assert!((line - 0.01 * i as f64).abs() < 1e-16, "{line}");
+        }
+        assert!(found.lines.contains(&0.03));
+    }
+
+    #[test]
+    fn other_edges_share_the_cells_and_are_named() {
+        let found = uniform_lines(Axis::Y, &[0.0, 0.033, 0.1], 10).unwrap();
+        assert_eq!(found.lines.len(), 11);
+        assert_eq!(found.lines[3], 0.033);
+        let note = found.note.unwrap();
+        assert!(note.contains("33.0000") && note.contains("9.5714 to 11.0000 mm"), "{note}");
+    }
+
+    #[test]
+    fn an_odd_cell_goes_to_the_middle() {
+        assert_eq!(shared_out(&[1.0, 1.0, 1.0], 10), [3, 4, 3]);
+        assert_eq!(shared_out(&[1.0, 0.5, 1.0], 12), [5, 2, 5]);
+        assert_eq!(shared_out(&[1.0, 0.5, 1.0], 11), [4, 3, 4]);
+        assert_eq!(shared_out(&[1.0, 1e-9], 5), [4, 1]);
+    }
+
+    #[test]
+    fn fewer_cells_than_segments_are_refused() {
+        let refused = uniform_lines(Axis::X, &[0.0, 0.1, 0.2, 0.3], 2).err();
+        assert_eq!(refused, Some(MeshError::TooFew { axis: 'x', cells: 2, segments: 3 }));
+    }
 }
