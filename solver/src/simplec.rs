@@ -36,11 +36,11 @@ pub(crate) struct Smoothing {
 impl Default for Smoothing {
     fn default() -> Self {
         Smoothing {
-            velocity: 0.8,
+            velocity: 0.6,
             temperature: 0.95,
             sweeps: 1,
             pressure: (0.1, 3),
-            iterations: [1, 1],
+            iterations: [2, 2],
         }
     }
 }
@@ -66,7 +66,8 @@ impl Work {
     pub fn new(level: &Level, chain: &[Link]) -> Work {
         let (u, v, cells) = (level.u_open.len(), level.v_open.len(), level.fluid.len());
         let most = u.max(v);
-        let fields = || State { u: vec![0.0; u], v: vec![0.0; v], p: vec![0.0; cells], t: vec![0.0; cells] };
+        let fields =
+            || State { u: vec![0.0; u], v: vec![0.0; v], p: vec![0.0; cells], t: vec![0.0; cells] };
         Work {
             state: fields(),
             rhs: fields(),
