@@ -44,7 +44,7 @@ pub(super) fn assemble(
     drafts: &[Draft],
 ) -> Bodies {
     let mut bodies = Bodies::default();
-    bodies.materials.extend(own.into_iter().map(|m| m.value));
+    bodies.materials.extend(own.into_iter().map(|m| with_source(m.value)));
     names(reader, drafts);
     let limits = limits(reader, drafts);
     let mut parts: HashMap<String, usize> = HashMap::new();
@@ -158,6 +158,18 @@ fn limits(reader: &mut Reader, drafts: &[Draft]) -> HashMap<String, f64> {
         }
     }
     limits.into_iter().map(|(part, (limit, _))| (part, limit)).collect()
+}
+
+/// An own material that repeats one of the library, number by number, keeps its source.
+fn with_source(mut own: Material) -> Material {
+    own.source = materials::find(&own.name)
+        .filter(|m| {
+            m.conductivity == own.conductivity
+                && Some(m.density) == own.density
+                && Some(m.specific_heat) == own.specific_heat
+        })
+        .map(|m| m.source);
+    own
 }
 
 /// Index of a draft's material; the library's are added as they come into use.

@@ -5,6 +5,7 @@ use ventrise_solver::{AirModel, Block, Description, Problem, ProblemError, Setti
 
 use super::estimate::{Estimate, GRAVITY};
 use super::model::{AirChoice, Case, ProbeShape};
+use super::units::rounded_value;
 
 /// Cell counts of every segment are multiples of this, so that two coarser meshes keep every edge.
 const MULTIPLE: usize = 4;
@@ -62,12 +63,14 @@ pub fn spacing(case: &Case) -> Spacing {
     let largest = (section.width.max(section.height) / 60.0)
         .min(slots.fold(f64::INFINITY, f64::min) / 4.0)
         .max(section.width.max(section.height) / 1000.0);
+    let largest = rounded_value(largest, 3);
     let cell = choice.cell.unwrap_or_else(|| choice.wall.map_or(largest, |w| w.max(largest)));
     let ratio = choice.growth;
     let cells_in_layer = 9;
     let layer_in_walls = (ratio.powi(cells_in_layer) - 1.0) / (ratio - 1.0);
     let wall = choice.wall.unwrap_or_else(|| {
-        (Estimate::of(case).layer / layer_in_walls).clamp(cell / 40.0, cell)
+        let wall = Estimate::of(case).layer / layer_in_walls;
+        rounded_value(wall.max(cell / 40.0), 3).min(cell)
     });
     Spacing::Graded { cell, wall, growth: ratio, across: choice.across, multiple: MULTIPLE }
 }

@@ -242,7 +242,11 @@ pub fn parse(text: &str, dimension: Dimension) -> Result<f64, UnitError> {
     if unit.dimension != dimension {
         return Err(UnitError::WrongDimension { number: number.to_string(), is: unit.dimension });
     }
-    let si = (value + unit.offset) * unit.numerator / unit.denominator;
+    let mut si = (value + unit.offset) * unit.numerator / unit.denominator;
+    if (unit.offset, unit.numerator, unit.denominator) != (0.0, 1.0, 1.0) {
+        // 86 degF is 303.15 K, not 303.15000000000003 K.
+        si = rounded_value(si, 15);
+    }
     if si.is_finite() { Ok(si) } else { Err(UnitError::NotFinite) }
 }
 
@@ -274,8 +278,12 @@ pub fn write(si: f64, unit_symbol: &str) -> String {
 
 /// A value rounded to so many significant digits, in its shortest text.
 pub fn rounded(value: f64, digits: usize) -> String {
-    let text = format!("{:.*e}", digits.saturating_sub(1), value);
-    number(text.parse().unwrap_or(value))
+    number(rounded_value(value, digits))
+}
+
+/// A value rounded to so many significant digits.
+pub fn rounded_value(value: f64, digits: usize) -> f64 {
+    format!("{:.*e}", digits.saturating_sub(1), value).parse().unwrap_or(value)
 }
 
 /// Shortest text that reads back to the same number, with an exponent when far from one.
