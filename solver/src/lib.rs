@@ -4,9 +4,14 @@
 //! temperature rise, with the numbers read off them. No files, no screen, no clock here.
 
 mod air;
+mod balance;
 mod boundary;
+#[cfg(test)]
+mod by_hand;
 mod conduction;
 mod error;
+mod numbers;
+mod probe;
 mod problem;
 mod settings;
 mod simple;
@@ -14,8 +19,14 @@ mod solution;
 mod state;
 
 pub use air::{Air, AirModel};
+pub use balance::{Balance, OpeningFlow, REST_SPEED, SideFlow, balance, side_flows, slot_flows};
 pub use boundary::{SideCondition, Slot};
 pub use error::{ProblemError, SolveError};
+pub use numbers::{
+    Numbers, PartTemperature, block_temperatures, cell_velocities, heat_fluxes, numbers,
+    part_temperatures,
+};
+pub use probe::{Sample, Sampler};
 pub use problem::{Block, Description, Problem, Solid, Sources};
 pub use settings::{Convection, Settings};
 pub use simple::solve;
