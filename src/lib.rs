@@ -1,1 +1,4 @@
-//! Ventrise: from a case file to part temperatures, vent flows and fields.
+//! Natural-draught air flow and conduction in the section of a fanless housing: case files,
+//! results, the command line.
+
+pub mod output;
