@@ -19,6 +19,16 @@ pub enum MeshError {
         /// Position of the edge [m].
         at: f64,
     },
+    /// A block or slot has no extent.
+    #[error("the extent from {from} to {to} m along {axis} is empty or reversed")]
+    Extent {
+        /// `x` or `y`.
+        axis: char,
+        /// Its lower end as given [m].
+        from: f64,
+        /// Its upper end as given [m].
+        to: f64,
+    },
     /// A slot lies on an edge where none can be (the axis of an axisymmetric section).
     #[error("slot {slot} lies on the {side:?} side, where no slot can be")]
     SlotSide {
@@ -34,6 +44,16 @@ pub enum MeshError {
         needed: usize,
         /// The limit.
         limit: usize,
+    },
+    /// A uniform mesh has fewer cells than there are segments between edges.
+    #[error("{cells} cells along {axis} are fewer than the {segments} segments between edges")]
+    TooFew {
+        /// `x` or `y`.
+        axis: char,
+        /// Cells asked for.
+        cells: usize,
+        /// Segments between edges.
+        segments: usize,
     },
     /// A number of the spacing is outside its range.
     #[error("{name} must be {bound}, not {value}")]

@@ -14,7 +14,7 @@
 
 use std::f64::consts::PI;
 
-use crate::{Geometry, Layout, MeshError, Side};
+use crate::{Axis, Geometry, Layout, MeshError, Side};
 
 /// Region number of air in [`Mesh::regions`]; block b is region b.
 pub const AIR: u32 = u32::MAX;
@@ -22,16 +22,16 @@ pub const AIR: u32 = u32::MAX;
 /// A structured mesh with its regions. Fixed once built.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Mesh {
-    geometry: Geometry,
-    x: Vec<f64>,
-    y: Vec<f64>,
+    pub(crate) geometry: Geometry,
+    pub(crate) x: Vec<f64>,
+    pub(crate) y: Vec<f64>,
     /// Lines that a coarser mesh must keep (edges of blocks, slots and the section).
-    x_kept: Vec<bool>,
-    y_kept: Vec<bool>,
+    pub(crate) x_kept: Vec<bool>,
+    pub(crate) y_kept: Vec<bool>,
     /// One per cell: block index or `AIR`.
-    regions: Vec<u32>,
+    pub(crate) regions: Vec<u32>,
     /// One per boundary face of each side: slot index or `None`.
-    slots: [Vec<Option<u32>>; 4],
+    pub(crate) slots: [Vec<Option<u32>>; 4],
 }
 
 /// A coarser mesh and which coarse cell each fine cell lies in.
@@ -46,7 +46,7 @@ pub struct Coarsening {
 }
 
 /// Relative distance below which an edge counts as lying on a line.
-const ON_LINE: f64 = 1e-9;
+pub(crate) const ON_LINE: f64 = 1e-9;
 
 impl Mesh {
     /// Builds a mesh from its lines, which must include every edge of the layout.
@@ -67,8 +67,8 @@ impl Mesh {
         }
         let mut regions = vec![AIR; nx * ny];
         for (b, block) in layout.blocks.iter().enumerate() {
-            let [i0, i1] = [line_at('x', &x, block.x[0])?, line_at('x', &x, block.x[1])?];
-            let [j0, j1] = [line_at('y', &y, block.y[0])?, line_at('y', &y, block.y[1])?];
+            let [i0, i1] = extent_at('x', &x, block.x)?;
+            let [j0, j1] = extent_at('y', &y, block.y)?;
             (x_kept[i0], x_kept[i1], y_kept[j0], y_kept[j1]) = (true, true, true, true);
             for row in regions.chunks_exact_mut(nx).take(j1).skip(j0) {
                 row[i0..i1].fill(b as u32);
@@ -83,8 +83,7 @@ impl Mesh {
                 Side::Left | Side::Right => ('y', &y, &mut y_kept),
                 Side::Bottom | Side::Top => ('x', &x, &mut x_kept),
             };
-            let [from, to] =
-                [line_at(axis, lines, slot.span[0])?, line_at(axis, lines, slot.span[1])?];
+            let [from, to] = extent_at(axis, lines, slot.span)?;
             (kept[from], kept[to]) = (true, true);
             slots[slot.side.index()][from..to].fill(Some(s as u32));
         }
@@ -177,6 +176,42 @@ impl Mesh {
         self.y_area(i) * self.dy(j)
     }
 
+    /// Volume of the section [m³]: width·height·depth, or π·width²·height.
+    pub fn section_volume(&self) -> f64 {
+        self.y_area_between(0.0, self.x[self.nx()]) * self.y[self.ny()]
+    }
+
+    /// Lines along x that are edges of blocks, slots, probe lines or the section; nx + 1.
+    pub fn x_kept(&self) -> &[bool] {
+        &self.x_kept
+    }
+
+    /// Lines along y that are edges; ny + 1.
+    pub fn y_kept(&self) -> &[bool] {
+        &self.y_kept
+    }
+
+    /// Column that holds a position along x [m]; on a line, the column above it; clamped.
+    pub fn column_at(&self, x: f64) -> usize {
+        self.x.partition_point(|l| *l <= x).clamp(1, self.nx()) - 1
+    }
+
+    /// Row that holds a position along y [m]; on a line, the row above it; clamped.
+    pub fn row_at(&self, y: f64) -> usize {
+        self.y.partition_point(|l| *l <= y).clamp(1, self.ny()) - 1
+    }
+
+    /// Index of the line at a position along an axis [m].
+    ///
+    /// # Errors
+    /// [`MeshError::OffLine`] when there is none within round-off.
+    pub fn line_at(&self, axis: Axis, at: f64) -> Result<usize, MeshError> {
+        match axis {
+            Axis::X => line_at('x', &self.x, at),
+            Axis::Y => line_at('y', &self.y, at),
+        }
+    }
+
     /// Region of each cell: block index or [`AIR`]; row-major, nx·ny.
     pub fn regions(&self) -> &[u32] {
         &self.regions
@@ -241,6 +276,12 @@ fn line_at(axis: char, lines: &[f64], at: f64) -> Result<usize, MeshError> {
         Some(line) if (line - at).abs() <= ON_LINE * extent => Ok(i),
         _ => Err(MeshError::OffLine { axis, at }),
     }
+}
+
+/// Indices of the lines at both ends of an extent.
+fn extent_at(axis: char, lines: &[f64], at: [f64; 2]) -> Result<[usize; 2], MeshError> {
+    let [from, to] = [line_at(axis, lines, at[0])?, line_at(axis, lines, at[1])?];
+    if from < to { Ok([from, to]) } else { Err(MeshError::Extent { axis, from: at[0], to: at[1] }) }
 }
 
 /// Lines of the coarser mesh (indices into the finer) and the coarse index of each fine cell.
