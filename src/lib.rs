@@ -1,4 +1,4 @@
-//! Natural-draught air flow and conduction in the section of a fanless housing: case files,
-//! results, the command line.
+//! Ventrise: from a case file to part temperatures, vent flows and fields.
 
+pub mod case;
 pub mod output;

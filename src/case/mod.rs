@@ -1,0 +1,25 @@
+//! The case file: text in, a checked [`Case`] in SI out.
+//!
+//! TOML with a unit on every physical number. All mistakes are collected with their places and
+//! shown together ([`CaseErrors`]); what passes is fixed and needs no further checks downstream.
+
+mod blocks;
+mod check;
+mod edge;
+mod error;
+mod estimate;
+pub mod materials;
+mod model;
+mod parse;
+mod read;
+mod resolved;
+pub mod setup;
+mod tables;
+pub mod units;
+
+pub use error::{CaseError, CaseErrors, Cause};
+pub use estimate::Estimate;
+pub use model::{
+    AirChoice, Ambient, Block, Case, Material, MeshChoice, Part, Probe, ProbeShape, Section, Slot,
+    SolveChoice,
+};

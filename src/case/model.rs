@@ -1,0 +1,303 @@
+//! The checked case, in SI.
+
+use ventrise_mesh::{Geometry, Rectangle, Side};
+use ventrise_solver::{Air, Settings, SideCondition};
+
+use super::error::CaseError;
+
+/// The computed plane.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Section {
+    /// Planar (with its depth) or axisymmetric.
+    pub geometry: Geometry,
+    /// Extent along x; the outer radius when axisymmetric [m].
+    pub width: f64,
+    /// Extent along y [m].
+    pub height: f64,
+}
+
+/// The air outside.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Ambient {
+    /// Temperature [K].
+    pub temperature: f64,
+    /// Absolute pressure [Pa].
+    pub pressure: f64,
+    /// Altitude that the pressure was derived from [m], when given so.
+    pub altitude: Option<f64>,
+}
+
+/// Where the air's properties come from.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub enum AirChoice {
+    /// Dry air at the film temperature of the result.
+    Film,
+    /// The case's own numbers, used exactly as given.
+    Given {
+        /// The numbers.
+        air: Air,
+        /// Temperature at which the density holds [K]. It changes nothing in the equations: the
+        /// buoyancy ρ₀·β·(T − T_ambient) of the linear density law is the same whatever
+        /// temperature ρ₀ belongs to.
+        reference_temperature: f64,
+    },
+}
+
+/// A solid material.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Material {
+    /// Name in the case file.
+    pub name: String,
+    /// Conductivity along x and y [W/(m·K)].
+    pub conductivity: [f64; 2],
+    /// Density [kg/m³], when known (a steady solution does not need it).
+    pub density: Option<f64>,
+    /// Specific heat [J/(kg·K)], when known (a steady solution does not need it).
+    pub specific_heat: Option<f64>,
+    /// Source of the library's numbers; `None` for the case's own materials.
+    pub source: Option<&'static str>,
+}
+
+/// A solid rectangle, one per copy of a pattern.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Block {
+    /// Name; copies of a pattern are numbered ("fin 1", "fin 2", ...).
+    pub name: Option<String>,
+    /// Where it is [m].
+    pub rectangle: Rectangle,
+    /// Index into [`Case::materials`].
+    pub material: usize,
+    /// Index into [`Case::parts`].
+    pub part: Option<usize>,
+    /// Heat released in the whole block [W]; below zero when it is cooled.
+    pub heat: f64,
+}
+
+/// Blocks judged together.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Part {
+    /// Name.
+    pub name: String,
+    /// Its blocks, indices into [`Case::blocks`].
+    pub blocks: Vec<usize>,
+    /// Highest allowed temperature [K].
+    pub limit: Option<f64>,
+    /// Heat of all its blocks [W].
+    pub heat: f64,
+}
+
+/// An opening in the section's edge.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Slot {
+    /// Name.
+    pub name: String,
+    /// The side it lies in.
+    pub side: Side,
+    /// Extent along the side [m].
+    pub span: [f64; 2],
+    /// Loss coefficient on the speed through the opening [-].
+    pub loss: f64,
+}
+
+/// A named place whose values are reported.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Probe {
+    /// Name.
+    pub name: String,
+    /// Point or line.
+    pub shape: ProbeShape,
+}
+
+/// Where a probe is.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub enum ProbeShape {
+    /// A point (x, y) [m].
+    Point([f64; 2]),
+    /// A straight line between two points [m].
+    Line {
+        /// First end (x, y).
+        from: [f64; 2],
+        /// Last end (x, y).
+        to: [f64; 2],
+    },
+}
+
+/// What the case says about the mesh; `None` where the default is to be found.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct MeshChoice {
+    /// Largest cell [m].
+    pub cell: Option<f64>,
+    /// Plain uniform mesh with so many cells along x and y.
+    pub cells: Option<[usize; 2]>,
+    /// First cell at solid surfaces [m].
+    pub wall: Option<f64>,
+    /// Largest ratio of neighbouring cell sizes.
+    pub growth: f64,
+    /// Least number of cells across every gap, slot and fin.
+    pub across: usize,
+}
+
+impl Default for MeshChoice {
+    fn default() -> Self {
+        MeshChoice { cell: None, cells: None, wall: None, growth: 1.2, across: 8 }
+    }
+}
+
+/// When to stop.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct SolveChoice {
+    /// Bound for all residuals [-].
+    pub tolerance: f64,
+    /// Bound for the outer iterations.
+    pub max_iterations: usize,
+}
+
+impl Default for SolveChoice {
+    fn default() -> Self {
+        let settings = Settings::default();
+        SolveChoice { tolerance: settings.tolerance, max_iterations: settings.max_iterations }
+    }
+}
+
+/// A checked case. Built by [`Case::parse`] and [`Case::read`] only.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Case {
+    pub(super) title: String,
+    pub(super) section: Section,
+    pub(super) ambient: Ambient,
+    pub(super) air: AirChoice,
+    pub(super) materials: Vec<Material>,
+    pub(super) blocks: Vec<Block>,
+    pub(super) parts: Vec<Part>,
+    pub(super) slots: Vec<Slot>,
+    pub(super) sides: [SideCondition; 4],
+    pub(super) probes: Vec<Probe>,
+    pub(super) mesh: MeshChoice,
+    pub(super) solve: SolveChoice,
+    pub(super) origin: Origin,
+}
+
+/// The text that a case was read from.
+#[derive(Debug, Clone, PartialEq)]
+pub(super) struct Origin {
+    pub file: String,
+    pub text: String,
+    pub sha256: String,
+    pub warnings: Vec<CaseError>,
+}
+
+impl Case {
+    /// Title; the file's name without its ending when the case gives none.
+    pub fn title(&self) -> &str {
+        &self.title
+    }
+
+    /// The computed plane.
+    pub fn section(&self) -> &Section {
+        &self.section
+    }
+
+    /// The air outside.
+    pub fn ambient(&self) -> &Ambient {
+        &self.ambient
+    }
+
+    /// Where the air's properties come from.
+    pub fn air(&self) -> &AirChoice {
+        &self.air
+    }
+
+    /// Materials in use and the case's own ones.
+    pub fn materials(&self) -> &[Material] {
+        &self.materials
+    }
+
+    /// Solid blocks, patterns expanded. Their order is the order of the mesh's regions.
+    pub fn blocks(&self) -> &[Block] {
+        &self.blocks
+    }
+
+    /// Parts, in the order of their first blocks.
+    pub fn parts(&self) -> &[Part] {
+        &self.parts
+    }
+
+    /// Slots, in the order of the file.
+    pub fn slots(&self) -> &[Slot] {
+        &self.slots
+    }
+
+    /// Conditions of the sides, by [`Side::index`].
+    pub fn sides(&self) -> &[SideCondition; 4] {
+        &self.sides
+    }
+
+    /// Probes, in the order of the file.
+    pub fn probes(&self) -> &[Probe] {
+        &self.probes
+    }
+
+    /// What the case says about the mesh.
+    pub fn mesh_choice(&self) -> &MeshChoice {
+        &self.mesh
+    }
+
+    /// When to stop.
+    pub fn solve_choice(&self) -> &SolveChoice {
+        &self.solve
+    }
+
+    /// File name that the case was read under.
+    pub fn file(&self) -> &str {
+        &self.origin.file
+    }
+
+    /// The text of the case file.
+    pub fn text(&self) -> &str {
+        &self.origin.text
+    }
+
+    /// SHA-256 of the text, in hexadecimal.
+    pub fn sha256(&self) -> &str {
+        &self.origin.sha256
+    }
+
+    /// Heat of all blocks [W].
+    pub fn heat(&self) -> f64 {
+        self.blocks.iter().map(|b| b.heat).sum()
+    }
+
+    /// Area of a slot [m²]: over the depth, or around the full revolution.
+    pub fn slot_area(&self, slot: &Slot) -> f64 {
+        let [from, to] = slot.span;
+        match (self.section.geometry, slot.side) {
+            (Geometry::Planar { depth }, _) => depth * (to - from),
+            (Geometry::Axisymmetric, Side::Bottom | Side::Top) => {
+                std::f64::consts::PI * (to - from) * (to + from)
+            }
+            (Geometry::Axisymmetric, Side::Right) => {
+                2.0 * std::f64::consts::PI * self.section.width * (to - from)
+            }
+            (Geometry::Axisymmetric, Side::Left) => 0.0,
+        }
+    }
+
+    /// Middle height of a slot [m].
+    pub fn slot_height(&self, slot: &Slot) -> f64 {
+        match slot.side {
+            Side::Bottom => 0.0,
+            Side::Top => self.section.height,
+            Side::Left | Side::Right => 0.5 * (slot.span[0] + slot.span[1]),
+        }
+    }
+}
+
+/// Name of a side in the case file and in results.
+pub fn side_name(side: Side) -> &'static str {
+    match side {
+        Side::Left => "left",
+        Side::Right => "right",
+        Side::Bottom => "bottom",
+        Side::Top => "top",
+    }
+}

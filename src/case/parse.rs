@@ -1,0 +1,490 @@
+//! Reading values out of TOML tables, with their places; mistakes are collected on the way.
+
+use std::ops::Range;
+
+use toml::Spanned;
+use toml::de::{DeTable, DeValue};
+
+use super::error::{Cause, CaseError, nearest, one_of};
+use super::units::{self, Dimension, UnitError};
+
+/// A value and its byte range in the text.
+#[derive(Debug, Clone, PartialEq)]
+pub(super) struct Located<T> {
+    pub value: T,
+    pub span: Range<usize>,
+}
+
+/// One table of the file while it is read.
+#[derive(Debug, Clone)]
+pub(super) struct Scope<'d> {
+    table: &'d DeTable<'d>,
+    /// Byte range of the table (of its header, or of the inline table).
+    pub span: Range<usize>,
+    /// How messages call it, such as `block "core"`.
+    pub place: String,
+}
+
+impl<'d> Scope<'d> {
+    pub fn new(table: &'d DeTable<'d>, span: Range<usize>, place: &str) -> Self {
+        Scope { table, span, place: place.to_string() }
+    }
+
+    pub fn get(&self, key: &str) -> Option<&'d Spanned<DeValue<'d>>> {
+        self.table.iter().find(|(k, _)| k.get_ref() == key).map(|(_, v)| v)
+    }
+
+    pub fn has(&self, key: &str) -> bool {
+        self.get(key).is_some()
+    }
+
+    /// Byte range of a key's value, or of the table when the key is absent.
+    pub fn span_of(&self, key: &str) -> Range<usize> {
+        self.get(key).map_or(self.span.clone(), Spanned::span)
+    }
+}
+
+/// Keys that a table may have now and keys that it will have in later versions.
+pub(super) struct Keys {
+    /// What the table is called in hints: "a block".
+    pub what: &'static str,
+    pub known: &'static [&'static str],
+    pub later: &'static [&'static str],
+}
+
+/// Collects mistakes and warnings while a text is read.
+#[derive(Debug)]
+pub(super) struct Reader<'t> {
+    text: &'t str,
+    pub errors: Vec<CaseError>,
+    pub warnings: Vec<CaseError>,
+}
+
+impl<'t> Reader<'t> {
+    pub fn new(text: &'t str) -> Self {
+        Reader { text, errors: Vec::new(), warnings: Vec::new() }
+    }
+
+    /// The text as typed at a byte range, shortened to one line.
+    pub fn typed(&self, span: &Range<usize>) -> String {
+        let raw = self.text.get(span.clone()).unwrap_or("");
+        let line = raw.split_whitespace().collect::<Vec<_>>().join(" ");
+        if line.chars().count() > 60 {
+            let head: String = line.chars().take(57).collect();
+            format!("{head}...")
+        } else {
+            line
+        }
+    }
+
+    pub fn report(&mut self, error: CaseError) {
+        self.errors.push(error);
+    }
+
+    pub fn warn(&mut self, scope: &Scope, span: Range<usize>, message: impl Into<String>) {
+        self.warnings.push(CaseError::new(Cause::Range, &scope.place, message).at(span));
+    }
+
+    /// Reports keys that do not exist, or not yet.
+    pub fn check_keys(&mut self, scope: &Scope, keys: &Keys) {
+        for (key, value) in scope.table.iter() {
+            let name: &str = key.get_ref();
+            if keys.known.contains(&name) {
+                continue;
+            }
+            let typed = self.typed(&value.span());
+            let shown = match value.get_ref() {
+                DeValue::Table(_) | DeValue::Array(_) => name.to_string(),
+                _ => format!("{name} = {typed}"),
+            };
+            let error = if keys.later.contains(&name) {
+                CaseError::new(
+                    Cause::NotYet,
+                    &scope.place,
+                    format!("{shown}: this version does not have {name} yet"),
+                )
+                .hint(format!("leave {name} out; a later version brings it"))
+            } else {
+                let error = CaseError::new(
+                    Cause::UnknownKey,
+                    &scope.place,
+                    format!("{shown}: {} has no key {name}", keys.what),
+                );
+                error.hint(match nearest(name, keys.known.iter().copied()) {
+                    Some(near) => format!("the nearest key is {near}"),
+                    None => format!("its keys are {}", keys.known.join(", ")),
+                })
+            };
+            self.report(error.at(key.span()));
+        }
+    }
+
+    /// Reports a required key that is not there.
+    pub fn missing(&mut self, scope: &Scope, key: &str, example: &str) {
+        let error = CaseError::new(Cause::Missing, &scope.place, format!("{key} is missing"));
+        self.report(error.at(scope.span.clone()).hint(format!("write {key} = {example}")));
+    }
+
+    /// Reports a value outside its range; `bound` completes "must be ...". True when good.
+    pub fn within<T>(
+        &mut self,
+        scope: &Scope,
+        key: &str,
+        value: &Located<T>,
+        good: bool,
+        bound: &str,
+    ) -> bool {
+        if !good {
+            let typed = self.typed(&value.span);
+            let message = format!("{key} = {typed} must be {bound}");
+            self.report(
+                CaseError::new(Cause::Range, &scope.place, message).at(value.span.clone()),
+            );
+        }
+        good
+    }
+
+    fn wrong_kind(&mut self, scope: &Scope, key: &str, value: &Spanned<DeValue>, wanted: &str) {
+        let typed = self.typed(&value.span());
+        let kind = kind_name(value.get_ref());
+        let message = format!("{key} = {typed} is {kind}; {wanted}");
+        self.report(CaseError::new(Cause::Kind, &scope.place, message).at(value.span()));
+    }
+
+    /// A text.
+    pub fn text(&mut self, scope: &Scope, key: &str) -> Option<Located<String>> {
+        let value = scope.get(key)?;
+        match value.get_ref() {
+            DeValue::String(text) if text.trim().is_empty() => {
+                let message = format!("{key} is empty");
+                self.report(CaseError::new(Cause::Kind, &scope.place, message).at(value.span()));
+                None
+            }
+            DeValue::String(text) => {
+                Some(Located { value: text.trim().to_string(), span: value.span() })
+            }
+            _ => {
+                self.wrong_kind(scope, key, value, "a text in quotes belongs here");
+                None
+            }
+        }
+    }
+
+    /// One of some words.
+    pub fn word(
+        &mut self,
+        scope: &Scope,
+        key: &str,
+        words: &[&'static str],
+        later: &[&str],
+    ) -> Option<Located<&'static str>> {
+        let typed = self.text(scope, key)?;
+        if let Some(word) = words.iter().find(|w| **w == typed.value) {
+            return Some(Located { value: word, span: typed.span });
+        }
+        self.not_a_word(scope, key, &typed, words, later);
+        None
+    }
+
+    pub fn not_a_word(
+        &mut self,
+        scope: &Scope,
+        key: &str,
+        typed: &Located<String>,
+        words: &[&str],
+        later: &[&str],
+    ) {
+        let quoted: Vec<String> = words.iter().map(|w| format!("\"{w}\"")).collect();
+        let quoted: Vec<&str> = quoted.iter().map(String::as_str).collect();
+        let message = format!("{key} = \"{}\"", typed.value);
+        let error = if later.contains(&typed.value.as_str()) {
+            let message = format!("{message}: this version does not have it yet");
+            CaseError::new(Cause::NotYet, &scope.place, message)
+                .hint(format!("possible now: {}", one_of(&quoted)))
+        } else {
+            let message = format!("{message} is not possible; it must be {}", one_of(&quoted));
+            let error = CaseError::new(Cause::UnknownWord, &scope.place, message);
+            match nearest(&typed.value, words.iter().copied()) {
+                Some(near) => error.hint(format!("the nearest is \"{near}\"")),
+                None => error,
+            }
+        };
+        self.report(error.at(typed.span.clone()));
+    }
+
+    /// A number without unit: a plain TOML number.
+    pub fn number(&mut self, scope: &Scope, key: &str) -> Option<Located<f64>> {
+        let value = scope.get(key)?;
+        let number = match value.get_ref() {
+            DeValue::Integer(i) => integer(i).map(|i| i as f64),
+            DeValue::Float(f) => f.as_str().parse::<f64>().ok(),
+            DeValue::String(text) => {
+                let remedy = if text.trim().parse::<f64>().is_ok() {
+                    format!("a plain number belongs here: {key} = {}", text.trim())
+                } else {
+                    "a plain number without quotes or unit belongs here".to_string()
+                };
+                self.wrong_kind(scope, key, value, &remedy);
+                return None;
+            }
+            _ => {
+                self.wrong_kind(scope, key, value, "a plain number belongs here");
+                return None;
+            }
+        };
+        let number = Located { value: number.unwrap_or(f64::NAN), span: value.span() };
+        self.within(scope, key, &number, number.value.is_finite(), "a finite number")
+            .then_some(number)
+    }
+
+    /// A whole number in a range.
+    pub fn count(
+        &mut self,
+        scope: &Scope,
+        key: &str,
+        range: std::ops::RangeInclusive<usize>,
+    ) -> Option<Located<usize>> {
+        let number = self.number(scope, key)?;
+        let bound = format!("a whole number from {} to {}", range.start(), range.end());
+        let whole = number.value.fract() == 0.0
+            && number.value >= *range.start() as f64
+            && number.value <= *range.end() as f64;
+        self.within(scope, key, &number, whole, &bound)
+            .then_some(Located { value: number.value as usize, span: number.span })
+    }
+
+    /// A quantity with a unit, in SI.
+    pub fn quantity(
+        &mut self,
+        scope: &Scope,
+        key: &str,
+        dimension: Dimension,
+    ) -> Option<Located<f64>> {
+        self.quantity_of(scope, key, scope.get(key)?, dimension)
+    }
+
+    /// A quantity that must be there.
+    pub fn required(
+        &mut self,
+        scope: &Scope,
+        key: &str,
+        dimension: Dimension,
+        example: &str,
+    ) -> Option<Located<f64>> {
+        if !scope.has(key) {
+            self.missing(scope, key, &format!("\"{example}\""));
+        }
+        self.quantity(scope, key, dimension)
+    }
+
+    /// A positive quantity.
+    pub fn positive(
+        &mut self,
+        scope: &Scope,
+        key: &str,
+        dimension: Dimension,
+    ) -> Option<Located<f64>> {
+        let value = self.quantity(scope, key, dimension)?;
+        self.within(scope, key, &value, value.value > 0.0, "more than 0").then_some(value)
+    }
+
+    /// A temperature above absolute zero [K].
+    pub fn temperature(&mut self, scope: &Scope, key: &str) -> Option<Located<f64>> {
+        let value = self.quantity(scope, key, Dimension::Temperature)?;
+        let bound = "above absolute zero, -273.15 degC";
+        self.within(scope, key, &value, value.value > 0.0, bound).then_some(value)
+    }
+
+    /// Two lengths in brackets, such as an extent or a point [m].
+    pub fn two_lengths(&mut self, scope: &Scope, key: &str) -> Option<Located<[f64; 2]>> {
+        let value = scope.get(key)?;
+        let wanted = "two lengths in brackets belong here, such as [\"0 mm\", \"60 mm\"]";
+        let DeValue::Array(array) = value.get_ref() else {
+            self.wrong_kind(scope, key, value, wanted);
+            return None;
+        };
+        let items: Vec<_> = array.iter().collect();
+        let [a, b] = items.as_slice() else {
+            let typed = self.typed(&value.span());
+            let message = format!("{key} = {typed} has {} entries; {wanted}", items.len());
+            self.report(CaseError::new(Cause::Kind, &scope.place, message).at(value.span()));
+            return None;
+        };
+        let a = self.quantity_of(scope, key, a, Dimension::Length);
+        let b = self.quantity_of(scope, key, b, Dimension::Length);
+        Some(Located { value: [a?.value, b?.value], span: value.span() })
+    }
+
+    /// Two whole numbers in brackets.
+    pub fn two_counts(&mut self, scope: &Scope, key: &str) -> Option<Located<[usize; 2]>> {
+        let value = scope.get(key)?;
+        let wanted = "two whole numbers in brackets belong here, such as [120, 160]";
+        if let DeValue::Array(array) = value.get_ref() {
+            let counts: Vec<usize> = array
+                .iter()
+                .filter_map(|item| match item.get_ref() {
+                    DeValue::Integer(i) => usize::try_from(integer(i)?).ok(),
+                    _ => None,
+                })
+                .collect();
+            if let (2, [nx, ny]) = (array.len(), counts.as_slice()) {
+                return Some(Located { value: [*nx, *ny], span: value.span() });
+            }
+        }
+        self.wrong_kind(scope, key, value, wanted);
+        None
+    }
+
+    fn quantity_of(
+        &mut self,
+        scope: &Scope,
+        key: &str,
+        value: &Spanned<DeValue>,
+        dimension: Dimension,
+    ) -> Option<Located<f64>> {
+        let span = value.span();
+        let unit = dimension.usual_unit();
+        let a_name = dimension.a_name();
+        let typed = self.typed(&span);
+        let (cause, message, hint) = match value.get_ref() {
+            DeValue::String(text) => match units::parse(text, dimension) {
+                Ok(si) => return Some(Located { value: si, span }),
+                Err(error) => unit_message(&format!("{key} = {typed}"), &error, dimension),
+            },
+            DeValue::Integer(_) | DeValue::Float(_) => (
+                Cause::Unit,
+                format!("{key} = {typed} has no unit; write it as \"{typed} {unit}\""),
+                Some(units_hint(dimension)),
+            ),
+            other => (
+                Cause::Kind,
+                format!(
+                    "{key} = {typed} is {}; {a_name} belongs here, such as \"1 {unit}\"",
+                    kind_name(other)
+                ),
+                None,
+            ),
+        };
+        let mut error = CaseError::new(cause, &scope.place, message).at(span);
+        if let Some(hint) = hint {
+            error = error.hint(hint);
+        }
+        self.report(error);
+        None
+    }
+
+    /// A table within a table; `header` is how it is written.
+    pub fn table<'d>(
+        &mut self,
+        scope: &Scope<'d>,
+        key: &str,
+        place: &str,
+    ) -> Option<Scope<'d>> {
+        let value = scope.get(key)?;
+        match value.get_ref() {
+            DeValue::Table(table) => Some(Scope::new(table, value.span(), place)),
+            DeValue::Array(_) if scope.place.is_empty() => {
+                let message = format!("there is one {key} only");
+                let error = CaseError::new(Cause::Kind, "", message).at(value.span());
+                self.report(error.hint(format!("write [{key}], with single brackets")));
+                None
+            }
+            _ => {
+                self.wrong_kind(scope, key, value, "a table belongs here");
+                None
+            }
+        }
+    }
+
+    /// The tables of a list such as `[[block]]`.
+    pub fn tables<'d>(&mut self, scope: &Scope<'d>, key: &str) -> Vec<Scope<'d>> {
+        let Some(value) = scope.get(key) else { return Vec::new() };
+        let mut scopes = Vec::new();
+        match value.get_ref() {
+            DeValue::Array(array) => {
+                for (n, item) in array.iter().enumerate() {
+                    match item.get_ref() {
+                        DeValue::Table(table) => {
+                            let place = format!("{key} {}", n + 1);
+                            scopes.push(Scope::new(table, item.span(), &place));
+                        }
+                        _ => self.wrong_kind(scope, key, item, "a table belongs here"),
+                    }
+                }
+            }
+            DeValue::Table(_) => {
+                let message = format!("{key} is a list of tables");
+                let error = CaseError::new(Cause::Kind, "", message).at(value.span());
+                self.report(error.hint(format!("write [[{key}]], with double brackets")));
+            }
+            _ => self.wrong_kind(scope, key, value, &format!("write it as [[{key}]] tables")),
+        }
+        scopes
+    }
+}
+
+/// Value of a TOML integer.
+fn integer(i: &toml::de::DeInteger) -> Option<i64> {
+    i64::from_str_radix(i.as_str(), i.radix()).ok()
+}
+
+fn kind_name(value: &DeValue) -> &'static str {
+    match value {
+        DeValue::String(_) => "a text",
+        DeValue::Integer(_) | DeValue::Float(_) => "a plain number",
+        DeValue::Boolean(_) => "true or false",
+        DeValue::Datetime(_) => "a date",
+        DeValue::Array(_) => "a list",
+        DeValue::Table(_) => "a table",
+    }
+}
+
+fn units_hint(dimension: Dimension) -> String {
+    let units: Vec<&str> = dimension.units().collect();
+    match units.as_slice() {
+        [unit] => format!("the unit of {} is {unit}", dimension.a_name()),
+        units => format!("units of {}: {}", dimension.a_name(), units.join(", ")),
+    }
+}
+
+fn unit_message(
+    typed: &str,
+    error: &UnitError,
+    dimension: Dimension,
+) -> (Cause, String, Option<String>) {
+    let unit = dimension.usual_unit();
+    let a_name = dimension.a_name();
+    match error {
+        UnitError::NoNumber => (
+            Cause::Unit,
+            format!("{typed} does not begin with a number; {a_name} belongs here, such as \"1 {unit}\""),
+            None,
+        ),
+        UnitError::Comma(fixed) => (
+            Cause::Unit,
+            format!("{typed} has a comma where the decimal point belongs; write \"{fixed}\""),
+            None,
+        ),
+        UnitError::NotFinite => (Cause::Range, format!("{typed} must be a finite number"), None),
+        UnitError::NoUnit { number } => (
+            Cause::Unit,
+            format!("{typed} has no unit; {a_name} belongs here, such as \"{number} {unit}\""),
+            Some(units_hint(dimension)),
+        ),
+        UnitError::UnknownUnit { number, unit: symbol, nearest } => (
+            Cause::Unit,
+            match nearest {
+                Some(near) => {
+                    format!("{typed}: there is no unit {symbol}; the nearest is \"{number} {near}\"")
+                }
+                None => format!("{typed}: there is no unit {symbol}; {a_name} belongs here, such as \"{number} {unit}\""),
+            },
+            Some(units_hint(dimension)),
+        ),
+        UnitError::WrongDimension { number, is } => (
+            Cause::Dimension,
+            format!("{typed} is {}; {a_name} belongs here, such as \"{number} {unit}\"", is.a_name()),
+            None,
+        ),
+    }
+}

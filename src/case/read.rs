@@ -1,0 +1,160 @@
+//! From text to a checked case.
+
+use std::path::Path;
+
+use sha2::{Digest, Sha256};
+use toml::de::DeTable;
+
+use super::blocks::read_blocks;
+use super::check;
+use super::edge::{read_probes, read_sides, read_slots};
+use super::error::{CaseError, CaseErrors, Cause};
+use super::model::{Case, Origin};
+use super::parse::{Keys, Reader, Scope};
+use super::tables::{read_air, read_ambient, read_materials, read_mesh, read_section, read_solve};
+
+const TOP: Keys = Keys {
+    what: "the case file",
+    known: &[
+        "title", "section", "ambient", "air", "material", "block", "slot", "sides", "probe",
+        "mesh", "solve",
+    ],
+    later: &["fan", "joint"],
+};
+
+impl Case {
+    /// Reads and checks a case file.
+    ///
+    /// # Errors
+    /// A file that cannot be read; every mistake in it.
+    pub fn read(path: &Path) -> Result<Case, CaseErrors> {
+        let file = path.display().to_string();
+        let failed = |message: String| {
+            let error = CaseError::new(Cause::File, "", message);
+            Err(CaseErrors::new(&file, "", vec![error]))
+        };
+        match std::fs::read(path) {
+            Err(error) => failed(format!("the file cannot be read ({error})")),
+            Ok(bytes) => match String::from_utf8(bytes) {
+                Ok(text) => Case::parse(&text, &file),
+                Err(error) => {
+                    let at = error.utf8_error().valid_up_to();
+                    let line = error.as_bytes().iter().take(at).filter(|b| **b == b'\n').count();
+                    failed(format!("line {} is not UTF-8 text", line + 1))
+                }
+            },
+        }
+    }
+
+    /// Checks the text of a case; `file` is the name shown in messages.
+    ///
+    /// # Errors
+    /// Every mistake in the text.
+    pub fn parse(text: &str, file: &str) -> Result<Case, CaseErrors> {
+        let mut reader = Reader::new(text);
+        let (document, syntax) = DeTable::parse_recoverable(text);
+        if !syntax.is_empty() {
+            let errors = syntax.iter().map(|e| {
+                let error = CaseError::new(Cause::Syntax, "", syntax_message(e.message()));
+                match e.span() {
+                    Some(span) => error.at(span),
+                    None => error,
+                }
+            });
+            return Err(CaseErrors::new(file, text, errors.collect()));
+        }
+        let top = Scope::new(document.get_ref(), 0..0, "");
+        let case = read_case(&mut reader, &top, text, file);
+        match case {
+            Some(mut case) if reader.errors.is_empty() => {
+                reader.warnings.sort_by_key(|w| w.span().map_or(usize::MAX, |s| s.start));
+                case.origin.warnings = reader.warnings;
+                Ok(case)
+            }
+            _ => Err(CaseErrors::new(file, text, reader.errors)),
+        }
+    }
+
+    /// What is allowed but looks doubtful, one sentence each, with its line where it has one.
+    pub fn warnings(&self) -> Vec<String> {
+        let line = |w: &CaseError| {
+            w.span().map(|s| {
+                let before = self.origin.text.get(..s.start).unwrap_or("");
+                1 + before.matches('\n').count()
+            })
+        };
+        let mut warnings: Vec<String> = self
+            .origin
+            .warnings
+            .iter()
+            .map(|w| match line(w) {
+                Some(line) => format!("line {line}: {}", w.message()),
+                None => w.message(),
+            })
+            .collect();
+        warnings.extend(check::doubts(self));
+        warnings
+    }
+}
+
+fn read_case(reader: &mut Reader, top: &Scope, text: &str, file: &str) -> Option<Case> {
+    reader.check_keys(top, &TOP);
+    let title = reader.text(top, "title").map_or_else(|| stem(file), |t| t.value);
+    let section = read_section(reader, top);
+    let ambient = read_ambient(reader, top);
+    let air = read_air(reader, top, ambient.as_ref());
+    let own = read_materials(reader, top);
+    let drafts = read_blocks(reader, top);
+    let slots = read_slots(reader, top);
+    let sides = read_sides(reader, top, section.as_ref(), ambient.as_ref());
+    let probes = read_probes(reader, top);
+    let mesh = read_mesh(reader, top, section.as_ref());
+    let solve = read_solve(reader, top);
+
+    let bodies = check::assemble(reader, section.as_ref(), own, &drafts);
+    if let Some(section) = &section {
+        check::slots(reader, section, &slots, &bodies.blocks, sides.as_ref());
+        check::probes(reader, section, &probes);
+        if let Some(sides) = &sides {
+            check::way_out(reader, top, section, sides, &slots, &bodies.blocks);
+        }
+    }
+    let mut case = Case {
+        title,
+        section: section?,
+        ambient: ambient?,
+        air: air?,
+        materials: bodies.materials,
+        blocks: bodies.blocks.into_iter().map(|b| b.block).collect(),
+        parts: bodies.parts,
+        slots: slots.into_iter().filter_map(|s| s.finish()).collect(),
+        sides: sides?.conditions,
+        probes: probes.into_iter().filter_map(|p| p.finish()).collect(),
+        mesh: mesh?,
+        solve: solve?,
+        origin: Origin {
+            file: file.to_string(),
+            text: text.to_string(),
+            sha256: hexadecimal(&Sha256::digest(text.as_bytes())),
+            warnings: Vec::new(),
+        },
+    };
+    if reader.errors.is_empty() {
+        check::join_edges(&mut case);
+    }
+    Some(case)
+}
+
+fn stem(file: &str) -> String {
+    Path::new(file).file_stem().map_or("case".into(), |s| s.to_string_lossy().into_owned())
+}
+
+fn hexadecimal(bytes: &[u8]) -> String {
+    bytes.iter().map(|b| format!("{b:02x}")).collect()
+}
+
+/// The TOML reader's message on one line.
+fn syntax_message(message: &str) -> String {
+    let line = message.split_whitespace().collect::<Vec<_>>().join(" ");
+    format!("this is not TOML: {line}")
+}

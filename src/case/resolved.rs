@@ -1,0 +1,193 @@
+//! Writes a case back as TOML, all defaults resolved and patterns expanded.
+
+use std::fmt::Write as _;
+
+use ventrise_mesh::{Geometry, Side, Spacing};
+use ventrise_solver::SideCondition;
+
+use super::model::{AirChoice, Case, ProbeShape, side_name};
+use super::setup::spacing;
+use super::units::{Dimension, number, write};
+
+/// Lines of a TOML text.
+#[derive(Default)]
+struct Lines(String);
+
+impl Lines {
+    fn line(&mut self, text: &str) {
+        let written = writeln!(self.0, "{text}");
+        debug_assert!(written.is_ok());
+    }
+
+    fn header(&mut self, header: &str) {
+        self.line("");
+        self.line(header);
+    }
+
+    fn text(&mut self, key: &str, value: &str) {
+        self.line(&format!("{key} = {}", quoted(value)));
+    }
+
+    fn quantity(&mut self, key: &str, si: f64, dimension: Dimension) {
+        self.line(&format!("{key} = {}", quoted(&write(si, dimension.usual_unit()))));
+    }
+
+    fn lengths(&mut self, key: &str, lengths: [f64; 2]) {
+        let [a, b] = lengths.map(|l| quoted(&write(l, "mm")));
+        self.line(&format!("{key} = [{a}, {b}]"));
+    }
+}
+
+/// A TOML basic string.
+fn quoted(text: &str) -> String {
+    let mut out = String::from("\"");
+    for c in text.chars() {
+        match c {
+            '"' => out.push_str("\\\""),
+            '\\' => out.push_str("\\\\"),
+            c if c.is_control() => {
+                let written = write!(out, "\\u{:04X}", u32::from(c));
+                debug_assert!(written.is_ok());
+            }
+            c => out.push(c),
+        }
+    }
+    out.push('"');
+    out
+}
+
+impl Case {
+    /// The case as TOML with every default written out: it reads back to the same case.
+    pub fn resolved(&self) -> String {
+        let mut lines = Lines::default();
+        lines.text("title", &self.title);
+        lines.header("[section]");
+        let axisymmetric = self.section.geometry == Geometry::Axisymmetric;
+        lines.text("geometry", if axisymmetric { "axisymmetric" } else { "planar" });
+        lines.quantity("width", self.section.width, Dimension::Length);
+        lines.quantity("height", self.section.height, Dimension::Length);
+        if let Geometry::Planar { depth } = self.section.geometry {
+            lines.quantity("depth", depth, Dimension::Length);
+        }
+        lines.header("[ambient]");
+        lines.quantity("temperature", self.ambient.temperature, Dimension::Temperature);
+        match self.ambient.altitude {
+            Some(altitude) => lines.line(&format!("altitude = {}", quoted(&write(altitude, "m")))),
+            None => lines.quantity("pressure", self.ambient.pressure, Dimension::Pressure),
+        }
+        self.write_air(&mut lines);
+        self.write_bodies(&mut lines);
+        self.write_edge(&mut lines);
+        for probe in &self.probes {
+            lines.header("[[probe]]");
+            lines.text("name", &probe.name);
+            match probe.shape {
+                ProbeShape::Point(at) => lines.lengths("at", at),
+                ProbeShape::Line { from, to } => {
+                    lines.lengths("from", from);
+                    lines.lengths("to", to);
+                }
+            }
+        }
+        lines.header("[mesh]");
+        match spacing(self) {
+            Spacing::Uniform { nx, ny } => lines.line(&format!("cells = [{nx}, {ny}]")),
+            Spacing::Graded { cell, wall, growth, across, .. } => {
+                lines.quantity("cell", cell, Dimension::Length);
+                lines.quantity("wall", wall, Dimension::Length);
+                lines.line(&format!("growth = {}", number(growth)));
+                lines.line(&format!("across = {across}"));
+            }
+        }
+        lines.header("[solve]");
+        lines.line(&format!("tolerance = {}", number(self.solve.tolerance)));
+        lines.line(&format!("max-iterations = {}", self.solve.max_iterations));
+        lines.0
+    }
+
+    fn write_air(&self, lines: &mut Lines) {
+        lines.header("[air]");
+        match &self.air {
+            AirChoice::Film => lines.text("properties", "film"),
+            AirChoice::Given { air, reference_temperature } => {
+                lines.text("properties", "given");
+                lines.quantity("density", air.density, Dimension::Density);
+                lines.quantity("viscosity", air.viscosity, Dimension::Viscosity);
+                lines.quantity("conductivity", air.conductivity, Dimension::Conductivity);
+                lines.quantity("specific-heat", air.specific_heat, Dimension::SpecificHeat);
+                lines.quantity("expansion", air.expansion, Dimension::Expansion);
+                lines.quantity(
+                    "reference-temperature",
+                    *reference_temperature,
+                    Dimension::Temperature,
+                );
+            }
+        }
+    }
+
+    fn write_bodies(&self, lines: &mut Lines) {
+        for material in &self.materials {
+            lines.header("[[material]]");
+            if let Some(source) = material.source {
+                lines.line(&format!("# from the built-in library: {source}"));
+            }
+            lines.text("name", &material.name);
+            let [x, y] = material.conductivity;
+            if x == y {
+                lines.quantity("conductivity", x, Dimension::Conductivity);
+            } else {
+                lines.quantity("conductivity-x", x, Dimension::Conductivity);
+                lines.quantity("conductivity-y", y, Dimension::Conductivity);
+            }
+            if let Some(density) = material.density {
+                lines.quantity("density", density, Dimension::Density);
+            }
+            if let Some(specific_heat) = material.specific_heat {
+                lines.quantity("specific-heat", specific_heat, Dimension::SpecificHeat);
+            }
+        }
+        for block in &self.blocks {
+            lines.header("[[block]]");
+            if let Some(name) = &block.name {
+                lines.text("name", name);
+            }
+            if let Some(part) = block.part {
+                lines.text("part", &self.parts[part].name);
+            }
+            lines.text("material", &self.materials[block.material].name);
+            lines.lengths("x", block.rectangle.x);
+            lines.lengths("y", block.rectangle.y);
+            lines.quantity("heat", block.heat, Dimension::Power);
+            if let Some(limit) = block.part.and_then(|p| self.parts[p].limit) {
+                lines.quantity("limit", limit, Dimension::Temperature);
+            }
+        }
+    }
+
+    fn write_edge(&self, lines: &mut Lines) {
+        for slot in &self.slots {
+            lines.header("[[slot]]");
+            lines.text("name", &slot.name);
+            lines.text("side", side_name(slot.side));
+            lines.quantity("from", slot.span[0], Dimension::Length);
+            lines.quantity("to", slot.span[1], Dimension::Length);
+            lines.line(&format!("loss = {}", number(slot.loss)));
+        }
+        lines.header("[sides]");
+        for side in Side::ALL {
+            let value = match self.sides[side.index()] {
+                SideCondition::Adiabatic | SideCondition::Sliding(_) => quoted("adiabatic"),
+                SideCondition::Symmetry => quoted("symmetry"),
+                SideCondition::Open => quoted("open"),
+                SideCondition::Temperature(t) => {
+                    format!("{{ temperature = {} }}", quoted(&write(t, "degC")))
+                }
+                SideCondition::Flux(q) => format!("{{ flux = {} }}", quoted(&write(q, "W/m2"))),
+                SideCondition::Film { coefficient, .. } => {
+                    format!("{{ film = {} }}", quoted(&write(coefficient, "W/(m2 K)")))
+                }
+            };
+            lines.line(&format!("{} = {value}", side_name(side)));
+        }
+    }
+}

@@ -1,0 +1,381 @@
+//! The tables that occur once ([section], [ambient], [air], [mesh], [solve]) and [[material]].
+
+use ventrise_mesh::Geometry;
+use ventrise_solver::Air;
+
+use super::error::{Cause, CaseError};
+use super::model::{AirChoice, Ambient, Material, MeshChoice, Section, SolveChoice};
+use super::parse::{Keys, Located, Reader, Scope};
+use super::units::Dimension;
+
+const SECTION: Keys = Keys {
+    what: "[section]",
+    known: &["geometry", "width", "height", "depth", "tilt"],
+    later: &[],
+};
+
+/// Largest extent of a section [m]; anything beyond is a slip of the unit.
+const LARGEST: f64 = 100.0;
+
+/// Reads `[section]`.
+pub(super) fn read_section(reader: &mut Reader, top: &Scope) -> Option<Section> {
+    if !top.has("section") {
+        let error = CaseError::new(Cause::Missing, "", "[section] is missing");
+        reader.report(error.hint("write [section] with geometry, width and height"));
+    }
+    let scope = reader.table(top, "section", "section")?;
+    reader.check_keys(&scope, &SECTION);
+    if !scope.has("geometry") {
+        reader.missing(&scope, "geometry", "\"planar\" or \"axisymmetric\"");
+    }
+    let geometry = reader.word(&scope, "geometry", &["planar", "axisymmetric"], &[]);
+    let mut extent = |key: &str| {
+        let length = reader.required(&scope, key, Dimension::Length, "100 mm")?;
+        let good = length.value > 0.0 && length.value <= LARGEST;
+        reader.within(&scope, key, &length, good, "more than 0 and at most 100 m");
+        good.then_some(length.value)
+    };
+    let (width, height) = (extent("width"), extent("height"));
+    if let Some(tilt) = reader.quantity(&scope, "tilt", Dimension::Angle)
+        && tilt.value != 0.0
+    {
+        let typed = reader.typed(&tilt.span);
+        let message = format!("tilt = {typed}: this version does not have tilted sections yet");
+        let error = CaseError::new(Cause::NotYet, &scope.place, message).at(tilt.span);
+        reader.report(error.hint("leave tilt out, or write tilt = \"0 deg\""));
+    }
+    let geometry = match geometry?.value {
+        "planar" => {
+            let depth = reader.required(&scope, "depth", Dimension::Length, "100 mm")?;
+            let good = depth.value > 0.0 && depth.value <= LARGEST;
+            reader.within(&scope, "depth", &depth, good, "more than 0 and at most 100 m");
+            Geometry::Planar { depth: depth.value }
+        }
+        _ => {
+            if scope.has("depth") {
+                let message = "depth belongs to planar sections only; an axisymmetric section \
+                               stands for the full revolution";
+                let error = CaseError::new(Cause::Conflict, &scope.place, message);
+                reader.report(error.at(scope.span_of("depth")).hint("remove depth"));
+            }
+            Geometry::Axisymmetric
+        }
+    };
+    Some(Section { geometry, width: width?, height: height? })
+}
+
+const AMBIENT: Keys =
+    Keys { what: "[ambient]", known: &["temperature", "altitude", "pressure"], later: &[] };
+
+/// Pressure at sea level in the standard atmosphere [Pa] (ISO 2533).
+const SEA_LEVEL: f64 = 101_325.0;
+
+/// Reads `[ambient]`.
+pub(super) fn read_ambient(reader: &mut Reader, top: &Scope) -> Option<Ambient> {
+    if !top.has("ambient") {
+        let error = CaseError::new(Cause::Missing, "", "[ambient] is missing");
+        reader.report(error.hint("write [ambient] with temperature = \"40 degC\""));
+    }
+    let scope = reader.table(top, "ambient", "ambient")?;
+    reader.check_keys(&scope, &AMBIENT);
+    if !scope.has("temperature") {
+        reader.missing(&scope, "temperature", "\"40 degC\"");
+    }
+    let temperature = reader.temperature(&scope, "temperature").filter(|t| {
+        let good = (173.15..=573.15).contains(&t.value);
+        reader.within(&scope, "temperature", t, good, "from -100 degC to 300 degC")
+    });
+    let altitude = reader.quantity(&scope, "altitude", Dimension::Length);
+    let pressure = reader.quantity(&scope, "pressure", Dimension::Pressure);
+    if let (Some(altitude), Some(_)) = (&altitude, &pressure) {
+        let message = "altitude and pressure are both given";
+        let error = CaseError::new(Cause::Conflict, &scope.place, message);
+        reader.report(error.at(altitude.span.clone()).hint("keep one of the two"));
+    }
+    if let Some(altitude) = &altitude {
+        let good = (-500.0..=11_000.0).contains(&altitude.value);
+        reader.within(&scope, "altitude", altitude, good, "from -500 m to 11000 m");
+    }
+    if let Some(pressure) = &pressure {
+        let good = (1e3..=1e6).contains(&pressure.value);
+        reader.within(&scope, "pressure", pressure, good, "from 1 kPa to 1000 kPa");
+    }
+    let altitude = altitude.map(|a| a.value);
+    let pressure = pressure.map(|p| p.value);
+    Some(Ambient {
+        temperature: temperature?.value,
+        pressure: pressure.unwrap_or_else(|| altitude.map_or(SEA_LEVEL, standard_pressure)),
+        altitude: altitude.or(if pressure.is_none() { Some(0.0) } else { None }),
+    })
+}
+
+/// Pressure of the standard atmosphere [Pa] at a geometric altitude z [m], troposphere.
+/// p = p₀·(1 − L·h/T₀)^(g/(R·L)) with the geopotential altitude h = r·z/(r + z).
+///
+/// # Source
+/// ISO 2533: T₀ = 288.15 K, L = 6.5 K/km, g = 9.80665 m/s², R = 287.05287 J/(kg·K),
+/// r = 6 356 766 m.
+pub(super) fn standard_pressure(altitude: f64) -> f64 {
+    const RADIUS: f64 = 6_356_766.0;
+    let geopotential = RADIUS * altitude / (RADIUS + altitude);
+    SEA_LEVEL * (1.0 - 0.0065 * geopotential / 288.15).powf(9.80665 / (287.05287 * 0.0065))
+}
+
+const AIR_NUMBERS: [(&str, Dimension, &str); 5] = [
+    ("density", Dimension::Density, "1.1 kg/m3"),
+    ("viscosity", Dimension::Viscosity, "1.95e-5 Pa s"),
+    ("conductivity", Dimension::Conductivity, "0.0275 W/(m K)"),
+    ("specific-heat", Dimension::SpecificHeat, "1007 J/(kg K)"),
+    ("expansion", Dimension::Expansion, "0.0032 1/K"),
+];
+
+const AIR: Keys = Keys {
+    what: "[air]",
+    known: &[
+        "properties",
+        "density",
+        "viscosity",
+        "conductivity",
+        "specific-heat",
+        "expansion",
+        "reference-temperature",
+    ],
+    later: &[],
+};
+
+/// Reads `[air]`.
+pub(super) fn read_air(
+    reader: &mut Reader,
+    top: &Scope,
+    ambient: Option<&Ambient>,
+) -> Option<AirChoice> {
+    if !top.has("air") {
+        return Some(AirChoice::Film);
+    }
+    let scope = reader.table(top, "air", "air")?;
+    reader.check_keys(&scope, &AIR);
+    let properties = if scope.has("properties") {
+        reader.word(&scope, "properties", &["film", "given"], &["variable"])?.value
+    } else {
+        "film"
+    };
+    if properties == "film" {
+        let given = AIR.known.iter().filter(|k| **k != "properties" && scope.has(k));
+        for key in given {
+            let typed = reader.typed(&scope.span_of(key));
+            let message = format!(
+                "{key} = {typed} is used only with properties = \"given\"; film properties are \
+                 those of dry air"
+            );
+            let error = CaseError::new(Cause::Conflict, &scope.place, message);
+            let error = error.at(scope.span_of(key));
+            reader.report(error.hint("write properties = \"given\", or remove the number"));
+        }
+        return Some(AirChoice::Film);
+    }
+    let numbers = AIR_NUMBERS.map(|(key, dimension, example)| {
+        let number = reader.required(&scope, key, dimension, example)?;
+        let (good, bound) = if key == "expansion" {
+            (number.value >= 0.0, "0 or more")
+        } else {
+            (number.value > 0.0, "more than 0")
+        };
+        reader.within(&scope, key, &number, good, bound).then_some(number.value)
+    });
+    let reference = reader.temperature(&scope, "reference-temperature");
+    let [density, viscosity, conductivity, specific_heat, expansion] = numbers;
+    let air = Air {
+        density: density?,
+        viscosity: viscosity?,
+        conductivity: conductivity?,
+        specific_heat: specific_heat?,
+        expansion: expansion?,
+    };
+    let ambient = ambient?.temperature;
+    if let Some(reference) = &reference {
+        let change = air.expansion * (ambient - reference.value);
+        if change.abs() > 0.02 {
+            let message = format!(
+                "the density holds at the reference temperature and is used as given; at ambient \
+                 temperature it would be {:.1} % {}",
+                100.0 * change.abs(),
+                if change > 0.0 { "lower" } else { "higher" }
+            );
+            reader.warn(&scope, reference.span.clone(), message);
+        }
+    }
+    let reference_temperature = reference.map_or(ambient, |r| r.value);
+    Some(AirChoice::Given { air, reference_temperature })
+}
+
+const MATERIAL: Keys = Keys {
+    what: "a material",
+    known: &[
+        "name",
+        "conductivity",
+        "conductivity-x",
+        "conductivity-y",
+        "density",
+        "specific-heat",
+    ],
+    later: &["emissivity"],
+};
+
+/// Reads the `[[material]]` tables.
+pub(super) fn read_materials(reader: &mut Reader, top: &Scope) -> Vec<Located<Material>> {
+    let mut materials: Vec<Located<Material>> = Vec::new();
+    for mut scope in reader.tables(top, "material") {
+        let name = reader.text(&scope, "name");
+        if !scope.has("name") {
+            reader.missing(&scope, "name", "\"...\"");
+        }
+        if let Some(name) = &name {
+            scope.place = format!("material \"{}\"", name.value);
+        }
+        reader.check_keys(&scope, &MATERIAL);
+        let both = reader.positive(&scope, "conductivity", Dimension::Conductivity);
+        let x = reader.positive(&scope, "conductivity-x", Dimension::Conductivity);
+        let y = reader.positive(&scope, "conductivity-y", Dimension::Conductivity);
+        let density = reader.positive(&scope, "density", Dimension::Density);
+        let specific_heat = reader.positive(&scope, "specific-heat", Dimension::SpecificHeat);
+        let has = ["conductivity", "conductivity-x", "conductivity-y"].map(|k| scope.has(k));
+        match has {
+            [true, false, false] | [false, true, true] => {}
+            [true, ..] => {
+                let message = "conductivity stands for both directions, so conductivity-x and \
+                               conductivity-y cannot be given beside it";
+                let error = CaseError::new(Cause::Conflict, &scope.place, message);
+                let error = error.at(scope.span_of("conductivity"));
+                reader.report(error.hint("keep conductivity, or the other two"));
+            }
+            [false, true, false] => {
+                reader.missing(&scope, "conductivity-y", "\"0.35 W/(m K)\"");
+            }
+            [false, false, true] => {
+                reader.missing(&scope, "conductivity-x", "\"25 W/(m K)\"");
+            }
+            [false, false, false] => {
+                reader.missing(&scope, "conductivity", "\"0.2 W/(m K)\"");
+            }
+        }
+        let Some(name) = name else { continue };
+        if name.value.eq_ignore_ascii_case("air") {
+            let message = "air is no solid material";
+            let error = CaseError::new(Cause::Name, &scope.place, message).at(name.span.clone());
+            reader.report(error.hint("air fills the section wherever no block is; see [air]"));
+        }
+        if materials.iter().any(|m| m.value.name == name.value) {
+            let message = format!("the name \"{}\" is used by two materials", name.value);
+            let error = CaseError::new(Cause::Name, &scope.place, message).at(name.span.clone());
+            reader.report(error.hint("give every material a name of its own"));
+            continue;
+        }
+        // A conductivity that could not be read is reported already; the name still counts.
+        let conductivity = match (both, x, y) {
+            (Some(k), ..) => [k.value, k.value],
+            (None, Some(x), Some(y)) => [x.value, y.value],
+            _ => [f64::NAN, f64::NAN],
+        };
+        materials.push(Located {
+            value: Material {
+                name: name.value,
+                conductivity,
+                density: density.map(|d| d.value),
+                specific_heat: specific_heat.map(|c| c.value),
+                source: None,
+            },
+            span: name.span,
+        });
+    }
+    materials
+}
+
+const MESH: Keys = Keys {
+    what: "[mesh]",
+    known: &["cell", "cells", "wall", "growth", "across"],
+    later: &[],
+};
+
+/// Reads `[mesh]`.
+pub(super) fn read_mesh(
+    reader: &mut Reader,
+    top: &Scope,
+    section: Option<&Section>,
+) -> Option<MeshChoice> {
+    let defaults = MeshChoice::default();
+    if !top.has("mesh") {
+        return Some(defaults);
+    }
+    let scope = reader.table(top, "mesh", "mesh")?;
+    reader.check_keys(&scope, &MESH);
+    let cell = reader.positive(&scope, "cell", Dimension::Length);
+    let cells = reader.two_counts(&scope, "cells");
+    let wall = reader.positive(&scope, "wall", Dimension::Length);
+    let growth = reader.number(&scope, "growth");
+    let across = reader.count(&scope, "across", 1..=64);
+    if let Some(growth) = &growth {
+        let good = growth.value > 1.0 && growth.value <= 2.0;
+        reader.within(&scope, "growth", growth, good, "more than 1 and at most 2");
+    }
+    if let Some(cells) = &cells {
+        let good = cells.value.iter().all(|n| (1..=20_000).contains(n))
+            && cells.value[0] * cells.value[1] <= 100_000_000;
+        let bound = "from 1 to 20000 along each direction and 100 million in all";
+        reader.within(&scope, "cells", cells, good, bound);
+        for key in ["cell", "wall", "growth", "across"] {
+            if scope.has(key) {
+                let message = format!("{key} has no meaning beside cells, a plain uniform mesh");
+                let error = CaseError::new(Cause::Conflict, &scope.place, message);
+                let error = error.at(scope.span_of(key));
+                reader.report(error.hint(format!("remove {key}, or remove cells")));
+            }
+        }
+    }
+    if let (Some(cell), Some(section)) = (&cell, section) {
+        let good = cell.value <= section.width.max(section.height);
+        reader.within(&scope, "cell", cell, good, "no larger than the section");
+        let good = cell.value >= 1e-5 * section.width.max(section.height);
+        reader.within(&scope, "cell", cell, good, "at least 1/100000 of the section");
+    }
+    if let (Some(wall), Some(cell)) = (&wall, &cell) {
+        let good = wall.value <= cell.value;
+        reader.within(&scope, "wall", wall, good, "no larger than cell");
+    }
+    if let (Some(wall), Some(section)) = (&wall, section) {
+        let good = wall.value >= 1e-6 * section.width.min(section.height);
+        reader.within(&scope, "wall", wall, good, "at least 1/1000000 of the section");
+    }
+    Some(MeshChoice {
+        cell: cell.map(|c| c.value),
+        cells: cells.map(|c| c.value),
+        wall: wall.map(|w| w.value),
+        growth: growth.map_or(defaults.growth, |g| g.value),
+        across: across.map_or(defaults.across, |a| a.value),
+    })
+}
+
+const SOLVE: Keys = Keys {
+    what: "[solve]",
+    known: &["tolerance", "max-iterations"],
+    later: &[],
+};
+
+/// Reads `[solve]`.
+pub(super) fn read_solve(reader: &mut Reader, top: &Scope) -> Option<SolveChoice> {
+    let defaults = SolveChoice::default();
+    if !top.has("solve") {
+        return Some(defaults);
+    }
+    let scope = reader.table(top, "solve", "solve")?;
+    reader.check_keys(&scope, &SOLVE);
+    let tolerance = reader.number(&scope, "tolerance");
+    let max_iterations = reader.count(&scope, "max-iterations", 1..=10_000_000);
+    if let Some(tolerance) = &tolerance {
+        let good = (1e-12..=1e-2).contains(&tolerance.value);
+        reader.within(&scope, "tolerance", tolerance, good, "from 1e-12 to 1e-2");
+    }
+    Some(SolveChoice {
+        tolerance: tolerance.map_or(defaults.tolerance, |t| t.value),
+        max_iterations: max_iterations.map_or(defaults.max_iterations, |m| m.value),
+    })
+}
