@@ -1,3 +1,4 @@
 //! Ventrise: from a case file to part temperatures, vent flows and fields.
 
 pub mod case;
+pub mod output;

@@ -4,7 +4,10 @@
 //! temperature rise, with the numbers read off them. No files, no screen, no clock here.
 
 mod air;
+mod balance;
 mod boundary;
+#[cfg(test)]
+mod by_hand;
 mod conduction;
 mod equations;
 mod error;
@@ -12,7 +15,9 @@ mod fas;
 mod level;
 mod linear;
 mod newton;
+mod numbers;
 mod par;
+mod probe;
 mod problem;
 mod residual;
 mod settings;
@@ -23,8 +28,14 @@ mod state;
 mod transfer;
 
 pub use air::{Air, AirModel};
+pub use balance::{Balance, OpeningFlow, REST_SPEED, SideFlow, balance, side_flows, slot_flows};
 pub use boundary::{SideCondition, Slot};
 pub use error::{ProblemError, SolveError};
+pub use numbers::{
+    Numbers, PartTemperature, block_temperatures, cell_velocities, heat_fluxes, numbers,
+    part_temperatures,
+};
+pub use probe::{Sample, Sampler};
 pub use problem::{Block, Description, Problem, Solid, Sources};
 pub use settings::{Convection, Settings};
 pub use simple::solve;

@@ -62,17 +62,14 @@ pub(super) fn assemble(
         let copies = draft.repeat.as_ref().map_or(1, |r| r.count);
         if bodies.blocks.len() + copies > MOST_BLOCKS {
             let message = format!("with this one the case has more than {MOST_BLOCKS} blocks");
-            reader.report(
-                CaseError::new(Cause::Range, &draft.place, message).at(draft.span.clone()),
-            );
+            reader
+                .report(CaseError::new(Cause::Range, &draft.place, message).at(draft.span.clone()));
             return bodies;
         }
         for copy in 0..copies {
             let step = draft.repeat.as_ref().map_or([0.0; 2], |r| r.step.map(|s| s * copy as f64));
-            let rectangle = Rectangle {
-                x: x.value.map(|x| x + step[0]),
-                y: y.value.map(|y| y + step[1]),
-            };
+            let rectangle =
+                Rectangle { x: x.value.map(|x| x + step[0]), y: y.value.map(|y| y + step[1]) };
             let numbered = |text: &str| {
                 if draft.repeat.is_some() { format!("{text} {}", copy + 1) } else { text.into() }
             };
@@ -173,11 +170,7 @@ fn with_source(mut own: Material) -> Material {
 }
 
 /// Index of a draft's material; the library's are added as they come into use.
-fn material(
-    reader: &mut Reader,
-    materials: &mut Vec<Material>,
-    draft: &Draft,
-) -> Option<usize> {
+fn material(reader: &mut Reader, materials: &mut Vec<Material>, draft: &Draft) -> Option<usize> {
     let name = draft.material.as_ref()?;
     if let Some(index) = materials.iter().position(|m| m.name == name.value) {
         return Some(index);
@@ -219,10 +212,8 @@ fn inside(
     place: &str,
 ) -> bool {
     let mut good = true;
-    let axes = [
-        ("x", rectangle.x, section.width, &draft.x),
-        ("y", rectangle.y, section.height, &draft.y),
-    ];
+    let axes =
+        [("x", rectangle.x, section.width, &draft.x), ("y", rectangle.y, section.height, &draft.y)];
     for (key, [low, high], extent, typed) in axes {
         let slack = SAME * extent;
         let over = if low < -slack {
@@ -261,7 +252,9 @@ fn overlaps(reader: &mut Reader, section: &Section, drafts: &[Draft], blocks: &[
     let mut told: Vec<(&str, &str)> = Vec::new();
     let table = |place: &str| {
         drafts.iter().find(|d| {
-            place.strip_prefix(d.place.as_str()).is_some_and(|r| r.is_empty() || r.starts_with(", copy"))
+            place
+                .strip_prefix(d.place.as_str())
+                .is_some_and(|r| r.is_empty() || r.starts_with(", copy"))
         })
     };
     for (n, b) in blocks.iter().enumerate() {
@@ -518,7 +511,8 @@ pub(super) fn doubts(case: &Case) -> Vec<String> {
     }
     let ambient = case.ambient.temperature;
     let fluxes = case.sides.iter().any(|s| matches!(s, SideCondition::Flux(q) if *q != 0.0));
-    let driven = case.sides.iter().any(|s| matches!(s, SideCondition::Temperature(t) if *t != ambient));
+    let driven =
+        case.sides.iter().any(|s| matches!(s, SideCondition::Temperature(t) if *t != ambient));
     if case.blocks.iter().all(|b| b.heat == 0.0) && !fluxes && !driven {
         doubts.push("there is no heat at all: the air will stay at rest".to_string());
     }

@@ -101,11 +101,8 @@ pub(super) struct Sides {
 }
 
 const SIDES: Keys = Keys { what: "[sides]", known: &SIDE_NAMES, later: &[] };
-const SIDE: Keys = Keys {
-    what: "a side",
-    known: &["temperature", "flux", "film"],
-    later: &["emissivity"],
-};
+const SIDE: Keys =
+    Keys { what: "a side", known: &["temperature", "flux", "film"], later: &["emissivity"] };
 const SIDE_WORDS: [&str; 3] = ["adiabatic", "symmetry", "open"];
 
 /// Reads `[sides]`.
@@ -192,10 +189,9 @@ fn read_side(
                     "flux" => "100 W/m2",
                     _ => "8 W/(m2 K)",
                 };
-                reader.report(error.hint(format!(
-                    "write {key} = {{ {} = \"{example}\" }}",
-                    word.value
-                )));
+                reader.report(
+                    error.hint(format!("write {key} = {{ {} = \"{example}\" }}", word.value)),
+                );
                 None
             }
             _ => {
@@ -230,16 +226,14 @@ fn read_side(
     match (temperature, flux, film) {
         (Some(t), None, None) => Some(SideCondition::Temperature(t.value)),
         (None, Some(q), None) => Some(SideCondition::Flux(q.value)),
-        (None, None, Some(h)) => Some(SideCondition::Film {
-            coefficient: h.value,
-            temperature: ambient?.temperature,
-        }),
+        (None, None, Some(h)) => {
+            Some(SideCondition::Film { coefficient: h.value, temperature: ambient?.temperature })
+        }
         _ => None,
     }
 }
 
-const PROBE: Keys =
-    Keys { what: "a probe", known: &["name", "at", "from", "to"], later: &[] };
+const PROBE: Keys = Keys { what: "a probe", known: &["name", "at", "from", "to"], later: &[] };
 
 /// A `[[probe]]` table as read.
 #[derive(Debug)]

@@ -175,7 +175,10 @@ impl fmt::Display for CaseErrors {
 impl std::error::Error for CaseErrors {}
 
 /// The nearest of some words: fewest edits, at most a third of the word (but one at least).
-pub(crate) fn nearest<'w>(typed: &str, words: impl IntoIterator<Item = &'w str>) -> Option<&'w str> {
+pub(crate) fn nearest<'w>(
+    typed: &str,
+    words: impl IntoIterator<Item = &'w str>,
+) -> Option<&'w str> {
     let typed = typed.trim().to_lowercase();
     let (edits, word) = words
         .into_iter()

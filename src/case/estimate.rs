@@ -82,7 +82,13 @@ impl Estimate {
         // At least 2 K, so that a cold case gets a usable mesh too.
         let grashof = drive * rise.clamp(2.0, 200.0) / (viscosity * viscosity);
         let layer = 5.0 * length * (grashof.max(4.0) / 4.0).powf(-0.25);
-        Estimate { length, rise, air, rayleigh, layer: layer.min(section.width.max(section.height)) }
+        Estimate {
+            length,
+            rise,
+            air,
+            rayleigh,
+            layer: layer.min(section.width.max(section.height)),
+        }
     }
 
     /// Sentences about what the estimate makes doubtful.

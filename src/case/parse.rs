@@ -5,7 +5,7 @@ use std::ops::Range;
 use toml::Spanned;
 use toml::de::{DeTable, DeValue};
 
-use super::error::{Cause, CaseError, nearest, one_of};
+use super::error::{CaseError, Cause, nearest, one_of};
 use super::units::{self, Dimension, UnitError};
 
 /// A value and its byte range in the text.
@@ -137,9 +137,7 @@ impl<'t> Reader<'t> {
         if !good {
             let typed = self.typed(&value.span);
             let message = format!("{key} = {typed} must be {bound}");
-            self.report(
-                CaseError::new(Cause::Range, &scope.place, message).at(value.span.clone()),
-            );
+            self.report(CaseError::new(Cause::Range, &scope.place, message).at(value.span.clone()));
         }
         good
     }
@@ -374,12 +372,7 @@ impl<'t> Reader<'t> {
     }
 
     /// A table within a table; `header` is how it is written.
-    pub fn table<'d>(
-        &mut self,
-        scope: &Scope<'d>,
-        key: &str,
-        place: &str,
-    ) -> Option<Scope<'d>> {
+    pub fn table<'d>(&mut self, scope: &Scope<'d>, key: &str, place: &str) -> Option<Scope<'d>> {
         let value = scope.get(key)?;
         match value.get_ref() {
             DeValue::Table(table) => Some(Scope::new(table, value.span(), place)),
@@ -457,7 +450,9 @@ fn unit_message(
     match error {
         UnitError::NoNumber => (
             Cause::Unit,
-            format!("{typed} does not begin with a number; {a_name} belongs here, such as \"1 {unit}\""),
+            format!(
+                "{typed} does not begin with a number; {a_name} belongs here, such as \"1 {unit}\""
+            ),
             None,
         ),
         UnitError::Comma(fixed) => (
@@ -475,15 +470,22 @@ fn unit_message(
             Cause::Unit,
             match nearest {
                 Some(near) => {
-                    format!("{typed}: there is no unit {symbol}; the nearest is \"{number} {near}\"")
+                    format!(
+                        "{typed}: there is no unit {symbol}; the nearest is \"{number} {near}\""
+                    )
                 }
-                None => format!("{typed}: there is no unit {symbol}; {a_name} belongs here, such as \"{number} {unit}\""),
+                None => format!(
+                    "{typed}: there is no unit {symbol}; {a_name} belongs here, such as \"{number} {unit}\""
+                ),
             },
             Some(units_hint(dimension)),
         ),
         UnitError::WrongDimension { number, is } => (
             Cause::Dimension,
-            format!("{typed} is {}; {a_name} belongs here, such as \"{number} {unit}\"", is.a_name()),
+            format!(
+                "{typed} is {}; {a_name} belongs here, such as \"{number} {unit}\"",
+                is.a_name()
+            ),
             None,
         ),
     }

@@ -3,7 +3,7 @@
 use ventrise_mesh::Geometry;
 use ventrise_solver::Air;
 
-use super::error::{Cause, CaseError};
+use super::error::{CaseError, Cause};
 use super::model::{AirChoice, Ambient, Material, MeshChoice, Section, SolveChoice};
 use super::parse::{Keys, Located, Reader, Scope};
 use super::units::Dimension;
@@ -290,11 +290,8 @@ pub(super) fn read_materials(reader: &mut Reader, top: &Scope) -> Vec<Located<Ma
     materials
 }
 
-const MESH: Keys = Keys {
-    what: "[mesh]",
-    known: &["cell", "cells", "wall", "growth", "across"],
-    later: &[],
-};
+const MESH: Keys =
+    Keys { what: "[mesh]", known: &["cell", "cells", "wall", "growth", "across"], later: &[] };
 
 /// Reads `[mesh]`.
 pub(super) fn read_mesh(
@@ -354,11 +351,7 @@ pub(super) fn read_mesh(
     })
 }
 
-const SOLVE: Keys = Keys {
-    what: "[solve]",
-    known: &["tolerance", "max-iterations"],
-    later: &[],
-};
+const SOLVE: Keys = Keys { what: "[solve]", known: &["tolerance", "max-iterations"], later: &[] };
 
 /// Reads `[solve]`.
 pub(super) fn read_solve(reader: &mut Reader, top: &Scope) -> Option<SolveChoice> {

@@ -108,7 +108,11 @@ impl Dimension {
 
     /// Every accepted unit of this dimension, in its first spelling.
     pub fn units(self) -> impl Iterator<Item = &'static str> {
-        UNITS.iter().filter(move |u| u.dimension == self).filter_map(|u| u.spellings.first()).copied()
+        UNITS
+            .iter()
+            .filter(move |u| u.dimension == self)
+            .filter_map(|u| u.spellings.first())
+            .copied()
     }
 }
 
@@ -367,8 +371,10 @@ fn nearest_unit(symbol: &str, dimension: Dimension) -> Option<&'static str> {
         .iter()
         .flat_map(|u| u.spellings.iter().map(move |s| (distance(s, u.dimension), u, *s)))
         .min_by_key(|(d, ..)| *d)?;
-    let near = best <= 3 || (best <= 5 && spelling.len() > 3) || symbol.eq_ignore_ascii_case(spelling);
-    let hopeless = spelling.chars().count() <= 2 && best > 1 && !spelling.eq_ignore_ascii_case(symbol);
+    let near =
+        best <= 3 || (best <= 5 && spelling.len() > 3) || symbol.eq_ignore_ascii_case(spelling);
+    let hopeless =
+        spelling.chars().count() <= 2 && best > 1 && !spelling.eq_ignore_ascii_case(symbol);
     match () {
         () if matches!(symbol, "C" | "F") && dimension == Dimension::Temperature => {
             Some(if symbol == "C" { "degC" } else { "degF" })

@@ -1,0 +1,3 @@
+//! Files and screen: what a run leaves behind.
+
+pub mod vtk;
