@@ -15,6 +15,7 @@ mod newton;
 mod par;
 mod problem;
 mod residual;
+pub mod samples;
 mod settings;
 mod simple;
 mod simplec;
@@ -22,7 +23,7 @@ mod solution;
 mod state;
 mod transfer;
 
-pub use air::{Air, AirModel};
+pub use air::{Air, AirModel, standard_pressure};
 pub use boundary::{SideCondition, Slot};
 pub use error::{ProblemError, SolveError};
 pub use problem::{Block, Description, Problem, Solid, Sources};
