@@ -1,1 +1,3 @@
 //! Ventrise: from a case file to part temperatures, vent flows and fields.
+
+pub mod benchmark;

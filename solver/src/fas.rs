@@ -50,7 +50,8 @@ impl Stack {
             links.push(Link::new(&mesh, &coarsening));
             mesh = coarsening.mesh;
         }
-        let work = levels.iter().enumerate().map(|(l, level)| Work::new(level, &links[l..])).collect();
+        let work =
+            levels.iter().enumerate().map(|(l, level)| Work::new(level, &links[l..])).collect();
         let newton = Newton::new(&levels[levels.len() - 1]);
         Stack { levels, transfers, work, newton, smoothing: Smoothing::default() }
     }
@@ -158,12 +159,7 @@ impl Stack {
             let transfer = &self.transfers[l];
             residual::evaluate(fine_level, &fine.state, &fine.rhs, &mut fine.residual);
             transfer.restrict_state(fine_level, coarse_level, &fine.state, &mut coarse.state);
-            transfer.restrict_residual(
-                fine_level,
-                coarse_level,
-                &fine.residual,
-                &mut coarse.rhs,
-            );
+            transfer.restrict_residual(fine_level, coarse_level, &fine.residual, &mut coarse.rhs);
             coarse.start.clone_from(&coarse.state);
             // With R·r as right-hand side the coarse residual is R·r + S_c(x̂).
             residual::evaluate(coarse_level, &coarse.state, &coarse.rhs, &mut coarse.residual);

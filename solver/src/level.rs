@@ -291,8 +291,7 @@ impl Level {
             }
         }
         for side in Side::ALL {
-            let source =
-                if is_vertical(side) { &mut self.source.u } else { &mut self.source.v };
+            let source = if is_vertical(side) { &mut self.source.u } else { &mut self.source.v };
             for o in &self.openings[side.index()] {
                 source[o.face] -= o.outward * o.drive * o.area;
             }

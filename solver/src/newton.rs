@@ -155,9 +155,8 @@ impl Newton {
             Some(s) => s,
             None => SymbolicLu::try_new(symbol).map_err(|e| failed(format!("{e:?}")))?,
         };
-        let lu =
-            Lu::try_new_with_symbolic(symbolic.clone(), SparseColMatRef::new(symbol, values))
-                .map_err(|e| failed(format!("{e:?}")))?;
+        let lu = Lu::try_new_with_symbolic(symbolic.clone(), SparseColMatRef::new(symbol, values))
+            .map_err(|e| failed(format!("{e:?}")))?;
         self.symbolic = Some(symbolic);
         self.factors = Some(lu);
         self.factorisations += 1;
@@ -184,9 +183,9 @@ impl Newton {
             for colour in 0..COLOUR_STEP * COLOUR_STEP {
                 let (ci, cj) = (colour % COLOUR_STEP, colour / COLOUR_STEP);
                 let places = || {
-                    (cj..height).step_by(COLOUR_STEP).flat_map(move |j| {
-                        (ci..width).step_by(COLOUR_STEP).map(move |i| (i, j))
-                    })
+                    (cj..height)
+                        .step_by(COLOUR_STEP)
+                        .flat_map(move |j| (ci..width).step_by(COLOUR_STEP).map(move |i| (i, j)))
                 };
                 for (i, j) in places() {
                     field_of(&mut moved, field)[i + j * width] += step;

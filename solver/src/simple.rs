@@ -28,7 +28,11 @@ pub fn solve(
     let coarsest = stack.depth() - 1;
     let end = stack.solve_coarsest(1e-9, true)?;
     if debug {
-        eprintln!("coarsest {}x{} newton -> {end:.2e}", stack.level(coarsest).nx, stack.level(coarsest).ny);
+        eprintln!(
+            "coarsest {}x{} newton -> {end:.2e}",
+            stack.level(coarsest).nx,
+            stack.level(coarsest).ny
+        );
     }
     let mut iteration = 0;
     for l in (0..coarsest).rev() {
@@ -47,7 +51,15 @@ pub fn solve(
                 ..Progress::default()
             };
             if debug {
-                eprintln!("{} {} {:.2e} {:.2e} {:.2e} {:.2e}", iteration, progress.cells, residuals.mass, residuals.momentum_x, residuals.momentum_y, residuals.energy);
+                eprintln!(
+                    "{} {} {:.2e} {:.2e} {:.2e} {:.2e}",
+                    iteration,
+                    progress.cells,
+                    residuals.mass,
+                    residuals.momentum_x,
+                    residuals.momentum_y,
+                    residuals.energy
+                );
             }
             let control = watch(&progress);
             history.push(progress);

@@ -66,7 +66,8 @@ impl Work {
     pub fn new(level: &Level, chain: &[Link]) -> Work {
         let (u, v, cells) = (level.u_open.len(), level.v_open.len(), level.fluid.len());
         let most = u.max(v);
-        let fields = || State { u: vec![0.0; u], v: vec![0.0; v], p: vec![0.0; cells], t: vec![0.0; cells] };
+        let fields =
+            || State { u: vec![0.0; u], v: vec![0.0; v], p: vec![0.0; cells], t: vec![0.0; cells] };
         Work {
             state: fields(),
             rhs: fields(),

@@ -152,9 +152,14 @@ impl Transfer {
             let y = self.y[j];
             let value = |ic: usize| {
                 let at = |jc: usize| ic + jc * (cx + 1);
-                across(&from.u, at(y.parent), y, y.other.map(at), |n| coarse.u_open[n] > 0.0, || {
-                    coarse.u_wall[at(y.parent)] > 0.0
-                })
+                across(
+                    &from.u,
+                    at(y.parent),
+                    y,
+                    y.other.map(at),
+                    |n| coarse.u_open[n] > 0.0,
+                    || coarse.u_wall[at(y.parent)] > 0.0,
+                )
             };
             for (i, u) in row.iter_mut().enumerate() {
                 if fine.u_open[i + j * (nx + 1)] > 0.0 {
@@ -171,9 +176,14 @@ impl Transfer {
                 let x = self.x[i];
                 let value = |jc: usize| {
                     let at = |ic: usize| ic + jc * cx;
-                    across(&from.v, at(x.parent), x, x.other.map(at), |n| coarse.v_open[n] > 0.0, || {
-                        coarse.v_wall[at(x.parent)] > 0.0
-                    })
+                    across(
+                        &from.v,
+                        at(x.parent),
+                        x,
+                        x.other.map(at),
+                        |n| coarse.v_open[n] > 0.0,
+                        || coarse.v_wall[at(x.parent)] > 0.0,
+                    )
                 };
                 *v += scale * blend(b, value);
             }
@@ -245,11 +255,8 @@ fn leans(fine: &[f64], coarse: &[f64], parent: &[usize]) -> Vec<Lean> {
         .enumerate()
         .map(|(f, p)| {
             let offset = 0.5 * (fine[f] + fine[f + 1]) - 0.5 * (coarse[*p] + coarse[p + 1]);
-            let other = if offset > 0.0 {
-                (p + 1 < count).then_some(p + 1)
-            } else {
-                p.checked_sub(1)
-            };
+            let other =
+                if offset > 0.0 { (p + 1 < count).then_some(p + 1) } else { p.checked_sub(1) };
             Lean {
                 parent: *p,
                 other,

@@ -163,7 +163,13 @@ pub(crate) fn y_row(
 /// The pressure outside the face is −(1 + K)·ρ₀u_n²/2 for air entering (ambient total pressure
 /// through the loss) and +K·ρ₀u_n²/2 for air leaving; both oppose the flow.
 #[inline(always)]
-pub(crate) fn opening_force(density: f64, area: f64, loss: f64, outward: f64, speed: f64) -> [f64; 2] {
+pub(crate) fn opening_force(
+    density: f64,
+    area: f64,
+    loss: f64,
+    outward: f64,
+    speed: f64,
+) -> [f64; 2] {
     let factor = if speed * outward < 0.0 { 1.0 + loss } else { loss };
     let slope = factor * density * area * speed.abs();
     [-0.5 * slope * speed, slope]

@@ -28,13 +28,7 @@ impl LineWork {
 }
 
 /// One sweep over all rows, then all columns.
-pub(crate) fn sweep(
-    a: &[Coefficients],
-    x: &mut [f64],
-    b: &[f64],
-    nx: usize,
-    work: &mut LineWork,
-) {
+pub(crate) fn sweep(a: &[Coefficients], x: &mut [f64], b: &[f64], nx: usize, work: &mut LineWork) {
     for colour in 0..2 {
         rows(a, x, b, nx, colour, work);
     }
