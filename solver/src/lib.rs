@@ -20,6 +20,7 @@ mod par;
 mod probe;
 mod problem;
 mod residual;
+pub mod samples;
 mod settings;
 mod simple;
 mod simplec;
@@ -27,7 +28,7 @@ mod solution;
 mod state;
 mod transfer;
 
-pub use air::{Air, AirModel};
+pub use air::{Air, AirModel, standard_pressure};
 pub use balance::{Balance, OpeningFlow, REST_SPEED, SideFlow, balance, side_flows, slot_flows};
 pub use boundary::{SideCondition, Slot};
 pub use error::{ProblemError, SolveError};
