@@ -9,7 +9,8 @@
 //!
 //! (exact to order a² for cells that grow by exp(a)), each at most 1.5 times the smaller of its
 //! two cells, which keeps the cubic rising. The finer lines are x(j/factor): cells that grew by a
-//! ratio g now grow by about g^(1/factor), every line of the coarser mesh is kept bit by bit.
+//! ratio g now grow by about g^(1/factor) (by at most g where sizes go up and down by turns), and
+//! every line of the coarser mesh is kept bit by bit.
 
 use crate::{Mesh, Side};
 
