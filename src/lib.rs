@@ -2,4 +2,5 @@
 
 pub mod benchmark;
 pub mod case;
+pub mod check;
 pub mod output;

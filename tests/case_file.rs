@@ -1,8 +1,11 @@
 //! Case files: what is understood, what is refused and how.
 
+#![allow(clippy::unwrap_used, clippy::expect_used)]
+
+use std::collections::HashSet;
 use std::path::Path;
 
-use ventrise::case::{AirChoice, Case};
+use ventrise::case::{AirChoice, Case, CaseError};
 use ventrise_mesh::{Geometry, Side};
 use ventrise_solver::SideCondition;
 
@@ -89,13 +92,17 @@ fn bad_cases_are_refused_with_their_messages() {
     files.sort();
     assert!(files.len() > 30, "the corpus is not found in {folder:?}");
     let mut wrong = Vec::new();
+    let mut causes = HashSet::new();
     for file in files {
         let text = std::fs::read_to_string(&file).unwrap();
         let name = file.file_name().unwrap().to_string_lossy().into_owned();
         let input = text.split("# expected:\n").next().unwrap();
         let said = match Case::parse(input, &name) {
             Ok(_) => "accepted".to_string(),
-            Err(errors) => errors.to_string(),
+            Err(errors) => {
+                causes.extend(errors.errors().iter().map(CaseError::cause));
+                errors.to_string()
+            }
         };
         let comment: String =
             said.lines().map(|l| format!("# {l}").trim_end().to_string() + "\n").collect();
@@ -108,5 +115,168 @@ fn bad_cases_are_refused_with_their_messages() {
         }
         assert_ne!(said, "accepted", "{name}");
     }
+    assert_eq!(causes.len(), 13, "every cause but an unreadable file: {causes:?}");
     assert!(wrong.is_empty(), "changed messages:\n{}", wrong.join("\n"));
+}
+
+#[test]
+fn check_tells_what_was_understood() {
+    for name in ["vented-planar.toml", "vented-axisymmetric.toml", "every-key.toml"] {
+        let case = reference(name);
+        let generated = ventrise::case::setup::mesh(&case).unwrap();
+        let text = ventrise::check::report(&case, &generated);
+        assert!(text.starts_with(case.title()));
+        for part in case.parts() {
+            assert!(text.contains(&part.name), "{text}");
+        }
+        for slot in case.slots() {
+            assert!(text.contains(&format!("slot {}", slot.name)), "{text}");
+        }
+        let cells = generated.mesh.cell_count();
+        assert!(text.contains(&format!("{cells} cells")), "{text}");
+        let most = if case.mesh_choice().cell.is_some() { 60_000 } else { 40_000 };
+        assert!((8_000..=most).contains(&cells), "{name}: {cells} cells by default");
+        ventrise::case::setup::problem(&case, generated.mesh).unwrap();
+    }
+}
+
+fn warnings_of(text: &str) -> Vec<String> {
+    Case::parse(text, "case.toml").unwrap_or_else(|errors| panic!("{errors}")).warnings()
+}
+
+const PLAIN: &str = r#"
+title = "Plain"
+[section]
+geometry = "planar"
+width = "120 mm"
+height = "160 mm"
+depth = "0.3 m"
+[ambient]
+temperature = "40 degC"
+[[block]]
+name = "core"
+material = "aluminium"
+x = ["40 mm", "80 mm"]
+y = ["40 mm", "120 mm"]
+heat = "15 W"
+limit = "85 degC"
+[[slot]]
+name = "floor"
+side = "bottom"
+from = "10 mm"
+to = "30 mm"
+loss = 1.5
+[[slot]]
+name = "roof"
+side = "top"
+from = "10 mm"
+to = "30 mm"
+loss = 1.5
+"#;
+
+#[test]
+fn doubtful_but_possible_cases_are_accepted_with_warnings() {
+    assert_eq!(warnings_of(PLAIN), Vec::<String>::new());
+    for (from, to, warning) in [
+        ("limit = \"85 degC\"", "", "part \"core\" has heat but no limit to be judged by"),
+        ("\"85 degC\"", "\"30 degC\"", "the limit of part \"core\" is not above ambient"),
+        ("\"15 W\"", "\"0 W\"", "there is no heat at all: the air will stay at rest"),
+        ("\"15 W\"", "\"-2 W\"", "line 15: block \"core\": heat below zero: the block is cooled"),
+        (
+            "side = \"top\"\nfrom = \"10 mm\"\nto = \"30 mm\"",
+            "side = \"bottom\"\nfrom = \"90 mm\"\nto = \"110 mm\"",
+            "all slots lie at one height",
+        ),
+        ("\"15 W\"", "\"9 kW\"", "by hand the surfaces get about"),
+        (
+            "[ambient]",
+            "[sides]\nleft = { flux = \"-5 W/m2\" }\n[ambient]",
+            "the flux of the left side is below zero",
+        ),
+        (
+            "[ambient]",
+            "[sides]\nleft = { temperature = \"400 degC\" }\n[ambient]",
+            "the left side is 360 K from ambient",
+        ),
+    ] {
+        assert!(PLAIN.contains(from), "{from}");
+        let text = PLAIN.replace(from, to);
+        let said = warnings_of(&text);
+        assert!(said.iter().any(|w| w.starts_with(warning)), "{warning}: {said:?}");
+    }
+}
+
+#[test]
+fn the_reference_temperature_leaves_the_given_density_alone() {
+    let air = "[air]\nproperties = \"given\"\ndensity = \"1.2 kg/m3\"\nviscosity = \"1.9e-5 Pa s\"\n\
+               conductivity = \"0.027 W/(m K)\"\nspecific-heat = \"1007 J/(kg K)\"\n\
+               expansion = \"0.0033 1/K\"\nreference-temperature = \"20 degC\"\n";
+    let text = PLAIN.replace("[ambient]", &format!("{air}[ambient]"));
+    let case = Case::parse(&text, "case.toml").unwrap();
+    let AirChoice::Given { air, reference_temperature } = *case.air() else { panic!() };
+    assert_eq!((air.density, reference_temperature), (1.2, 293.15));
+    let said = case.warnings();
+    assert!(said.iter().any(|w| w.contains("6.6 % lower")), "{said:?}");
+}
+
+#[test]
+fn pressure_follows_altitude_by_the_standard_atmosphere() {
+    // ISO 2533, geometric altitude; values as tabulated in a published library of it.
+    for (altitude, pressure) in [("0 m", 101325.0), ("1000 m", 89876.0), ("3 000 m", 70121.0)] {
+        let altitude = altitude.replace(' ', "").replace('m', " m");
+        let text = PLAIN.replace("\"40 degC\"", &format!("\"40 degC\"\naltitude = \"{altitude}\""));
+        let case = Case::parse(&text, "case.toml").unwrap();
+        assert!((case.ambient().pressure - pressure).abs() < 1.0, "{:?}", case.ambient());
+    }
+}
+
+#[test]
+fn a_part_sums_its_blocks_and_touching_edges_are_the_same_number() {
+    let more = "[[block]]\nname = \"fin\"\npart = \"core\"\nmaterial = \"aluminium\"\n\
+                x = [\"80 mm\", \"90 mm\"]\ny = [\"40 mm\", \"40.1 mm\"]\nheat = \"0.5 W\"\n\
+                repeat = { count = 11, step-y = \"0.3 mm\" }\n[[slot]]";
+    let text = PLAIN.replacen("[[slot]]", more, 1);
+    let text = text.replacen(
+        "[[slot]]",
+        "[[block]]\nmaterial = \"copper\"\nx = [\"80 mm\", \"90 mm\"]\ny = [\"43.1 mm\", \"44 mm\"]\n[[slot]]",
+        1,
+    );
+    let case = Case::parse(&text, "case.toml").unwrap_or_else(|e| panic!("{e}"));
+    assert_eq!(case.parts().len(), 1);
+    assert_eq!(case.parts()[0].blocks.len(), 12);
+    assert!((case.parts()[0].heat - 20.5).abs() < 1e-12);
+    assert_eq!(case.parts()[0].limit, Some(358.15));
+    let blocks = case.blocks();
+    assert_eq!(blocks[11].rectangle.y[1], blocks[12].rectangle.y[0]);
+    assert_eq!(blocks[12].part, None);
+}
+
+#[test]
+fn line_ends_marks_and_plain_ways_of_writing_are_understood() {
+    let windows = PLAIN.replace('\n', "\r\n");
+    let dotted =
+        PLAIN.replace("[ambient]\ntemperature = \"40 degC\"", "[ambient]\ntemperature = '40°C'");
+    let marked = format!("\u{feff}{PLAIN}");
+    let whole = PLAIN.replacen("loss = 1.5", "loss = 1_000", 1);
+    for text in [windows, dotted, marked, whole] {
+        let case = Case::parse(&text, "case.toml").unwrap_or_else(|e| panic!("{e}"));
+        assert_eq!(case.ambient().temperature, 313.15);
+        assert!(case.slots()[0].loss == 1.5 || case.slots()[0].loss == 1000.0);
+    }
+}
+
+#[test]
+fn a_file_that_cannot_be_read_is_named() {
+    let errors = Case::read(Path::new("no-such-folder/case.toml")).unwrap_err();
+    let said = errors.to_string();
+    assert!(said.starts_with("no-such-folder/case.toml: the file cannot be read"), "{said}");
+}
+
+#[test]
+fn the_fingerprint_is_that_of_the_text() {
+    let case = Case::parse(PLAIN, "case.toml").unwrap();
+    let other = Case::parse(&format!("{PLAIN}# remark\n"), "case.toml").unwrap();
+    // By `sha256sum` of GNU coreutils.
+    assert_eq!(case.sha256(), "ed2fcb153763b25f9aab45850a1f1ee67e7edb4101a50729c5b22ba14fbfe462");
+    assert_ne!(case.sha256(), other.sha256());
 }

@@ -428,8 +428,8 @@ pub(super) fn way_out(
         }
     }
     if !way_out {
-        let message = "the section has no way out for the heat: no slot, and no side that is \
-                       open, has a temperature or a film coefficient";
+        let message = "the section has no way out for the heat: no slot, no open side, no side \
+                       with a temperature or a film";
         let span = top.get("sides").or(top.get("section")).map_or(0..0, |v| v.span());
         let error = CaseError::new(Cause::NoWayOut, "", message).at(span);
         reader.report(error.hint(

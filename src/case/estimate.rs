@@ -24,6 +24,17 @@ pub struct Estimate {
     pub rayleigh: f64,
     /// Thickness of the natural-convection layer at the top of a heated surface [m].
     pub layer: f64,
+    /// Draught through the slots, when some lie above others.
+    pub draught: Option<Draught>,
+}
+
+/// The draught that heat drives through slots, all air mixed: an upper bound.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Draught {
+    /// Volume flow [m³/s].
+    pub flow: f64,
+    /// Rise of the leaving air above ambient [K].
+    pub rise: f64,
 }
 
 impl Estimate {
@@ -82,13 +93,8 @@ impl Estimate {
         // At least 2 K, so that a cold case gets a usable mesh too.
         let grashof = drive * rise.clamp(2.0, 200.0) / (viscosity * viscosity);
         let layer = 5.0 * length * (grashof.max(4.0) / 4.0).powf(-0.25);
-        Estimate {
-            length,
-            rise,
-            air,
-            rayleigh,
-            layer: layer.min(section.width.max(section.height)),
-        }
+        let layer = layer.min(section.width.max(section.height));
+        Estimate { length, rise, air, rayleigh, layer, draught: draught(case, &air) }
     }
 
     /// Sentences about what the estimate makes doubtful.
@@ -108,4 +114,34 @@ impl Estimate {
         }
         doubts
     }
+}
+
+/// Balance of draught and losses for air heated all at once at the middle height of the heat:
+/// ρ·g·β·ΔT·H = ρ/2·V²·(C_in + C_out) with C = 1/(Σ A/√(1 + K))² of the slots below and above, and
+/// heat = ρ·c_p·V·ΔT, so V³ = 2·g·β·H·heat/(ρ·c_p·(C_in + C_out)).
+fn draught(case: &Case, air: &Air) -> Option<Draught> {
+    let heat: f64 = case.blocks().iter().map(|b| b.heat.max(0.0)).sum();
+    let middle =
+        case.blocks().iter().map(|b| b.heat.max(0.0) * 0.5 * (b.rectangle.y[0] + b.rectangle.y[1]));
+    let middle = middle.sum::<f64>() / heat;
+    // Conductance A/sqrt(1 + K) and its mean height, below and above the heat.
+    let (mut below, mut above, mut top) = (0.0, 0.0, 0.0);
+    for slot in case.slots() {
+        let conductance = case.slot_area(slot) / (1.0 + slot.loss).sqrt();
+        let height = case.slot_height(slot);
+        if height < middle {
+            below += conductance;
+        } else {
+            above += conductance;
+            top += conductance * height;
+        }
+    }
+    if !(heat > 0.0 && below > 0.0 && above > 0.0) {
+        return None;
+    }
+    let chimney = top / above - middle;
+    let resistance = below.powi(-2) + above.powi(-2);
+    let capacity = air.density * air.specific_heat;
+    let flow = (2.0 * GRAVITY * air.expansion * chimney * heat / (capacity * resistance)).cbrt();
+    (flow > 0.0).then(|| Draught { flow, rise: heat / (capacity * flow) })
 }

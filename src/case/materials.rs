@@ -109,3 +109,27 @@ const LIBRARY: &[LibraryMaterial] = &[
     solid("concrete", 1.6, 2300.0, 900.0, 0.92, "normal weight; handbook value, from memory (1.2-2.0); emissivity: from memory"),
     solid("granite", 2.8, 2650.0, 800.0, 0.90, "handbook value, from memory (2-3.5); emissivity: from memory"),
 ];
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn the_library_is_large_named_once_and_within_the_bounds_of_solids() {
+        assert!(LIBRARY.len() >= 25);
+        let mut names: Vec<&str> = LIBRARY.iter().map(|m| m.name).collect();
+        names.sort_unstable();
+        names.dedup();
+        assert_eq!(names.len(), LIBRARY.len());
+        for m in LIBRARY {
+            assert!(m.conductivity.iter().all(|k| (0.02..=400.0).contains(k)), "{m:?}");
+            assert!((10.0..=9000.0).contains(&m.density), "{m:?}");
+            // Volumetric heat capacity of dense solids is 1 to 4 MJ/(m3 K); foams and wool less.
+            let dense = m.density > 400.0;
+            let capacity = m.density * m.specific_heat;
+            assert!(!dense || (0.8e6..=4.5e6).contains(&capacity), "{m:?}");
+            assert!((0.02..1.0).contains(&m.emissivity), "{m:?}");
+            assert!(m.source.len() > 20, "{m:?}");
+        }
+    }
+}

@@ -21,5 +21,5 @@ pub use error::{CaseError, CaseErrors, Cause};
 pub use estimate::Estimate;
 pub use model::{
     AirChoice, Ambient, Block, Case, Material, MeshChoice, Part, Probe, ProbeShape, Section, Slot,
-    SolveChoice,
+    SolveChoice, side_name,
 };

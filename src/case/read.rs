@@ -53,18 +53,20 @@ impl Case {
     pub fn parse(text: &str, file: &str) -> Result<Case, CaseErrors> {
         let mut reader = Reader::new(text);
         let (document, syntax) = DeTable::parse_recoverable(text);
-        if !syntax.is_empty() {
-            let errors = syntax.iter().map(|e| {
-                let error = CaseError::new(Cause::Syntax, "", syntax_message(e.message()));
-                match e.span() {
-                    Some(span) => error.at(span),
-                    None => error,
-                }
+        let mut syntax_errors: Vec<CaseError> = Vec::new();
+        for e in &syntax {
+            let error = CaseError::new(Cause::Syntax, "", syntax_message(e.message()));
+            syntax_errors.push(match e.span() {
+                Some(span) => error.at(span),
+                None => error,
             });
-            return Err(CaseErrors::new(file, text, errors.collect()));
         }
         let top = Scope::new(document.get_ref(), 0..0, "");
         let case = read_case(&mut reader, &top, text, file);
+        if !syntax_errors.is_empty() {
+            syntax_errors.extend(sure_despite(text, &syntax_errors, reader.errors));
+            return Err(CaseErrors::new(file, text, syntax_errors));
+        }
         match case {
             Some(mut case) if reader.errors.is_empty() => {
                 reader.warnings.sort_by_key(|w| w.span().map_or(usize::MAX, |s| s.start));
@@ -143,6 +145,21 @@ fn read_case(reader: &mut Reader, top: &Scope, text: &str, file: &str) -> Option
         check::join_edges(&mut case);
     }
     Some(case)
+}
+
+/// Of the mistakes found in a text that is not TOML throughout, those that concern a single value
+/// on a line that was read well.
+fn sure_despite(text: &str, syntax: &[CaseError], found: Vec<CaseError>) -> Vec<CaseError> {
+    let line = |e: &CaseError| {
+        let before = text.get(..e.span()?.start)?;
+        Some(before.matches('\n').count())
+    };
+    let broken: Vec<Option<usize>> = syntax.iter().map(line).collect();
+    let single = |e: &CaseError| {
+        matches!(e.cause(), Cause::Unit | Cause::Dimension | Cause::Range)
+            && !broken.contains(&line(e))
+    };
+    found.into_iter().filter(single).collect()
 }
 
 fn stem(file: &str) -> String {

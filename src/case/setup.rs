@@ -50,8 +50,8 @@ pub fn layout(case: &Case) -> Layout {
 
 /// How fine the mesh is to be, defaults resolved.
 ///
-/// `cell`: 1/60 of the section's larger extent, at most a quarter of the smallest slot.
-/// `wall`: so that the estimated boundary layer holds nine cells at the growth ratio, between
+/// `cell`: 1/80 of the section's larger extent, at most a quarter of the smallest slot.
+/// `wall`: so that the estimated boundary layer holds eleven cells at the growth ratio, between
 /// 1/40 and the whole of `cell`.
 pub fn spacing(case: &Case) -> Spacing {
     let choice = case.mesh_choice();
@@ -60,13 +60,13 @@ pub fn spacing(case: &Case) -> Spacing {
     }
     let section = case.section();
     let slots = case.slots().iter().map(|s| s.span[1] - s.span[0]);
-    let largest = (section.width.max(section.height) / 60.0)
+    let largest = (section.width.max(section.height) / 80.0)
         .min(slots.fold(f64::INFINITY, f64::min) / 4.0)
         .max(section.width.max(section.height) / 1000.0);
     let largest = rounded_value(largest, 3);
     let cell = choice.cell.unwrap_or_else(|| choice.wall.map_or(largest, |w| w.max(largest)));
     let ratio = choice.growth;
-    let cells_in_layer = 9;
+    let cells_in_layer = 11;
     let layer_in_walls = (ratio.powi(cells_in_layer) - 1.0) / (ratio - 1.0);
     let wall = choice.wall.unwrap_or_else(|| {
         let wall = Estimate::of(case).layer / layer_in_walls;

@@ -44,12 +44,17 @@ pub(super) fn read_section(reader: &mut Reader, top: &Scope) -> Option<Section> 
         let error = CaseError::new(Cause::NotYet, &scope.place, message).at(tilt.span);
         reader.report(error.hint("leave tilt out, or write tilt = \"0 deg\""));
     }
+    let depth = reader.quantity(&scope, "depth", Dimension::Length);
+    if let Some(depth) = &depth {
+        let good = depth.value > 0.0 && depth.value <= LARGEST;
+        reader.within(&scope, "depth", depth, good, "more than 0 and at most 100 m");
+    }
     let geometry = match geometry?.value {
         "planar" => {
-            let depth = reader.required(&scope, "depth", Dimension::Length, "100 mm")?;
-            let good = depth.value > 0.0 && depth.value <= LARGEST;
-            reader.within(&scope, "depth", &depth, good, "more than 0 and at most 100 m");
-            Geometry::Planar { depth: depth.value }
+            if !scope.has("depth") {
+                reader.missing(&scope, "depth", "\"100 mm\"");
+            }
+            Geometry::Planar { depth: depth?.value }
         }
         _ => {
             if scope.has("depth") {

@@ -160,15 +160,35 @@ const UNITS: &[Unit] = &[
     unit(&["l/s", "L/s"], Dimension::VolumeFlow, 1.0, 1e3),
     unit(&["l/min", "L/min"], Dimension::VolumeFlow, 1.0, 6e4),
     unit(&["cfm"], Dimension::VolumeFlow, 0.028316846592, 60.0),
-    unit(&["W/(m K)", "W/(K m)", "W/mK", "W/m K", "W/m/K"], Dimension::Conductivity, 1.0, 1.0),
-    unit(&["W/(m2 K)", "W/(K m2)", "W/m2K", "W/m2 K", "W/m2/K"], Dimension::Film, 1.0, 1.0),
+    unit(
+        &["W/(m K)", "W/(K m)", "W/(mK)", "W/mK", "W/m K", "W/m/K"],
+        Dimension::Conductivity,
+        1.0,
+        1.0,
+    ),
+    unit(
+        &["W/(m2 K)", "W/(K m2)", "W/(m2K)", "W/m2K", "W/m2 K", "W/m2/K"],
+        Dimension::Film,
+        1.0,
+        1.0,
+    ),
     unit(&["W/m2"], Dimension::Flux, 1.0, 1.0),
     unit(&["W/cm2"], Dimension::Flux, 1e4, 1.0),
     unit(&["K m2/W", "m2 K/W", "m2K/W", "Km2/W"], Dimension::AreaResistance, 1.0, 1.0),
     unit(&["K cm2/W", "cm2 K/W", "cm2K/W", "Kcm2/W"], Dimension::AreaResistance, 1.0, 1e4),
     unit(&["K/W"], Dimension::Resistance, 1.0, 1.0),
-    unit(&["J/(kg K)", "J/(K kg)", "J/kgK", "J/kg K", "J/kg/K"], Dimension::SpecificHeat, 1.0, 1.0),
-    unit(&["kJ/(kg K)", "kJ/kgK", "kJ/kg K", "kJ/kg/K"], Dimension::SpecificHeat, 1e3, 1.0),
+    unit(
+        &["J/(kg K)", "J/(K kg)", "J/(kgK)", "J/kgK", "J/kg K", "J/kg/K"],
+        Dimension::SpecificHeat,
+        1.0,
+        1.0,
+    ),
+    unit(
+        &["kJ/(kg K)", "kJ/(kgK)", "kJ/kgK", "kJ/kg K", "kJ/kg/K"],
+        Dimension::SpecificHeat,
+        1e3,
+        1.0,
+    ),
     unit(&["kg/m3"], Dimension::Density, 1.0, 1.0),
     unit(&["g/cm3"], Dimension::Density, 1e3, 1.0),
     unit(&["Pa s", "Pas", "kg/(m s)"], Dimension::Viscosity, 1.0, 1.0),
@@ -212,7 +232,7 @@ pub enum UnitError {
     },
 }
 
-/// Reads a quantity such as `"80 mm"` and returns it in SI.
+/// Reads a quantity such as `"80 mm"` and returns it in SI; a conversion keeps 15 digits.
 ///
 /// # Errors
 /// No number, no unit, an unknown unit, a unit of another dimension, a number that is not finite.
@@ -381,5 +401,148 @@ fn nearest_unit(symbol: &str, dimension: Dimension) -> Option<&'static str> {
         }
         () if near && !(hopeless && unit.dimension != dimension) => unit.spellings.first().copied(),
         () => None,
+    }
+}
+
+#[cfg(test)]
+#[allow(clippy::unwrap_used, clippy::expect_used)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn every_unit_of_the_table_reads_as_its_si_value() {
+        use Dimension::*;
+        let pi = std::f64::consts::PI;
+        // By the definitions in the SI brochure (9th edition) and NIST SP 811, appendix B.
+        for (text, dimension, si) in [
+            ("1 m", Length, 1.0),
+            ("80 mm", Length, 0.08),
+            ("80mm", Length, 0.08),
+            ("9 mm", Length, 0.009),
+            (" 2.5  cm ", Length, 0.025),
+            ("35 um", Length, 35e-6),
+            ("35 µm", Length, 35e-6),
+            ("35 μm", Length, 35e-6),
+            ("1 in", Length, 0.0254),
+            ("1 ft", Length, 0.3048),
+            ("32 W", Power, 32.0),
+            ("250 mW", Power, 0.25),
+            ("1.2 kW", Power, 1200.0),
+            ("-3 W", Power, -3.0),
+            ("\u{2212}3 W", Power, -3.0),
+            ("40 degC", Temperature, 313.15),
+            ("40 °C", Temperature, 313.15),
+            ("40°C", Temperature, 313.15),
+            ("40 ℃", Temperature, 313.15),
+            ("-40 degF", Temperature, 233.15),
+            ("86 °F", Temperature, 303.15),
+            ("300 K", Temperature, 300.0),
+            ("90 deg", Angle, pi / 2.0),
+            ("90°", Angle, pi / 2.0),
+            ("2 Pa", Pressure, 2.0),
+            ("101.325 kPa", Pressure, 101_325.0),
+            ("1013.25 hPa", Pressure, 101_325.0),
+            ("1 mmH2O", Pressure, 9.80665),
+            ("1 mmH₂O", Pressure, 9.80665),
+            ("1 inH2O", Pressure, 249.08891),
+            ("36 m3/h", VolumeFlow, 0.01),
+            ("36 m³/h", VolumeFlow, 0.01),
+            ("36 m^3 / h", VolumeFlow, 0.01),
+            ("0.5 m3/s", VolumeFlow, 0.5),
+            ("5 l/s", VolumeFlow, 0.005),
+            ("60 l/min", VolumeFlow, 0.001),
+            ("1 cfm", VolumeFlow, 4.7194744320e-4),
+            ("0.2 W/(m K)", Conductivity, 0.2),
+            ("0.2 W/(m·K)", Conductivity, 0.2),
+            ("0.2 W/(m*K)", Conductivity, 0.2),
+            ("0.2 W/mK", Conductivity, 0.2),
+            ("0.2W/(mK)", Conductivity, 0.2),
+            ("0.2 W / (m K)", Conductivity, 0.2),
+            ("8 W/(m2 K)", Film, 8.0),
+            ("8 W/(m² K)", Film, 8.0),
+            ("8 W/m²K", Film, 8.0),
+            ("100 W/m2", Flux, 100.0),
+            ("1 W/cm²", Flux, 1e4),
+            ("0.6 K m2/W", AreaResistance, 0.6),
+            ("0.6 K·cm²/W", AreaResistance, 0.6e-4),
+            ("0.6 cm2 K/W", AreaResistance, 0.6e-4),
+            ("2 K/W", Resistance, 2.0),
+            ("1007 J/(kg K)", SpecificHeat, 1007.0),
+            ("1.007 kJ/(kg K)", SpecificHeat, 1007.0),
+            ("2700 kg/m3", Density, 2700.0),
+            ("2.7 g/cm3", Density, 2700.0),
+            ("1.95e-5 Pa s", Viscosity, 1.95e-5),
+            ("1.95E-5 Pa·s", Viscosity, 1.95e-5),
+            ("1.5e-5 m2/s", Diffusivity, 1.5e-5),
+            ("0.0032 1/K", Expansion, 0.0032),
+            ("0.0032 K⁻¹", Expansion, 0.0032),
+            ("2 s", Time, 2.0),
+            ("2 min", Time, 120.0),
+            ("2 h", Time, 7200.0),
+            ("60 %", Share, 0.6),
+            ("60%", Share, 0.6),
+            (".5 m", Length, 0.5),
+            ("5. m", Length, 5.0),
+            ("+5 m", Length, 5.0),
+        ] {
+            let read = parse(text, dimension);
+            let read = read.unwrap_or_else(|e| panic!("{text:?}: {e:?}"));
+            // 15 digits are kept in a conversion.
+            assert!((read - si).abs() <= 5e-15 * si.abs(), "{text:?} reads as {read}, not {si}");
+        }
+    }
+
+    #[test]
+    fn symbols_are_exact_in_case_and_near_misses_are_named() {
+        for (text, dimension, nearest) in [
+            ("80 MM", Dimension::Length, Some("mm")),
+            ("80 Mm", Dimension::Length, Some("mm")),
+            ("5 w", Dimension::Power, Some("W")),
+            ("5 kw", Dimension::Power, Some("kW")),
+            ("40 C", Dimension::Temperature, Some("degC")),
+            ("40 degc", Dimension::Temperature, Some("degC")),
+            ("5 Watt", Dimension::Power, None),
+            ("5 parsec", Dimension::Length, None),
+            ("5 W/(mm K)", Dimension::Conductivity, Some("W/(m K)")),
+        ] {
+            let Err(UnitError::UnknownUnit { nearest: found, .. }) = parse(text, dimension) else {
+                panic!("{text:?}: {:?}", parse(text, dimension));
+            };
+            assert_eq!(found, nearest, "{text:?}");
+        }
+    }
+
+    #[test]
+    fn what_is_no_quantity_is_told_apart() {
+        let length = |text| parse(text, Dimension::Length).unwrap_err();
+        assert_eq!(length(""), UnitError::NoNumber);
+        assert_eq!(length("mm"), UnitError::NoNumber);
+        assert_eq!(length("e5 mm"), UnitError::NoNumber);
+        assert_eq!(length("80"), UnitError::NoUnit { number: "80".into() });
+        assert_eq!(length("1,5 mm"), UnitError::Comma("1.5 mm".into()));
+        assert_eq!(length("inf mm"), UnitError::NotFinite);
+        assert_eq!(length("-NaN mm"), UnitError::NotFinite);
+        assert_eq!(length("1e400 mm"), UnitError::NotFinite);
+        let wrong = UnitError::WrongDimension { number: "3".into(), is: Dimension::Power };
+        assert_eq!(length("3 W"), wrong);
+    }
+
+    #[test]
+    fn spellings_are_unique_and_normal() {
+        let mut seen = std::collections::HashSet::new();
+        for unit in UNITS {
+            for spelling in unit.spellings {
+                assert!(seen.insert(spelling), "{spelling} twice");
+                assert_eq!(normalised(spelling), *spelling);
+            }
+        }
+    }
+
+    #[test]
+    fn written_values_are_short_and_read_back() {
+        assert_eq!(write(0.009, "mm"), "9 mm");
+        assert_eq!(write(313.15, "degC"), "40 degC");
+        assert_eq!(parse(&write(0.1 + 0.2, "mm"), Dimension::Length), Ok(0.1 + 0.2));
+        assert_eq!(write(1.95e-5, "Pa s"), "1.95e-5 Pa s");
     }
 }
