@@ -1,7 +1,7 @@
 //! The tables that occur once ([section], [ambient], [air], [mesh], [solve]) and [[material]].
 
 use ventrise_mesh::Geometry;
-use ventrise_solver::Air;
+use ventrise_solver::{Air, standard_pressure};
 
 use super::error::{CaseError, Cause};
 use super::model::{AirChoice, Ambient, Material, MeshChoice, Section, SolveChoice};
@@ -72,9 +72,6 @@ pub(super) fn read_section(reader: &mut Reader, top: &Scope) -> Option<Section> 
 const AMBIENT: Keys =
     Keys { what: "[ambient]", known: &["temperature", "altitude", "pressure"], later: &[] };
 
-/// Pressure at sea level in the standard atmosphere [Pa] (ISO 2533).
-const SEA_LEVEL: f64 = 101_325.0;
-
 /// Reads `[ambient]`.
 pub(super) fn read_ambient(reader: &mut Reader, top: &Scope) -> Option<Ambient> {
     if !top.has("ambient") {
@@ -87,8 +84,8 @@ pub(super) fn read_ambient(reader: &mut Reader, top: &Scope) -> Option<Ambient> 
         reader.missing(&scope, "temperature", "\"40 degC\"");
     }
     let temperature = reader.temperature(&scope, "temperature").filter(|t| {
-        let good = (173.15..=573.15).contains(&t.value);
-        reader.within(&scope, "temperature", t, good, "from -100 degC to 300 degC")
+        let good = (183.15..=573.15).contains(&t.value);
+        reader.within(&scope, "temperature", t, good, "from -90 degC to 300 degC")
     });
     let altitude = reader.quantity(&scope, "altitude", Dimension::Length);
     let pressure = reader.quantity(&scope, "pressure", Dimension::Pressure);
@@ -109,21 +106,9 @@ pub(super) fn read_ambient(reader: &mut Reader, top: &Scope) -> Option<Ambient> 
     let pressure = pressure.map(|p| p.value);
     Some(Ambient {
         temperature: temperature?.value,
-        pressure: pressure.unwrap_or_else(|| altitude.map_or(SEA_LEVEL, standard_pressure)),
+        pressure: pressure.unwrap_or_else(|| standard_pressure(altitude.unwrap_or(0.0))),
         altitude: altitude.or(if pressure.is_none() { Some(0.0) } else { None }),
     })
-}
-
-/// Pressure of the standard atmosphere [Pa] at a geometric altitude z [m], troposphere.
-/// p = p₀·(1 − L·h/T₀)^(g/(R·L)) with the geopotential altitude h = r·z/(r + z).
-///
-/// # Source
-/// ISO 2533: T₀ = 288.15 K, L = 6.5 K/km, g = 9.80665 m/s², R = 287.05287 J/(kg·K),
-/// r = 6 356 766 m.
-pub(super) fn standard_pressure(altitude: f64) -> f64 {
-    const RADIUS: f64 = 6_356_766.0;
-    let geopotential = RADIUS * altitude / (RADIUS + altitude);
-    SEA_LEVEL * (1.0 - 0.0065 * geopotential / 288.15).powf(9.80665 / (287.05287 * 0.0065))
 }
 
 const AIR_NUMBERS: [(&str, Dimension, &str); 5] = [
