@@ -12,18 +12,22 @@ use crate::level::Level;
 use crate::linear::multigrid::Link;
 use crate::newton::Newton;
 use crate::residual::{self, Scales};
-use crate::simplec::{Smoothing, Work, smooth};
+use crate::simplec::{self, Smoothing, Work, smooth};
 use crate::transfer::Transfer;
-use crate::{Air, Convection, Problem, Residuals, SolveError, State};
+use crate::{Air, Control, Convection, Problem, Residuals, SolveError, State};
 
 /// Coarsening stops at about this many cells, few enough for the direct solution.
 const COARSEST_CELLS: usize = 6000;
+/// Newton steps on the coarsest mesh's own problem at the most.
+const COARSEST_STEPS: usize = 100;
 /// Coarser meshes keep this many cells across every slot, gap and block.
 const LEAST_ACROSS: usize = 2;
 
 /// The chain of meshes with their equations, finest first.
 pub(crate) struct Stack {
     levels: Vec<Level>,
+    /// The problem on every mesh but the finest.
+    coarse_problems: Vec<Problem>,
     transfers: Vec<Transfer>,
     work: Vec<Work>,
     newton: Newton,
@@ -35,6 +39,7 @@ impl Stack {
         let mut levels = vec![Level::new(problem, air, convection)];
         let mut transfers = Vec::new();
         let mut links = Vec::new();
+        let mut coarse_problems = Vec::new();
         let mut mesh = problem.mesh().clone();
         while mesh.cell_count() > COARSEST_CELLS {
             let Some(coarsening) = mesh.coarsened(LEAST_ACROSS) else { break };
@@ -44,7 +49,9 @@ impl Stack {
             transfers.push(Transfer::new(&mesh, &coarsening));
             links.push(Link::new(&mesh, &coarsening));
             mesh = coarsening.mesh;
-            levels.push(Level::new(&problem.with_mesh(mesh.clone()), air, convection));
+            let coarse = problem.with_mesh(mesh.clone());
+            levels.push(Level::new(&coarse, air, convection));
+            coarse_problems.push(coarse);
         }
         while let Some(coarsening) = mesh.coarsened(1) {
             links.push(Link::new(&mesh, &coarsening));
@@ -53,7 +60,15 @@ impl Stack {
         let work =
             levels.iter().enumerate().map(|(l, level)| Work::new(level, &links[l..])).collect();
         let newton = Newton::new(&levels[levels.len() - 1]);
-        Stack { levels, transfers, work, newton, smoothing: Smoothing::default() }
+        Stack { levels, coarse_problems, transfers, work, newton, smoothing: Smoothing::STANDARD }
+    }
+
+    /// Takes other constants for the air on every mesh.
+    pub fn set_air(&mut self, problem: &Problem, air: &Air) {
+        for (l, level) in self.levels.iter_mut().enumerate() {
+            let problem = if l == 0 { problem } else { &self.coarse_problems[l - 1] };
+            *level = Level::new(problem, air, level.convection);
+        }
     }
 
     /// Number of meshes.
@@ -63,6 +78,16 @@ impl Stack {
 
     pub fn level(&self, l: usize) -> &Level {
         &self.levels[l]
+    }
+
+    /// Number of cells of level `l`.
+    pub fn cells(&self, l: usize) -> usize {
+        self.levels[l].fluid.len()
+    }
+
+    /// The problem on level `l`; `None` for the finest, whose problem is the caller's.
+    pub fn problem(&self, l: usize) -> Option<&Problem> {
+        l.checked_sub(1).map(|l| &self.coarse_problems[l])
     }
 
     pub fn state(&self, l: usize) -> &State {
@@ -78,21 +103,62 @@ impl Stack {
         self.work[l].rhs.clone_from(&self.levels[l].source);
     }
 
-    /// Solves the coarsest mesh's own problem by Newton's method.
-    pub fn solve_coarsest(&mut self, tolerance: f64, from_rest: bool) -> Result<f64, SolveError> {
+    /// Solves the coarsest mesh's own problem by Newton's method; `each` is asked after every step.
+    /// Returns the largest relative residual reached.
+    pub fn solve_coarsest(
+        &mut self,
+        tolerance: f64,
+        from_rest: bool,
+        each: &mut dyn FnMut(Residuals) -> Control,
+    ) -> Result<f64, SolveError> {
         let l = self.levels.len() - 1;
         self.pose(l);
         let (level, work) = (&self.levels[l], &mut self.work[l]);
         let scales = residual::scales(level, &work.state);
-        let outcome = self.newton.solve(
+        self.newton.solve(
             level,
             &mut work.state,
             &work.rhs,
             &scales,
-            (tolerance, 80),
+            (tolerance, COARSEST_STEPS),
             from_rest,
-        )?;
-        Ok(outcome.end)
+            each,
+        )
+    }
+
+    /// The finest level of at most `cells` cells (else the coarsest), with the finest state
+    /// restricted to it.
+    pub fn restricted(&mut self, cells: usize) -> (usize, State) {
+        let last = self.levels.len() - 1;
+        let target = (0..last).find(|l| self.cells(*l) <= cells).unwrap_or(last);
+        for l in 0..target {
+            let (fine, coarse) = self.work.split_at_mut(l + 1);
+            self.transfers[l].restrict_state(
+                &self.levels[l],
+                &self.levels[l + 1],
+                &fine[l].state,
+                &mut coarse[0].state,
+            );
+        }
+        (target, self.work[target].state.clone())
+    }
+
+    /// Restores the mass balance of level `l` to round-off.
+    pub fn restore_mass(&mut self, l: usize) {
+        if l + 1 < self.levels.len() {
+            simplec::restore_mass(&self.levels[l], &mut self.work[l]);
+        }
+    }
+
+    /// The first field and cell of level `l` that is not a number.
+    pub fn broken(&self, l: usize) -> Option<(&'static str, usize)> {
+        let (state, nx) = (&self.work[l].state, self.levels[l].nx);
+        let first = |field: &[f64]| field.iter().position(|x| !x.is_finite());
+        let u_cell = |n: usize| (n % (nx + 1)).min(nx - 1) + n / (nx + 1) * nx;
+        (first(&state.u).map(|n| ("the velocity along x", u_cell(n))))
+            .or(first(&state.v).map(|n| ("the velocity along y", n.min(state.p.len() - 1))))
+            .or(first(&state.p).map(|n| ("the pressure", n)))
+            .or(first(&state.t).map(|n| ("the temperature", n)))
     }
 
     /// Starts level `l` from the state of the next coarser one.
@@ -108,19 +174,6 @@ impl Stack {
             &mut fine.state,
             1.0,
         );
-    }
-
-    /// Restricts the finest state down to every coarser mesh.
-    pub fn restrict_all(&mut self) {
-        for l in 0..self.transfers.len() {
-            let (fine, coarse) = self.work.split_at_mut(l + 1);
-            self.transfers[l].restrict_state(
-                &self.levels[l],
-                &self.levels[l + 1],
-                &fine[l].state,
-                &mut coarse[0].state,
-            );
-        }
     }
 
     /// Relative residuals of level `l`, and their scales.
@@ -146,6 +199,7 @@ impl Stack {
                 &scales,
                 ((0.01 * now).max(1e-13), 6),
                 false,
+                &mut |_| Control::Continue,
             )?;
             return Ok(());
         }

@@ -87,7 +87,8 @@ pub(crate) fn film_rise(problem: &Problem, air: &Air, state: &State) -> f64 {
     }
     let carried: f64 = slot_flows(problem, air, state).iter().map(|s| s.heat.max(0.0)).sum();
     cold.add(carried, 0.0);
-    let open: f64 = crate::side_flows(problem, air, state).iter().map(|s| s.open.heat.max(0.0)).sum();
+    let open: f64 =
+        crate::side_flows(problem, air, state).iter().map(|s| s.open.heat.max(0.0)).sum();
     cold.add(open, 0.0);
     0.5 * (hot.mean() + cold.mean())
 }

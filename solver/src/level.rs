@@ -69,6 +69,8 @@ pub(crate) struct Level {
     pub x_conductance: Vec<f64>,
     pub y_conductance: Vec<f64>,
     pub side_conductance: Vec<f64>,
+    /// Heat capacity of the cells [J/K].
+    pub heat_capacity: Vec<f64>,
     /// Conductivities of the cells [W/(m·K)], for interpolation across interfaces.
     pub conductivity: Vec<[f32; 2]>,
     pub openings: [Vec<Opening>; 4],
@@ -151,6 +153,7 @@ impl Level {
             x_conductance: vec![0.0; (nx + 1) * ny],
             y_conductance: vec![0.0; nx * (ny + 1)],
             side_conductance: vec![0.0; nx * ny],
+            heat_capacity: vec![0.0; nx * ny],
             conductivity: (0..nx * ny)
                 .map(|n| crate::conduction::cell_conductivity(problem, air, n).map(|k| k as f32))
                 .collect(),
@@ -320,6 +323,14 @@ impl Level {
         for j in 0..ny {
             for i in 0..nx {
                 let region = mesh.regions()[i + j * nx];
+                let capacity = match region {
+                    AIR => self.air.density * self.air.specific_heat,
+                    block => {
+                        let solid = &d.solids[d.blocks[block as usize].solid];
+                        solid.density * solid.specific_heat
+                    }
+                };
+                self.heat_capacity[i + j * nx] = capacity * mesh.volume(i, j);
                 if region != AIR {
                     volumes[region as usize] += mesh.volume(i, j);
                 }

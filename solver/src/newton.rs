@@ -12,11 +12,11 @@ use sprs::TriMat;
 
 use crate::level::Level;
 use crate::residual::{self, Scales};
-use crate::{SolveError, State};
+use crate::{Control, Residuals, SolveError, State};
 
 /// Which unknown of the system a place in a field is; `None` where the value is fixed.
 #[derive(Debug)]
-struct Numbering {
+pub(crate) struct Numbering {
     u: Vec<Option<u32>>,
     v: Vec<Option<u32>>,
     p: Vec<Option<u32>>,
@@ -24,26 +24,28 @@ struct Numbering {
     count: usize,
 }
 
+/// Factors of a system in the numbering's order.
+pub(crate) struct Factors(Lu<usize, f64>);
+
+impl Factors {
+    /// Solves in place.
+    pub fn solve(&self, values: &mut [f64]) {
+        let mut right = Mat::from_fn(values.len(), 1, |i, _| values[i]);
+        self.0.solve_in_place(&mut right);
+        values.iter_mut().enumerate().for_each(|(i, v)| *v = right[(i, 0)]);
+    }
+}
+
 /// Newton's method on one mesh, with its last factorisation.
 pub(crate) struct Newton {
     numbers: Numbering,
     symbolic: Option<SymbolicLu<usize>>,
-    factors: Option<Lu<usize, f64>>,
+    factors: Option<Factors>,
     residual: State,
     trial: State,
     trial_residual: State,
     /// Factorisations so far.
     pub factorisations: usize,
-}
-
-/// How a coarse solution ended.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub(crate) struct Outcome {
-    /// Largest relative residual at the start and at the end.
-    pub start: f64,
-    pub end: f64,
-    /// Steps taken.
-    pub steps: usize,
 }
 
 /// Columns of one colour are this far apart, so that their rows do not meet.
@@ -63,7 +65,8 @@ impl Newton {
     }
 
     /// Improves `state` until the largest relative residual is below `target` or `limit` steps are
-    /// done. `scales` are raised where the state outgrows them.
+    /// done or `each`, asked after every step, says stop. `scales` are raised where the state
+    /// outgrows them. Returns the largest relative residual reached.
     pub fn solve(
         &mut self,
         level: &Level,
@@ -72,10 +75,10 @@ impl Newton {
         scales: &Scales,
         (target, limit): (f64, usize),
         from_rest: bool,
-    ) -> Result<Outcome, SolveError> {
+        each: &mut dyn FnMut(Residuals) -> Control,
+    ) -> Result<f64, SolveError> {
         residual::evaluate(level, state, rhs, &mut self.residual);
-        let mut norm = size(level, &self.residual, state, scales);
-        let start = norm;
+        let mut norm = size(level, &self.residual, state, scales).largest();
         // Pseudo-time step in units of the buoyant transit time; none is infinite.
         let mut pseudo = if from_rest { FIRST_STEP * transit_time(level) } else { f64::INFINITY };
         let mut stale = self.factors.is_some() && !from_rest;
@@ -90,13 +93,17 @@ impl Newton {
             self.trial.clone_from(state);
             self.numbers.add(&step, 1.0, &mut self.trial);
             residual::evaluate(level, &self.trial, rhs, &mut self.trial_residual);
-            let trial_norm = size(level, &self.trial_residual, &self.trial, scales);
+            let trial_residuals = size(level, &self.trial_residual, &self.trial, scales);
+            let trial_norm = trial_residuals.largest();
             let allowed = if pseudo.is_finite() { 3.0 } else { 1.0 };
             if trial_norm.is_finite() && trial_norm <= allowed * norm {
                 std::mem::swap(state, &mut self.trial);
                 std::mem::swap(&mut self.residual, &mut self.trial_residual);
                 let ratio = trial_norm / norm;
                 norm = trial_norm;
+                if each(trial_residuals) == Control::Stop {
+                    break;
+                }
                 failures = 0;
                 if pseudo.is_finite() {
                     pseudo *= (1.0 / ratio).clamp(1.5, 10.0);
@@ -117,27 +124,36 @@ impl Newton {
                 pseudo = if pseudo.is_finite() { 0.2 * pseudo } else { transit_time(level) };
             }
         }
-        Ok(Outcome { start, end: norm, steps })
+        Ok(norm)
     }
 
     /// Solves J·δ = r with the current factors.
     fn step(&self, level: &Level) -> Result<Vec<f64>, SolveError> {
         let mut right = vec![0.0; self.numbers.count];
         self.numbers.gather(&self.residual, &mut right);
+        self.drop_pinned(level, &mut right);
+        let Some(factors) = &self.factors else {
+            return Err(SolveError::Factorisation { reason: "no factors".into() });
+        };
+        factors.solve(&mut right);
+        Ok(right)
+    }
+
+    /// The order of the unknowns.
+    pub fn numbers(&self) -> &Numbering {
+        &self.numbers
+    }
+
+    /// Zeroes the rows of the pinned pressures.
+    pub fn drop_pinned(&self, level: &Level, right: &mut [f64]) {
         for region in &level.closed_regions {
             if let Some(n) = self.numbers.p[region[0] as usize] {
                 right[n as usize] = 0.0;
             }
         }
-        let Some(factors) = &self.factors else {
-            return Err(SolveError::Factorisation { reason: "no factors".into() });
-        };
-        let right = Mat::from_fn(right.len(), 1, |i, _| right[i]);
-        let step = factors.solve(&right);
-        Ok((0..self.numbers.count).map(|i| step[(i, 0)]).collect())
     }
 
-    /// Factorises the Jacobian at a state, found column by column from residual differences.
+    /// Factorises J + M/Δt at a state, M being the air's inertia and heat capacity only.
     fn factorise(
         &mut self,
         level: &Level,
@@ -145,7 +161,32 @@ impl Newton {
         rhs: &State,
         pseudo: f64,
     ) -> Result<(), SolveError> {
-        let matrix = self.jacobian(level, state, rhs, pseudo).to_csc::<usize>();
+        let mut matrix = self.jacobian(level, state, rhs);
+        let rate = if pseudo.is_finite() { 1.0 / pseudo } else { 0.0 };
+        let masses = self.masses(level, false);
+        masses.iter().enumerate().for_each(|(n, m)| matrix.add_triplet(n, n, rate * m));
+        self.factors = Some(self.factors_of(&matrix)?);
+        Ok(())
+    }
+
+    /// Factors of J + rate·M at a state, M with the blocks' heat capacity: the operator of the
+    /// linear stability analysis and of time steps.
+    pub fn shifted(
+        &mut self,
+        level: &Level,
+        state: &State,
+        rhs: &State,
+        rate: f64,
+    ) -> Result<(Factors, Vec<f64>), SolveError> {
+        residual::evaluate(level, state, rhs, &mut self.residual);
+        let mut matrix = self.jacobian(level, state, rhs);
+        let masses = self.masses(level, true);
+        masses.iter().enumerate().for_each(|(n, m)| matrix.add_triplet(n, n, rate * m));
+        Ok((self.factors_of(&matrix)?, masses))
+    }
+
+    fn factors_of(&mut self, matrix: &TriMat<f64>) -> Result<Factors, SolveError> {
+        let matrix = matrix.to_csc::<usize>();
         let failed = |reason: String| SolveError::Factorisation { reason };
         let n = self.numbers.count;
         let (starts, rows, values) =
@@ -155,16 +196,46 @@ impl Newton {
             Some(s) => s,
             None => SymbolicLu::try_new(symbol).map_err(|e| failed(format!("{e:?}")))?,
         };
-        let lu = Lu::try_new_with_symbolic(symbolic.clone(), SparseColMatRef::new(symbol, values))
-            .map_err(|e| failed(format!("{e:?}")))?;
-        self.symbolic = Some(symbolic);
-        self.factors = Some(lu);
+        self.symbolic = Some(symbolic.clone());
         self.factorisations += 1;
-        Ok(())
+        let lu = Lu::try_new_with_symbolic(symbolic, SparseColMatRef::new(symbol, values))
+            .map_err(|e| failed(format!("{e:?}")))?;
+        Ok(Factors(lu))
     }
 
-    /// −∂r/∂x with the pseudo-time terms. The pattern never depends on the values.
-    fn jacobian(&self, level: &Level, state: &State, rhs: &State, pseudo: f64) -> TriMat<f64> {
+    /// Inertia ρ·V [kg] and heat capacity [J/K] of every unknown (zero for pressures).
+    fn masses(&self, level: &Level, with_blocks: bool) -> Vec<f64> {
+        let (nx, ny) = (level.nx, level.ny);
+        let numbers = &self.numbers;
+        let mut masses = vec![0.0; numbers.count];
+        let mut set = |n: Option<u32>, mass: f64| {
+            if let Some(n) = n {
+                masses[n as usize] = mass;
+            }
+        };
+        let density = level.air.density;
+        for j in 0..ny {
+            for i in 0..=nx {
+                let mass = density * level.u_area[i] * level.dy[j];
+                set(numbers.u[i + j * (nx + 1)], mass);
+            }
+        }
+        for j in 0..=ny {
+            for i in 0..nx {
+                set(numbers.v[i + j * nx], density * level.y_area[i] * level.v_height[j]);
+            }
+        }
+        for n in 0..nx * ny {
+            if with_blocks || level.fluid[n] {
+                set(numbers.t[n], level.heat_capacity[n]);
+            }
+        }
+        masses
+    }
+
+    /// J = −∂r/∂x, at the state that `self.residual` belongs to. Its pattern never depends on the
+    /// values.
+    fn jacobian(&self, level: &Level, state: &State, rhs: &State) -> TriMat<f64> {
         let (nx, ny) = (level.nx, level.ny);
         let numbers = &self.numbers;
         let n = numbers.count;
@@ -223,32 +294,6 @@ impl Newton {
         for row in pinned {
             matrix.add_triplet(row as usize, row as usize, 1.0);
         }
-        let rate = if pseudo.is_finite() { level.air.density / pseudo } else { 0.0 };
-        for j in 0..ny {
-            for i in 0..=nx {
-                if let Some(n) = numbers.u[i + j * (nx + 1)] {
-                    let term = rate * level.u_area[i] * level.dy[j];
-                    matrix.add_triplet(n as usize, n as usize, term);
-                }
-            }
-        }
-        for j in 0..=ny {
-            for i in 0..nx {
-                if let Some(n) = numbers.v[i + j * nx] {
-                    let term = rate * level.y_area[i] * level.v_height[j];
-                    matrix.add_triplet(n as usize, n as usize, term);
-                }
-            }
-        }
-        for j in 0..ny {
-            for i in 0..nx {
-                if let (Some(n), true) = (numbers.t[i + j * nx], level.fluid[i + j * nx]) {
-                    let volume = level.y_area[i] * level.dy[j];
-                    let term = rate * level.air.specific_heat * volume;
-                    matrix.add_triplet(n as usize, n as usize, term);
-                }
-            }
-        }
         matrix
     }
 }
@@ -292,15 +337,15 @@ fn transit_time(level: &Level) -> f64 {
     level.dy.iter().sum::<f64>() / reference_speed(level)
 }
 
-/// Largest relative residual, with the scales of the state where those are larger.
-fn size(level: &Level, residual: &State, state: &State, scales: &Scales) -> f64 {
+/// Relative residuals, with the scales of the state where those are larger.
+fn size(level: &Level, residual: &State, state: &State, scales: &Scales) -> Residuals {
     let own = residual::scales(level, state);
     let scales = Scales {
         mass: scales.mass.max(own.mass),
         force: scales.force.max(own.force),
         heat: scales.heat.max(own.heat),
     };
-    residual::relative(level, residual, &scales).largest()
+    residual::relative(level, residual, &scales)
 }
 
 fn rest(level: &Level) -> State {
@@ -377,7 +422,8 @@ impl Numbering {
         }
     }
 
-    fn gather(&self, from: &State, to: &mut [f64]) {
+    /// Values of a state's fields in the unknowns' order.
+    pub fn gather(&self, from: &State, to: &mut [f64]) {
         for field in 0..4 {
             for (n, value) in self.of(field).iter().zip(field_ref(from, field)) {
                 if let Some(n) = n {
@@ -387,7 +433,8 @@ impl Numbering {
         }
     }
 
-    fn add(&self, step: &[f64], scale: f64, to: &mut State) {
+    /// Adds `scale` times the unknowns to a state's fields.
+    pub fn add(&self, step: &[f64], scale: f64, to: &mut State) {
         for field in 0..4 {
             for (n, value) in self.of(field).iter().zip(field_of(to, field)) {
                 if let Some(n) = n {

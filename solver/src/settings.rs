@@ -9,6 +9,14 @@ pub enum Convection {
     Upwind,
 }
 
+/// Bound of a settled run for |heat in − heat out| over heat in.
+pub const HEAT_BOUND: f64 = 1e-6;
+/// Bound of a settled run for |air in − air out| over air in.
+pub const MASS_BOUND: f64 = 1e-9;
+/// Bound of a settled run for the change of any part's highest temperature over the last outer
+/// iteration, relative to the largest rise of any part.
+pub const DRIFT_BOUND: f64 = 1e-4;
+
 /// Settings of a run.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Settings {
@@ -18,10 +26,17 @@ pub struct Settings {
     pub max_iterations: usize,
     /// Convection scheme.
     pub convection: Convection,
+    /// Whether to find out if the steady flow is stable.
+    pub assess_stability: bool,
 }
 
 impl Default for Settings {
     fn default() -> Self {
-        Settings { tolerance: 1e-6, max_iterations: 20_000, convection: Convection::Central }
+        Settings {
+            tolerance: 1e-6,
+            max_iterations: 20_000,
+            convection: Convection::Central,
+            assess_stability: true,
+        }
     }
 }

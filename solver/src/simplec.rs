@@ -33,16 +33,15 @@ pub(crate) struct Smoothing {
     pub iterations: [usize; 2],
 }
 
-impl Default for Smoothing {
-    fn default() -> Self {
-        Smoothing {
-            velocity: 0.6,
-            temperature: 0.95,
-            sweeps: 1,
-            pressure: (0.1, 3),
-            iterations: [2, 2],
-        }
-    }
+impl Smoothing {
+    /// The usual choice.
+    pub const STANDARD: Smoothing = Smoothing {
+        velocity: 0.6,
+        temperature: 0.95,
+        sweeps: 1,
+        pressure: (0.1, 3),
+        iterations: [2, 2],
+    };
 }
 
 /// Fields and work arrays of one mesh.
@@ -164,6 +163,14 @@ fn open_faces(
         }
     }
 }
+
+/// Restores the mass balance of every cell to round-off, with the responses of the last iteration.
+pub(crate) fn restore_mass(level: &Level, work: &mut Work) {
+    pressure_step(level, work, MASS_RESTORED);
+}
+
+/// Reduction asked of the last pressure correction of an outer iteration, and its limit.
+const MASS_RESTORED: (f64, usize) = (1e-6, 30);
 
 /// Corrects pressure and velocities so that every cell's mass balance is met to the reduction
 /// asked; returns the reduction reached.

@@ -27,6 +27,15 @@ impl State {
         }
     }
 
+    /// Whether the fields have the mesh's lengths.
+    pub fn fits(&self, mesh: &Mesh) -> bool {
+        let (nx, ny) = (mesh.nx(), mesh.ny());
+        self.u.len() == (nx + 1) * ny
+            && self.v.len() == nx * (ny + 1)
+            && self.p.len() == nx * ny
+            && self.t.len() == nx * ny
+    }
+
     /// Sets every value to zero.
     pub(crate) fn clear(&mut self) {
         for field in [&mut self.u, &mut self.v, &mut self.p, &mut self.t] {

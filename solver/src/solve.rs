@@ -1,0 +1,338 @@
+//! The outer iteration: nested start from the coarsest mesh, cycles on every finer one, bounds.
+
+use crate::balance::balance;
+use crate::fas::Stack;
+use crate::film::film_rise;
+use crate::numbers::part_temperatures;
+use crate::settings::{DRIFT_BOUND, HEAT_BOUND, MASS_BOUND};
+use crate::simplec::Smoothing;
+use crate::{
+    Air, AirModel, Control, Problem, Progress, Residuals, Settings, Solution, SolveError, State,
+    StopReason, Verdict, sway,
+};
+
+/// Residual that the nested start asks of the meshes before the finest.
+const NESTED_TARGET: f64 = 1e-3;
+/// Cycles spent on each of them at the most.
+const NESTED_CYCLES: usize = 6;
+/// Residual asked of the coarsest mesh's own solution.
+const COARSEST_TARGET: f64 = 1e-8;
+/// The air's constants are renewed while the film temperature moves by more than this [K].
+const FILM_BOUND: f64 = 0.02;
+/// Cycles within which the residual must at least halve; else the smoothing is damped more.
+const PATIENCE: usize = 12;
+/// Growth of the residual over the best one that counts as divergence.
+const DIVERGED: f64 = 1e4;
+
+/// Smoothing tried in turn: each is slower and steadier than the one before.
+const LADDER: [Smoothing; 3] = [
+    Smoothing::STANDARD,
+    Smoothing { velocity: 0.45, temperature: 0.8, iterations: [3, 3], ..Smoothing::STANDARD },
+    Smoothing { velocity: 0.3, temperature: 0.6, iterations: [5, 5], ..Smoothing::STANDARD },
+];
+
+/// Solves a problem from a start (rest when `None`). `watch` is asked after every outer iteration.
+///
+/// The iteration ends as converged when, on the finest mesh, every residual is within
+/// `settings.tolerance` of its scale, the heat balance within [`HEAT_BOUND`], the mass balance
+/// within [`MASS_BOUND`], no part's temperature moved by more than [`DRIFT_BOUND`] of the largest
+/// rise in the last iteration, and the film temperature stands.
+///
+/// # Errors
+/// A breakdown that no damping cured.
+pub fn solve(
+    problem: &Problem,
+    settings: &Settings,
+    start: Option<State>,
+    watch: &mut dyn FnMut(&Progress) -> Control,
+) -> Result<Solution, SolveError> {
+    let mut run = Run::new(problem, settings, watch);
+    let stop = match start {
+        Some(state) if state.fits(problem.mesh()) => run.resume(&state)?,
+        _ => run.from_rest()?,
+    };
+    run.finish(stop)
+}
+
+/// A run under way.
+struct Run<'a> {
+    problem: &'a Problem,
+    settings: &'a Settings,
+    watch: &'a mut dyn FnMut(&Progress) -> Control,
+    stack: Stack,
+    history: Vec<Progress>,
+    notes: Vec<String>,
+    film: f64,
+}
+
+/// How the cycles on one mesh ended.
+enum Cycles {
+    Reached,
+    Limit,
+    Asked,
+    Stalled,
+    Broke { field: &'static str, cell: usize },
+}
+
+impl<'a> Run<'a> {
+    fn new(
+        problem: &'a Problem,
+        settings: &'a Settings,
+        watch: &'a mut dyn FnMut(&Progress) -> Control,
+    ) -> Self {
+        let d = problem.description();
+        let air = match d.air {
+            AirModel::Given(air) => air,
+            AirModel::Film { pressure } => Air::dry(d.ambient, pressure),
+        };
+        let stack = Stack::new(problem, &air, settings.convection);
+        Run { problem, settings, watch, stack, history: Vec::new(), notes: Vec::new(), film: 0.0 }
+    }
+
+    /// Coarsest mesh first, each finer one from the next coarser.
+    fn from_rest(&mut self) -> Result<StopReason, SolveError> {
+        let coarsest = self.stack.depth() - 1;
+        if let Some(stop) = self.start_coarsest(coarsest)? {
+            return Ok(stop);
+        }
+        for l in (0..coarsest).rev() {
+            let coarser = self.stack.state(l + 1).clone();
+            let mut reached = Cycles::Limit;
+            for (step, smoothing) in LADDER.iter().enumerate() {
+                self.stack.smoothing = *smoothing;
+                self.stack.set_state(l + 1, &coarser);
+                self.stack.start_from_coarser(l);
+                self.stack.pose(l);
+                reached = self.cycles(l)?;
+                let Cycles::Broke { field, .. } = &reached else { break };
+                if step + 1 < LADDER.len() {
+                    self.note(format!("{field} diverged: started again with stronger damping"));
+                }
+            }
+            match reached {
+                Cycles::Broke { field, cell } => return Err(self.broke(l, field, cell)),
+                Cycles::Asked => {
+                    self.lift_to_finest(l);
+                    return Ok(StopReason::Asked);
+                }
+                Cycles::Stalled if l == 0 => return Ok(StopReason::Stalled),
+                Cycles::Limit if l == 0 => return Ok(StopReason::IterationLimit),
+                _ => {}
+            }
+            self.renew_air(l);
+        }
+        Ok(StopReason::Converged)
+    }
+
+    /// From a given state on the finest mesh.
+    fn resume(&mut self, state: &State) -> Result<StopReason, SolveError> {
+        if self.stack.depth() == 1 {
+            self.stack.set_state(0, state);
+            return self.from_rest();
+        }
+        self.stack.set_state(0, state);
+        self.stack.pose(0);
+        self.renew_air(0);
+        match self.cycles(0)? {
+            Cycles::Reached => Ok(StopReason::Converged),
+            Cycles::Limit => Ok(StopReason::IterationLimit),
+            Cycles::Asked => Ok(StopReason::Asked),
+            Cycles::Stalled => Ok(StopReason::Stalled),
+            Cycles::Broke { .. } => {
+                self.note("the given start diverged: started again from rest".into());
+                self.from_rest()
+            }
+        }
+    }
+
+    /// Newton's method on the coarsest mesh, with the film temperature.
+    fn start_coarsest(&mut self, l: usize) -> Result<Option<StopReason>, SolveError> {
+        let finest = l == 0;
+        let target = if finest { 1e-2 * self.settings.tolerance } else { COARSEST_TARGET };
+        let mut from_rest = true;
+        let mut end = 0.0;
+        let mut converged = false;
+        for _ in 0..8 {
+            let (mut rows, mut stop) = (Vec::new(), Control::Continue);
+            {
+                let iteration = self.history.len();
+                let cells = self.stack.cells(l);
+                let watch = &mut self.watch;
+                let mut each = |residuals: Residuals| {
+                    let iteration = iteration + rows.len() + 1;
+                    let row = Progress { iteration, cells, residuals, ..Progress::default() };
+                    stop = watch(&row);
+                    rows.push(row);
+                    stop
+                };
+                end = self.stack.solve_coarsest(target, from_rest, &mut each)?;
+            }
+            self.history.append(&mut rows);
+            if stop == Control::Stop {
+                self.lift_to_finest(l);
+                return Ok(Some(StopReason::Asked));
+            }
+            from_rest = false;
+            converged = end <= self.settings.tolerance.max(target);
+            if !self.renew_air(l) {
+                break;
+            }
+            converged = false;
+        }
+        if finest {
+            let row = self.progress(l, None);
+            self.history.push(row);
+            return Ok((!converged).then_some(StopReason::Stalled));
+        }
+        if end > NESTED_TARGET {
+            self.note(format!(
+                "the coarsest mesh was solved to {end:.0e} only; finer meshes go on from there"
+            ));
+        }
+        Ok(None)
+    }
+
+    /// Cycles on level `l` until its target, the limit, a stall or a breakdown.
+    fn cycles(&mut self, l: usize) -> Result<Cycles, SolveError> {
+        let finest = l == 0;
+        let limit = if finest { self.settings.max_iterations } else { NESTED_CYCLES };
+        let mut best = f64::INFINITY;
+        let (mut mark, mut since, mut rung) = (f64::INFINITY, 0, 0);
+        let mut parts = None;
+        for _ in 0..limit {
+            if self.history.len() >= self.settings.max_iterations {
+                return Ok(Cycles::Limit);
+            }
+            self.stack.cycle(l)?;
+            if finest {
+                self.stack.restore_mass(l);
+            }
+            if let Some((field, cell)) = self.stack.broken(l) {
+                return Ok(Cycles::Broke { field, cell });
+            }
+            let row = self.progress(l, parts.as_deref());
+            parts = Some(row.part_max.clone());
+            let largest = row.residuals.largest();
+            let done = if finest { self.within_bounds(&row) } else { largest < NESTED_TARGET };
+            let control = (self.watch)(&row);
+            self.history.push(row);
+            if done && !(finest && self.renew_air(l)) {
+                return Ok(Cycles::Reached);
+            }
+            if control == Control::Stop {
+                return Ok(Cycles::Asked);
+            }
+            if !largest.is_finite() || largest > DIVERGED * best {
+                return Ok(Cycles::Broke { field: "the residual", cell: 0 });
+            }
+            best = best.min(largest);
+            since += 1;
+            if best < 0.5 * mark {
+                (mark, since) = (best, 0);
+            } else if since >= PATIENCE {
+                rung += 1;
+                since = 0;
+                if rung == LADDER.len() {
+                    return Ok(Cycles::Stalled);
+                }
+                self.stack.smoothing = LADDER[rung];
+                self.note("the residual stood still: damped more strongly".into());
+            }
+        }
+        Ok(Cycles::Limit)
+    }
+
+    /// Whether a row of the finest mesh meets all bounds.
+    fn within_bounds(&self, row: &Progress) -> bool {
+        let rise = row.part_max.iter().fold(0.0_f64, |a, b| a.max(b.abs()));
+        row.residuals.largest() <= self.settings.tolerance
+            && row.heat_error <= HEAT_BOUND
+            && row.mass_error <= MASS_BOUND
+            && row.drift <= DRIFT_BOUND * rise.max(1e-9)
+    }
+
+    fn progress(&mut self, l: usize, before: Option<&[f64]>) -> Progress {
+        let (residuals, _) = self.stack.residuals(l);
+        let problem = self.stack.problem(l).unwrap_or(self.problem);
+        let (air, state) = (&self.stack.level(l).air, self.stack.state(l));
+        let b = balance(problem, air, state);
+        let part_max: Vec<f64> =
+            part_temperatures(problem, state).iter().map(|p| p.map_or(0.0, |p| p.max)).collect();
+        let drift = before.map_or(f64::INFINITY, |before| {
+            part_max.iter().zip(before).fold(0.0, |d: f64, (a, b)| d.max((a - b).abs()))
+        });
+        Progress {
+            iteration: self.history.len() + 1,
+            cells: self.stack.cells(l),
+            residuals,
+            heat_error: b.heat_error,
+            mass_error: b.mass_error,
+            flow_in: b.mass_in / air.density,
+            part_max,
+            drift,
+        }
+    }
+
+    /// Takes the air's constants at the film temperature of level `l`'s state; true when they
+    /// changed.
+    fn renew_air(&mut self, l: usize) -> bool {
+        let d = self.problem.description();
+        let AirModel::Film { pressure } = d.air else { return false };
+        let problem = self.stack.problem(l).unwrap_or(self.problem);
+        let film = film_rise(problem, &self.stack.level(l).air, self.stack.state(l));
+        if !film.is_finite() || (film - self.film).abs() <= FILM_BOUND {
+            return false;
+        }
+        self.film = film;
+        self.stack.set_air(self.problem, &Air::dry(d.ambient + film, pressure));
+        self.stack.pose(l);
+        true
+    }
+
+    /// Carries an unfinished state of a coarser level up to the finest.
+    fn lift_to_finest(&mut self, l: usize) {
+        for finer in (0..l).rev() {
+            self.stack.start_from_coarser(finer);
+        }
+        self.stack.pose(0);
+    }
+
+    fn note(&mut self, text: String) {
+        if !self.notes.contains(&text) {
+            self.notes.push(text);
+        }
+    }
+
+    fn broke(&self, l: usize, field: &'static str, cell: usize) -> SolveError {
+        let nx = self.stack.level(l).nx;
+        SolveError::Broke { field, i: cell % nx, j: cell / nx, iteration: self.history.len() }
+    }
+
+    fn finish(mut self, stop: StopReason) -> Result<Solution, SolveError> {
+        let mut verdict = match stop {
+            StopReason::Converged => Verdict::Settled,
+            StopReason::Stalled => Verdict::Drifting,
+            StopReason::IterationLimit | StopReason::Asked => Verdict::StoppedEarly,
+        };
+        if self.settings.assess_stability
+            && matches!(stop, StopReason::Converged | StopReason::Stalled)
+        {
+            let last = self.history.last().cloned().unwrap_or_default();
+            let watch = &mut self.watch;
+            let mut going_on = || watch(&last);
+            let found =
+                sway::assess(&mut self.stack, self.problem, &mut self.notes, &mut going_on)?;
+            if stop == StopReason::Converged || found != Verdict::Settled {
+                verdict = found;
+            }
+        }
+        Ok(Solution {
+            state: self.stack.state(0).clone(),
+            air: self.stack.level(0).air,
+            stop,
+            verdict,
+            history: self.history,
+            notes: self.notes,
+        })
+    }
+}

@@ -1,0 +1,173 @@
+//! From a steady solution to its verdict: is it stable, and if not, how far does it sway?
+//!
+//! Both questions are answered on a mesh of moderate size by the factorised Jacobian: the leading
+//! mode tells whether disturbances grow, and a short time-accurate run from the disturbed state
+//! (second-order backward differences) follows them until the oscillation keeps its size.
+
+use crate::fas::Stack;
+use crate::level::Level;
+use crate::newton::Newton;
+use crate::numbers::part_temperatures;
+use crate::stability::{Mode, leading_mode};
+use crate::{Control, Problem, SolveError, State, Verdict, residual};
+
+/// Meshes up to this size are analysed [cells].
+const CELLS: usize = 12_000;
+/// Time steps per period of the leading mode, and most periods followed.
+const STEPS_PER_PERIOD: usize = 24;
+const MOST_PERIODS: usize = 6;
+/// Size of the disturbance to start with, as a share of the largest speed.
+const DISTURBANCE: f64 = 0.1;
+/// Chord iterations of a time step at the most, and the change that ends them (share of the
+/// largest speed and rise).
+const CHORD_STEPS: usize = 6;
+const CHORD_BOUND: f64 = 1e-3;
+
+/// The verdict on a solution that met its bounds. `going_on` is asked between time steps.
+pub(crate) fn assess(
+    stack: &mut Stack,
+    problem: &Problem,
+    notes: &mut Vec<String>,
+    going_on: &mut dyn FnMut() -> Control,
+) -> Result<Verdict, SolveError> {
+    let (l, state) = stack.restricted(CELLS);
+    let level = stack.level(l);
+    let coarse = stack.problem(l).unwrap_or(problem);
+    let speed = largest(&state.u).max(largest(&state.v));
+    let extent = level.dx.iter().sum::<f64>().max(level.dy.iter().sum());
+    if speed * extent * level.air.density < level.air.viscosity {
+        // Creeping flow (Reynolds number below one) has no instability of its own.
+        return Ok(Verdict::Settled);
+    }
+    let mut newton = Newton::new(level);
+    let shift = 2.0 * speed / extent;
+    let Some(mode) = leading_mode(level, &state, &mut newton, shift)? else {
+        return Ok(Verdict::Settled);
+    };
+    if mode.growth <= 0.0 {
+        return Ok(Verdict::Settled);
+    }
+    if mode.frequency < 1e-3 * shift {
+        notes.push(format!(
+            "the steady flow is unstable: small disturbances grow by {:.2} per second into another \
+             steady flow",
+            mode.growth
+        ));
+        return Ok(Verdict::Swaying { period: None, growth: Some(mode.growth), band: Vec::new() });
+    }
+    let period = std::f64::consts::TAU / mode.frequency;
+    let swings = follow(level, coarse, &state, &mut newton, &mode, going_on)?;
+    let steady = highest(coarse, &state);
+    let fine = highest(problem, stack.state(0));
+    let band = fine
+        .iter()
+        .zip(&steady)
+        .zip(&swings)
+        .map(|((fine, steady), [low, high])| [fine + low - steady, fine + high - steady])
+        .collect();
+    notes.push(format!(
+        "the steady flow is unstable: disturbances grow by {:.2} per second and sway with a period \
+         of {period:.2} s (found on a mesh of {} x {} cells)",
+        mode.growth, level.nx, level.ny
+    ));
+    Ok(Verdict::Swaying { period: Some(period), growth: Some(mode.growth), band })
+}
+
+/// Lowest and highest `part_max` over the last two periods of a run from the disturbed state.
+fn follow(
+    level: &Level,
+    problem: &Problem,
+    steady: &State,
+    newton: &mut Newton,
+    mode: &Mode,
+    going_on: &mut dyn FnMut() -> Control,
+) -> Result<Vec<[f64; 2]>, SolveError> {
+    let period = std::f64::consts::TAU / mode.frequency;
+    let step = period / STEPS_PER_PERIOD as f64;
+    let (mut factors, masses) = newton.shifted(level, steady, &level.source, 1.5 / step)?;
+    let numbers = newton.numbers();
+    let speeds = |shape: &[f64]| {
+        let mut moved = steady.clone();
+        moved.clear();
+        numbers.add(shape, 1.0, &mut moved);
+        largest(&moved.u).max(largest(&moved.v))
+    };
+    let speed = largest(&steady.u).max(largest(&steady.v));
+    let rise = largest(&steady.t).max(1e-9);
+    let mut now = steady.clone();
+    numbers.add(&mode.shape, DISTURBANCE * speed / speeds(&mode.shape), &mut now);
+    let mut before = now.clone();
+    let mut residual = steady.clone();
+    let gather = |newton: &Newton, state: &State| {
+        let mut values = vec![0.0; masses.len()];
+        newton.numbers().gather(state, &mut values);
+        values
+    };
+    let mut bands: Vec<Vec<[f64; 2]>> = Vec::new();
+    let mut sizes: Vec<f64> = Vec::new();
+    for _ in 0..MOST_PERIODS {
+        let mut band = vec![[f64::INFINITY, f64::NEG_INFINITY]; problem.description().parts.len()];
+        let mut size = 0.0_f64;
+        for _ in 0..STEPS_PER_PERIOD {
+            let (x1, x0) = (gather(newton, &now), gather(newton, &before));
+            // Extrapolated start of the step.
+            let mut next = now.clone();
+            let change: Vec<f64> = x1.iter().zip(&x0).map(|(a, b)| a - b).collect();
+            newton.numbers().add(&change, 1.0, &mut next);
+            for k in 0..CHORD_STEPS {
+                residual::evaluate(level, &next, &level.source, &mut residual);
+                let mut right = gather(newton, &residual);
+                let x = gather(newton, &next);
+                for (n, r) in right.iter_mut().enumerate() {
+                    *r -= masses[n] * (1.5 * x[n] - 2.0 * x1[n] + 0.5 * x0[n]) / step;
+                }
+                newton.drop_pinned(level, &mut right);
+                factors.solve(&mut right);
+                newton.numbers().add(&right, 1.0, &mut next);
+                let mut moved = steady.clone();
+                moved.clear();
+                newton.numbers().add(&right, 1.0, &mut moved);
+                let size = (largest(&moved.u).max(largest(&moved.v)) / speed)
+                    .max(largest(&moved.t) / rise);
+                if size < CHORD_BOUND {
+                    break;
+                }
+                if k + 1 == CHORD_STEPS {
+                    factors = newton.shifted(level, &next, &level.source, 1.5 / step)?.0;
+                }
+            }
+            before = std::mem::replace(&mut now, next);
+            if going_on() == Control::Stop || !largest(&now.v).is_finite() {
+                return Ok(bands.pop().unwrap_or(band));
+            }
+            for (b, t) in band.iter_mut().zip(highest(problem, &now)) {
+                *b = [b[0].min(t), b[1].max(t)];
+            }
+            let away = |a: &[f64], b: &[f64]| {
+                a.iter().zip(b).map(|(a, b)| (a - b).powi(2)).sum::<f64>().sqrt()
+            };
+            size = size.max(away(&now.v, &steady.v));
+        }
+        bands.push(band);
+        sizes.push(size);
+        // The sway keeps its size: two periods in a row within a tenth.
+        let n = sizes.len();
+        if n >= 4
+            && (sizes[n - 1] / sizes[n - 2] - 1.0).abs() < 0.1
+            && (sizes[n - 2] / sizes[n - 3] - 1.0).abs() < 0.1
+        {
+            break;
+        }
+    }
+    let n = bands.len();
+    let widest = |(a, b): (&[f64; 2], &[f64; 2])| [a[0].min(b[0]), a[1].max(b[1])];
+    Ok(bands[n - 1].iter().zip(&bands[n.saturating_sub(2)]).map(widest).collect())
+}
+
+fn highest(problem: &Problem, state: &State) -> Vec<f64> {
+    part_temperatures(problem, state).iter().map(|p| p.map_or(0.0, |p| p.max)).collect()
+}
+
+fn largest(values: &[f64]) -> f64 {
+    values.iter().fold(0.0, |a: f64, b| if b.is_nan() { f64::NAN } else { a.max(b.abs()) })
+}
