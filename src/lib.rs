@@ -2,4 +2,7 @@
 
 pub mod benchmark;
 pub mod case;
+pub mod cli;
 pub mod output;
+pub mod progress;
+pub mod run;
