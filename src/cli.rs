@@ -64,7 +64,7 @@ pub struct TypedSolve {
     #[arg(long, value_name = "N", value_parser = clap::value_parser!(u32).range(3..=720))]
     pub revolve: Option<u32>,
     /// End with exit code 3 if a part comes closer to its limit than so many kelvin
-    #[arg(long, value_name = "K", value_parser = kelvin, allow_negative_numbers = true)]
+    #[arg(long, value_name = "K", value_parser = kelvin, allow_hyphen_values = true)]
     pub require_margin: Option<f64>,
     /// Stop after this time with what there is, such as "10 min"
     #[arg(long, value_name = "TIME", value_parser = time)]
