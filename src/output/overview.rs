@@ -83,9 +83,9 @@ impl<'a> Overview<'a> {
         let case = self.case;
         writeln!(
             out,
-            "Blocks    {} in {} parts, {} W in all",
+            "Blocks    {} in {}, {} W in all",
             case.blocks().len(),
-            case.parts().len(),
+            counted(case.parts().len(), "part"),
             fixed(case.heat(), 3)
         )?;
         for block in case.blocks().iter().take(LISTED) {
@@ -111,9 +111,9 @@ impl<'a> Overview<'a> {
             );
             writeln!(
                 out,
-                "  part {}: {} blocks, {} W, {limit}",
+                "  part {}: {}, {} W, {limit}",
                 part.name,
-                part.blocks.len(),
+                counted(part.blocks.len(), "block"),
                 part.heat
             )?;
         }
@@ -240,6 +240,11 @@ impl<'a> Overview<'a> {
 
 fn more(out: &mut dyn Write, count: usize) -> io::Result<()> {
     if count > LISTED { writeln!(out, "  and {} more", count - LISTED) } else { Ok(()) }
+}
+
+/// A count with its noun.
+fn counted(count: usize, noun: &str) -> String {
+    if count == 1 { format!("1 {noun}") } else { format!("{count} {noun}s") }
 }
 
 /// Millimetres with what digits it takes, four significant at most after the point.
