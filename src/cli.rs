@@ -6,6 +6,7 @@ use std::time::Duration;
 
 use clap::{Args, Parser, Subcommand};
 
+use crate::benchmark;
 use crate::case::units::{self, Dimension};
 
 /// Will every part of a fanless, vented housing stay below its limit?
@@ -44,6 +45,32 @@ pub enum TypedCommand {
                             min\""
     )]
     Solve(TypedSolve),
+    /// Compute published cavity cases and set them beside their table values
+    #[command(after_help = "Examples:\n  ventrise benchmark\n  ventrise benchmark \
+                            square-cavity-1e6 --cells 128 --json")]
+    Benchmark(TypedBenchmark),
+}
+
+/// `benchmark` as typed.
+#[derive(Debug, Args)]
+pub struct TypedBenchmark {
+    /// Case such as square-cavity-1e6 [default: the square cavity at Rayleigh 1e3 to 1e6]
+    pub name: Option<String>,
+    /// Cells along each side [default: 128]
+    #[arg(long, value_name = "N")]
+    pub cells: Option<usize>,
+    /// Equal cells instead of cells graded towards the walls
+    #[arg(long)]
+    pub uniform: bool,
+    /// Rayleigh 1e7 too
+    #[arg(long)]
+    pub all: bool,
+    /// A JSON list instead of tables
+    #[arg(long)]
+    pub json: bool,
+    /// Threads to work with [default: all the machine offers]
+    #[arg(long, value_name = "N")]
+    pub threads: Option<NonZeroUsize>,
 }
 
 /// `solve` as typed.
@@ -81,6 +108,13 @@ pub enum Command {
     },
     /// Solve a case.
     Solve(Solve),
+    /// Compute published cases.
+    Benchmark {
+        /// Which and how.
+        request: benchmark::Request,
+        /// Number of threads.
+        threads: usize,
+    },
 }
 
 /// A solve with its defaults resolved.
@@ -109,18 +143,30 @@ impl Typed {
             TypedCommand::Check { case } => Command::Check { case },
             TypedCommand::Solve(typed) => Command::Solve(Solve {
                 out: typed.out.unwrap_or_else(|| typed.case.with_extension("results")),
-                threads: typed
-                    .threads
-                    .or(std::thread::available_parallelism().ok())
-                    .map_or(1, NonZeroUsize::get),
+                threads: all_unless(typed.threads),
                 quiet: typed.quiet,
                 revolve: typed.revolve.map(|n| n as usize),
                 require_margin: typed.require_margin,
                 time_limit: typed.time_limit,
                 case: typed.case,
             }),
+            TypedCommand::Benchmark(typed) => Command::Benchmark {
+                request: benchmark::Request {
+                    name: typed.name,
+                    all: typed.all,
+                    cells: typed.cells,
+                    uniform: typed.uniform,
+                    json: typed.json,
+                },
+                threads: all_unless(typed.threads),
+            },
         }
     }
+}
+
+/// The threads asked for, or all that the machine offers.
+fn all_unless(asked: Option<NonZeroUsize>) -> usize {
+    asked.or(std::thread::available_parallelism().ok()).map_or(1, NonZeroUsize::get)
 }
 
 /// A margin: a finite number of kelvin, with or without the unit.

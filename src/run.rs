@@ -10,8 +10,9 @@ use std::time::Instant;
 use clap::Parser;
 use cpu_time::ProcessTime;
 use ventrise_mesh::{Generated, Geometry};
-use ventrise_solver::{Control, Problem, Settings, Solution, SolveError, StopReason, Verdict};
+use ventrise_solver::{Control, Problem, Solution, SolveError, StopReason, Verdict};
 
+use crate::benchmark::{self, BenchmarkError};
 use crate::case::{Case, CaseErrors, setup};
 use crate::cli::{Command, Solve, Typed};
 use crate::output::overview::Overview;
@@ -58,13 +59,18 @@ enum Trouble {
     Solve(#[from] SolveError),
     #[error("threads cannot be started: {0}")]
     Threads(#[from] rayon::ThreadPoolBuildError),
+    #[error("{0}")]
+    Benchmark(#[from] BenchmarkError),
 }
 
 impl Trouble {
     fn ending(&self) -> Ending {
         match self {
             Trouble::Case(_) | Trouble::Mesh { .. } | Trouble::Revolve => Ending::WrongInput,
-            Trouble::Folder(_) | Trouble::Solve(_) | Trouble::Threads(_) => Ending::Failure,
+            Trouble::Benchmark(BenchmarkError::Name { .. } | BenchmarkError::Cells { .. }) => {
+                Ending::WrongInput
+            }
+            _ => Ending::Failure,
         }
     }
 }
@@ -82,6 +88,7 @@ pub fn run(words: impl IntoIterator<Item = OsString>) -> ExitCode {
     let done = match typed.resolve() {
         Command::Check { case } => check(&case),
         Command::Solve(solve) => solve_case(&solve),
+        Command::Benchmark { request, threads } => compare(&request, threads),
     };
     let ending = done.unwrap_or_else(|trouble| {
         let _ = writeln!(io::stderr(), "{trouble}");
@@ -116,6 +123,19 @@ fn check(path: &Path) -> Result<Ending, Trouble> {
         .map_err(|e| Trouble::Mesh { file: case.file().into(), reason: e.to_string() })?;
     print(|out| overview.write(out));
     Ok(Ending::Settled)
+}
+
+fn compare(request: &benchmark::Request, threads: usize) -> Result<Ending, Trouble> {
+    let settled = in_pool(threads, || benchmark::run(request, &mut io::stdout()))?;
+    match settled {
+        Ok(true) => Ok(Ending::Settled),
+        Ok(false) => Ok(Ending::NotSettled),
+        // The reader has gone away and wants no more.
+        Err(BenchmarkError::Write(e)) if e.kind() == io::ErrorKind::BrokenPipe => {
+            Ok(Ending::Settled)
+        }
+        Err(error) => Err(error.into()),
+    }
 }
 
 fn problem_of(case: &Case, generated: &Generated) -> Result<Problem, Trouble> {
@@ -204,22 +224,17 @@ fn iterate(
         }
         if interruption.is_some() { Control::Stop } else { Control::Continue }
     };
-    let solved = in_pool(asked.threads, problem, &settings, &mut watch)?;
+    let solved =
+        in_pool(asked.threads, || ventrise_solver::solve(problem, &settings, None, &mut watch))?;
     view.finish(solved.as_ref().ok().and_then(|s| s.history.last()));
     let solution = solved?;
     let interruption = interruption.filter(|_| solution.stop == StopReason::Asked);
     Ok((solution, interruption))
 }
 
-/// Solves inside one pool of so many threads.
-fn in_pool(
-    threads: usize,
-    problem: &Problem,
-    settings: &Settings,
-    watch: &mut (dyn FnMut(&ventrise_solver::Progress) -> Control + Send),
-) -> Result<Result<Solution, SolveError>, Trouble> {
-    let pool = rayon::ThreadPoolBuilder::new().num_threads(threads).build()?;
-    Ok(pool.install(|| ventrise_solver::solve(problem, settings, None, watch)))
+/// Works inside one pool of so many threads.
+fn in_pool<T: Send>(threads: usize, work: impl FnOnce() -> T + Send) -> Result<T, Trouble> {
+    Ok(rayon::ThreadPoolBuilder::new().num_threads(threads).build()?.install(work))
 }
 
 /// Interrupts received so far.

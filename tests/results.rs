@@ -10,68 +10,7 @@ use ventrise::output::{Folder, Run, Summary, write_files};
 use ventrise_mesh::{AIR, Mesh};
 use ventrise_solver::{Air, Problem, Progress, Residuals, Solution, State, StopReason, Verdict};
 
-const CASE: &str = r#"
-title = "Ring, and a \"core\""
-
-[section]
-geometry = "axisymmetric"
-width = "100 mm"
-height = "200 mm"
-
-[ambient]
-temperature = "40 degC"
-
-[air]
-properties = "given"
-density = "1.2 kg/m3"
-viscosity = "2e-5 Pa s"
-conductivity = "0.025 W/(m K)"
-specific-heat = "1000 J/(kg K)"
-expansion = "0.003 1/K"
-
-[[material]]
-name = "metal"
-conductivity-x = "200 W/(m K)"
-conductivity-y = "50 W/(m K)"
-
-[[block]]
-name = "core, main"
-part = "radio"
-material = "metal"
-x = ["0 mm", "40 mm"]
-y = ["40 mm", "160 mm"]
-heat = "12 W"
-limit = "85 degC"
-
-[[slot]]
-name = "floor"
-side = "bottom"
-from = "60 mm"
-to = "100 mm"
-loss = 1.5
-
-[[slot]]
-name = "roof"
-side = "top"
-from = "60 mm"
-to = "100 mm"
-loss = 1.5
-
-[sides]
-right = { film = "8 W/(m2 K)" }
-
-[[probe]]
-name = "TC1"
-at = ["50 mm", "110 mm"]
-
-[[probe]]
-name = "column"
-from = ["50 mm", "0 mm"]
-to = ["50 mm", "200 mm"]
-
-[mesh]
-cells = [10, 20]
-"#;
+const CASE: &str = include_str!("cases/ring.toml");
 
 /// The case with fields that satisfy nothing but are different in every cell.
 fn made_up() -> (Case, Problem, Solution) {

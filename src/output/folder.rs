@@ -153,8 +153,13 @@ fn share(path: &Path) -> io::Result<()> {
     fs::set_permissions(path, rights)
 }
 
-/// Refuses targets that are no folders, or folders of something else.
+/// Refuses targets that are no folders or lie below none, and folders of something else.
 fn check_target(target: &Path) -> Result<(), FolderError> {
+    if let Some(above) = target.ancestors().skip(1).find(|a| a.exists())
+        && !above.is_dir()
+    {
+        return Err(FolderError::NoFolder(above.into()));
+    }
     if !target.exists() {
         return Ok(());
     }
@@ -258,8 +263,10 @@ mod tests {
         fs::write(place.path().join("thesis.txt"), "years of work").unwrap();
         let error = write_to(place.path(), "1").unwrap_err();
         assert!(matches!(error, FolderError::Foreign(_)), "{error}");
-        let error = write_to(&place.path().join("thesis.txt"), "1").unwrap_err();
-        assert!(matches!(error, FolderError::NoFolder(_)), "{error}");
+        for target in ["thesis.txt", "thesis.txt/results"] {
+            let error = write_to(&place.path().join(target), "1").unwrap_err();
+            assert!(matches!(error, FolderError::NoFolder(_)), "{error}");
+        }
         assert_eq!(names(place.path()), ["thesis.txt"]);
     }
 
