@@ -3,4 +3,7 @@
 pub mod benchmark;
 pub mod case;
 pub mod check;
+pub mod cli;
 pub mod output;
+pub mod progress;
+pub mod run;

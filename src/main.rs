@@ -1,2 +1,5 @@
 //! The `ventrise` program.
-fn main() {}
+
+fn main() -> std::process::ExitCode {
+    ventrise::run::run(std::env::args_os())
+}

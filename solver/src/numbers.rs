@@ -33,6 +33,8 @@ pub struct Numbers {
     pub max_speed: f64,
     /// Highest rise anywhere [K].
     pub max_rise: f64,
+    /// Highest rise of the air [K]; `None` when there is none.
+    pub max_air_rise: Option<f64>,
     /// Pressure of the warm air's column between the lowest and the highest opening [Pa]; over
     /// the whole height when there are no two openings at different heights.
     pub stack_pressure: f64,
@@ -142,6 +144,8 @@ pub fn numbers(problem: &Problem, air: &Air, state: &State) -> Numbers {
     let mesh = problem.mesh();
     let d = problem.description();
     let max_rise = state.t.iter().copied().fold(f64::NEG_INFINITY, f64::max);
+    let is_air = |(rise, region): (&f64, &u32)| (*region == AIR).then_some(*rise);
+    let air_rises = state.t.iter().zip(mesh.regions()).filter_map(is_air);
     let height = mesh.y()[mesh.ny()] - mesh.y()[0];
     let gravity = d.gravity[0].hypot(d.gravity[1]);
     let speeds = cell_velocities(problem, state);
@@ -152,6 +156,7 @@ pub fn numbers(problem: &Problem, air: &Air, state: &State) -> Numbers {
         vent_reynolds: vent_reynolds(problem, air, state),
         max_speed: speeds.iter().map(|v| v[0].hypot(v[1])).fold(0.0, f64::max),
         max_rise,
+        max_air_rise: air_rises.max_by(f64::total_cmp),
         stack_pressure: stack_pressure(problem, air, state),
     }
 }

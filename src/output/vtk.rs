@@ -12,9 +12,6 @@ use vtkio::model::{
 };
 use vtkio::xml::Compressor;
 
-/// Block size of the compressor [bytes]; fixed in the library.
-const COMPRESSED_BLOCK: usize = 32_768;
-
 /// Values of one field, one per cell of the section, row-major.
 #[derive(Debug, Clone, PartialEq)]
 pub enum Values {
@@ -74,8 +71,7 @@ impl Fields {
             meta: None,
             pieces: vec![Piece::Inline(Box::new(RectilinearGridPiece { extent, coords, data }))],
         };
-        let sizes = [self.x.len() * 8, self.y.len() * 8, 8].into_iter();
-        write(set, sizes.chain(self.array_sizes(1)), out)
+        write(set, out)
     }
 
     /// Writes the section revolved about x = 0 in `sectors` equal sectors of a full turn as a
@@ -105,26 +101,13 @@ impl Fields {
             })
         });
         let data = Attributes { point: Vec::new(), cell: arrays.collect() };
-        let sizes = [points.len() * 8].into_iter();
         let piece = StructuredGridPiece { extent: extent.clone(), points: points.into(), data };
         let set = DataSet::StructuredGrid {
             extent,
             meta: None,
             pieces: vec![Piece::Inline(Box::new(piece))],
         };
-        write(set, sizes.chain(self.array_sizes(sectors)), out)
-    }
-
-    /// Bytes of every array of cell data.
-    fn array_sizes(&self, copies: usize) -> impl Iterator<Item = usize> {
-        self.fields.iter().map(move |field| {
-            copies
-                * match &field.values {
-                    Values::Scalar(v) => 8 * v.len(),
-                    Values::Vector(v) => 24 * v.len(),
-                    Values::Index(v) => 4 * v.len(),
-                }
-        })
+        write(set, out)
     }
 }
 
@@ -163,7 +146,7 @@ fn array(field: &Field, data: impl Fn(&Values) -> IOBuffer) -> Attribute {
     Attribute::DataArray(DataArray { name: field.name.into(), elem, data: data(&field.values) })
 }
 
-fn write(data: DataSet, sizes: impl Iterator<Item = usize>, out: impl Write) -> io::Result<()> {
+fn write(data: DataSet, out: impl Write) -> io::Result<()> {
     let vtk = Vtk {
         version: Version::new_xml(1, 0),
         byte_order: ByteOrder::LittleEndian,
@@ -171,7 +154,6 @@ fn write(data: DataSet, sizes: impl Iterator<Item = usize>, out: impl Write) -> 
         data,
         file_path: None,
     };
-    let _ = (sizes, COMPRESSED_BLOCK);
     let xml = vtk.try_into_xml_format(Compressor::LZ4, 1).map_err(io::Error::other)?;
     xml.write(out).map_err(io::Error::other)
 }

@@ -1,0 +1,236 @@
+//! The command line: as typed, then checked and resolved.
+
+use std::num::NonZeroUsize;
+use std::path::PathBuf;
+use std::time::Duration;
+
+use clap::{Args, Parser, Subcommand};
+
+use crate::benchmark;
+use crate::case::units::{self, Dimension};
+
+/// Will every part of a fanless, vented housing stay below its limit?
+#[derive(Debug, Parser)]
+#[command(
+    name = "ventrise",
+    version,
+    about,
+    long_about = "Will every part of a fanless, vented housing stay below its limit? Ventrise \
+                  computes the draught that heat drives through the vents of a housing's section, \
+                  and the temperatures of its parts.",
+    after_help = "Example:\n  ventrise solve cases/wall-cabinet.toml\n\nExit codes: 0 settled, 1 \
+                  not settled, 2 wrong case or command, 3 margin not kept,\n4 interrupted, 5 file \
+                  system or internal failure.",
+    max_term_width = 100
+)]
+pub struct Typed {
+    /// What to do.
+    #[command(subcommand)]
+    pub command: TypedCommand,
+}
+
+/// Commands as typed.
+#[derive(Debug, Subcommand)]
+pub enum TypedCommand {
+    /// Read and judge a case: what was understood, mesh, cells across gaps; solves nothing
+    #[command(after_help = "Example:\n  ventrise check cases/wall-cabinet.toml")]
+    Check {
+        /// Case file (TOML)
+        case: PathBuf,
+    },
+    /// Solve a case and write its results folder
+    #[command(
+        after_help = "Examples:\n  ventrise solve cases/wall-cabinet.toml\n  ventrise solve \
+                            radio.toml --out runs/radio --require-margin 5 --time-limit \"10 \
+                            min\""
+    )]
+    Solve(TypedSolve),
+    /// Compute published cavity cases and set them beside their table values
+    #[command(after_help = "Examples:\n  ventrise benchmark\n  ventrise benchmark \
+                            square-cavity-1e6 --cells 128 --json")]
+    Benchmark(TypedBenchmark),
+}
+
+/// `benchmark` as typed.
+#[derive(Debug, Args)]
+pub struct TypedBenchmark {
+    /// Case such as square-cavity-1e6 [default: the square cavity at Rayleigh 1e3 to 1e6]
+    pub name: Option<String>,
+    /// Cells along each side [default: 128]
+    #[arg(long, value_name = "N")]
+    pub cells: Option<usize>,
+    /// Equal cells instead of cells graded towards the walls
+    #[arg(long)]
+    pub uniform: bool,
+    /// Rayleigh 1e7 too
+    #[arg(long)]
+    pub all: bool,
+    /// A JSON list instead of tables
+    #[arg(long)]
+    pub json: bool,
+    /// Threads to work with [default: all the machine offers]
+    #[arg(long, value_name = "N")]
+    pub threads: Option<NonZeroUsize>,
+}
+
+/// `solve` as typed.
+#[derive(Debug, Args)]
+pub struct TypedSolve {
+    /// Case file (TOML)
+    pub case: PathBuf,
+    /// Results folder [default: NAME.results beside the case file]
+    #[arg(long, value_name = "DIR")]
+    pub out: Option<PathBuf>,
+    /// Threads to work with [default: all the machine offers]
+    #[arg(long, value_name = "N")]
+    pub threads: Option<NonZeroUsize>,
+    /// Show nothing but errors
+    #[arg(long, short)]
+    pub quiet: bool,
+    /// Also write the fields of an axisymmetric section turned into a body of N sectors
+    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u32).range(3..=720))]
+    pub revolve: Option<u32>,
+    /// End with exit code 3 if a part comes closer to its limit than so many kelvin
+    #[arg(long, value_name = "K", value_parser = kelvin, allow_hyphen_values = true)]
+    pub require_margin: Option<f64>,
+    /// Stop after this time with what there is, such as "10 min"
+    #[arg(long, value_name = "TIME", value_parser = time)]
+    pub time_limit: Option<Duration>,
+}
+
+/// What is to be done, resolved.
+#[derive(Debug, Clone, PartialEq)]
+pub enum Command {
+    /// Judge a case.
+    Check {
+        /// The case file.
+        case: PathBuf,
+    },
+    /// Solve a case.
+    Solve(Solve),
+    /// Compute published cases.
+    Benchmark {
+        /// Which and how.
+        request: benchmark::Request,
+        /// Number of threads.
+        threads: usize,
+    },
+}
+
+/// A solve with its defaults resolved.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Solve {
+    /// The case file.
+    pub case: PathBuf,
+    /// The results folder.
+    pub out: PathBuf,
+    /// Number of threads.
+    pub threads: usize,
+    /// Show nothing but errors.
+    pub quiet: bool,
+    /// Sectors of the revolved fields.
+    pub revolve: Option<usize>,
+    /// Least margin of every part with a limit [K].
+    pub require_margin: Option<f64>,
+    /// Time after which to stop.
+    pub time_limit: Option<Duration>,
+}
+
+impl Typed {
+    /// Resolves what was typed.
+    pub fn resolve(self) -> Command {
+        match self.command {
+            TypedCommand::Check { case } => Command::Check { case },
+            TypedCommand::Solve(typed) => Command::Solve(Solve {
+                out: typed.out.unwrap_or_else(|| typed.case.with_extension("results")),
+                threads: all_unless(typed.threads),
+                quiet: typed.quiet,
+                revolve: typed.revolve.map(|n| n as usize),
+                require_margin: typed.require_margin,
+                time_limit: typed.time_limit,
+                case: typed.case,
+            }),
+            TypedCommand::Benchmark(typed) => Command::Benchmark {
+                request: benchmark::Request {
+                    name: typed.name,
+                    all: typed.all,
+                    cells: typed.cells,
+                    uniform: typed.uniform,
+                    json: typed.json,
+                },
+                threads: all_unless(typed.threads),
+            },
+        }
+    }
+}
+
+/// The threads asked for, or all that the machine offers.
+fn all_unless(asked: Option<NonZeroUsize>) -> usize {
+    asked.or(std::thread::available_parallelism().ok()).map_or(1, NonZeroUsize::get)
+}
+
+/// A margin: a finite number of kelvin, with or without the unit.
+fn kelvin(text: &str) -> Result<f64, String> {
+    let number = text.trim().strip_suffix('K').unwrap_or(text).trim();
+    match number.parse::<f64>() {
+        Ok(value) if value.is_finite() => Ok(value),
+        _ => Err("a number of kelvin such as 5 or \"5 K\" belongs here".into()),
+    }
+}
+
+/// A time with its unit.
+fn time(text: &str) -> Result<Duration, String> {
+    match units::parse(text, Dimension::Time).map(Duration::try_from_secs_f64) {
+        Ok(Ok(time)) if !time.is_zero() => Ok(time),
+        _ => Err("a time above zero with its unit belongs here, such as \"90 s\", \"10 min\" or \
+                  \"2 h\""
+            .into()),
+    }
+}
+
+#[cfg(test)]
+#[allow(clippy::unwrap_used)]
+mod tests {
+    use super::*;
+
+    fn resolve(words: &[&str]) -> Result<Command, clap::Error> {
+        Typed::try_parse_from(std::iter::once(&"ventrise").chain(words)).map(Typed::resolve)
+    }
+
+    #[test]
+    fn the_command_line_is_consistent() {
+        use clap::CommandFactory;
+        Typed::command().debug_assert();
+    }
+
+    #[test]
+    fn results_go_beside_the_case() {
+        let Command::Solve(solve) = resolve(&["solve", "a/radio.v2.toml"]).unwrap() else {
+            panic!("not a solve");
+        };
+        assert_eq!(solve.out, PathBuf::from("a/radio.v2.results"));
+        assert!(solve.threads >= 1 && !solve.quiet);
+    }
+
+    #[test]
+    fn values_have_bounds_and_units() {
+        let solve = |words: &[&str]| resolve(&[&["solve", "x.toml"], words].concat());
+        let Ok(Command::Solve(s)) =
+            solve(&["--require-margin", "-2.5 K", "--time-limit", "2 min", "--revolve", "12"])
+        else {
+            panic!("refused");
+        };
+        assert_eq!((s.require_margin, s.revolve), (Some(-2.5), Some(12)));
+        assert_eq!(s.time_limit, Some(Duration::from_secs(120)));
+        for wrong in [
+            ["--threads", "0"],
+            ["--revolve", "2"],
+            ["--time-limit", "10"],
+            ["--time-limit", "0 s"],
+            ["--require-margin", "nan"],
+            ["--require-margin", "5 mm"],
+        ] {
+            assert!(solve(&wrong).is_err(), "{wrong:?}");
+        }
+    }
+}

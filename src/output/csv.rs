@@ -1,0 +1,173 @@
+//! Tables for spreadsheets: comma separated, one header row with units, names quoted where needed.
+
+use ventrise_mesh::AIR;
+use ventrise_solver::{Progress, Sample};
+
+use crate::case::Case;
+
+use super::readings::Readings;
+use super::summary::Summary;
+
+/// A table under construction.
+struct Table(String);
+
+impl Table {
+    fn new(header: &[&str]) -> Table {
+        let mut table = Table(String::new());
+        table.row(header.iter().map(|h| quoted(h)));
+        table
+    }
+
+    fn row(&mut self, cells: impl IntoIterator<Item = String>) {
+        let cells: Vec<String> = cells.into_iter().collect();
+        self.0.push_str(&cells.join(","));
+        self.0.push('\n');
+    }
+}
+
+/// A text cell; quoted when it holds a comma, a quote or a line break.
+fn quoted(text: &str) -> String {
+    if text.contains([',', '"', '\n', '\r']) {
+        format!("\"{}\"", text.replace('"', "\"\""))
+    } else {
+        text.to_string()
+    }
+}
+
+fn number(value: f64) -> String {
+    format!("{value}")
+}
+
+fn perhaps(value: Option<f64>) -> String {
+    value.map(number).unwrap_or_default()
+}
+
+/// `history.csv`: one row per outer iteration.
+pub fn history(case: &Case, ambient: f64, rows: &[Progress]) -> String {
+    let parts: Vec<String> = case.parts().iter().map(|p| format!("{} max_c", p.name)).collect();
+    let mut header = vec![
+        "iteration",
+        "cells",
+        "mass",
+        "momentum_x",
+        "momentum_y",
+        "energy",
+        "heat_error",
+        "mass_error",
+        "flow_in_m3_s",
+        "drift_k",
+    ];
+    header.extend(parts.iter().map(String::as_str));
+    let mut table = Table::new(&header);
+    for p in rows {
+        let r = &p.residuals;
+        let mut cells = vec![p.iteration.to_string(), p.cells.to_string()];
+        let values = [r.mass, r.momentum_x, r.momentum_y, r.energy, p.heat_error, p.mass_error];
+        cells.extend(values.map(number));
+        cells.extend([number(p.flow_in), number(p.drift)]);
+        cells.extend(p.part_max.iter().map(|rise| number(ambient + rise)));
+        table.row(cells);
+    }
+    table.0
+}
+
+/// `parts.csv`.
+pub fn parts(summary: &Summary) -> String {
+    let mut table = Table::new(&[
+        "part",
+        "heat_w",
+        "min_c",
+        "mean_c",
+        "max_c",
+        "limit_c",
+        "margin_k",
+        "resistance_k_w",
+    ]);
+    for p in &summary.parts {
+        let values = [p.min_c, p.mean_c, p.max_c, p.limit_c, p.margin_k, p.resistance_k_w];
+        let start = [quoted(&p.name), number(p.heat_w)];
+        table.row(start.into_iter().chain(values.map(perhaps)));
+    }
+    table.0
+}
+
+/// `slots.csv`.
+pub fn slots(summary: &Summary) -> String {
+    let mut table = Table::new(&[
+        "slot",
+        "side",
+        "in_m3_s",
+        "out_m3_s",
+        "out_mean_c",
+        "mean_pressure_pa",
+        "heat_w",
+        "area_m2",
+    ]);
+    for s in &summary.slots {
+        table.row([
+            quoted(&s.name),
+            s.side.to_string(),
+            number(s.in_m3_s),
+            number(s.out_m3_s),
+            perhaps(s.out_mean_c),
+            number(s.mean_pressure_pa),
+            number(s.heat_w),
+            number(s.area_m2),
+        ]);
+    }
+    table.0
+}
+
+/// `sides.csv`.
+pub fn sides(summary: &Summary) -> String {
+    let mut table =
+        Table::new(&["side", "heat_w", "conduction_w", "convection_w", "in_m3_s", "out_m3_s"]);
+    for s in &summary.sides {
+        let values = [s.heat_w, s.conduction_w, s.convection_w, s.in_m3_s, s.out_m3_s];
+        table.row(std::iter::once(s.name.to_string()).chain(values.map(number)));
+    }
+    table.0
+}
+
+/// `probes.csv`: one row for a point, a row for every sample of a line.
+pub fn probes(case: &Case, readings: &Readings) -> String {
+    let mut table = Table::new(&[
+        "probe",
+        "distance_m",
+        "x_m",
+        "y_m",
+        "temperature_c",
+        "u_m_s",
+        "v_m_s",
+        "speed_m_s",
+        "pressure_pa",
+        "inside",
+    ]);
+    for (probe, samples) in case.probes().iter().zip(&readings.probes) {
+        let start = samples.first().map_or([0.0; 2], |s| s.at);
+        for s in samples {
+            table.row([
+                quoted(&probe.name),
+                number((s.at[0] - start[0]).hypot(s.at[1] - start[1])),
+                number(s.at[0]),
+                number(s.at[1]),
+                number(readings.ambient + s.rise),
+                number(s.velocity[0]),
+                number(s.velocity[1]),
+                number(s.speed()),
+                perhaps(s.pressure),
+                quoted(&inside(case, s)),
+            ]);
+        }
+    }
+    table.0
+}
+
+/// Name of the block that a sample lies in; its number when it has none.
+fn inside(case: &Case, sample: &Sample) -> String {
+    if sample.region == AIR {
+        return "air".into();
+    }
+    let name = case.blocks().get(sample.region as usize).and_then(|b| b.name.clone());
+    name.unwrap_or_else(|| format!("block {}", sample.region))
+}

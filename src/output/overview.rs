@@ -1,0 +1,272 @@
+//! What `check` says about a case: what was understood, its mesh, what a solve will take.
+
+use std::io::{self, Write};
+
+use ventrise_mesh::{Crossed, Crossing, GapEnd, Generated, Geometry, Mesh, MeshError, Side};
+use ventrise_solver::SideCondition;
+
+use crate::case::setup::layout;
+use crate::case::{AirChoice, Case, Estimate, ProbeShape};
+
+use super::readings::celsius;
+use super::screen::{fixed, grouped};
+use super::side_name;
+
+/// Memory of a solve [bytes per cell] and what it takes before the first cell; estimates.
+const MEMORY: [f64; 2] = [1500.0, 30e6];
+/// Most blocks and crossings listed one by one.
+const LISTED: usize = 40;
+
+/// A case on its mesh, ready to be described.
+#[derive(Debug, Clone)]
+pub struct Overview<'a> {
+    case: &'a Case,
+    generated: &'a Generated,
+    crossings: Vec<Crossing>,
+}
+
+impl<'a> Overview<'a> {
+    /// Looks at a case and its mesh.
+    ///
+    /// # Errors
+    /// A mesh that is not the case's own.
+    pub fn of(case: &'a Case, generated: &'a Generated) -> Result<Self, MeshError> {
+        let crossings = generated.mesh.crossings(&layout(case))?;
+        Ok(Overview { case, generated, crossings })
+    }
+
+    /// Writes everything.
+    ///
+    /// # Errors
+    /// What the stream reports.
+    pub fn write(&self, out: &mut dyn Write) -> io::Result<()> {
+        writeln!(out, "{}\n", self.case.title())?;
+        self.surroundings(out)?;
+        self.solids(out)?;
+        self.edge(out)?;
+        self.probes(out)?;
+        self.mesh(out)?;
+        self.estimate(out)?;
+        self.doubts(out)
+    }
+
+    fn surroundings(&self, out: &mut dyn Write) -> io::Result<()> {
+        let (section, ambient) = (self.case.section(), self.case.ambient());
+        let size = format!("{} x {} mm", mm(section.width), mm(section.height));
+        match section.geometry {
+            Geometry::Planar { depth } => {
+                writeln!(out, "Section   planar, {size}, depth {} mm", mm(depth))?;
+            }
+            Geometry::Axisymmetric => {
+                writeln!(out, "Section   axisymmetric, radius x height {size}")?;
+            }
+        }
+        writeln!(
+            out,
+            "Ambient   {} degC, {} Pa",
+            fixed(celsius(ambient.temperature), 1),
+            fixed(ambient.pressure, 0)
+        )?;
+        match self.case.air() {
+            AirChoice::Film => {
+                writeln!(out, "Air       dry, at the film temperature of the result")
+            }
+            AirChoice::Given { air, .. } => writeln!(
+                out,
+                "Air       given: {} kg/m3, {:e} Pa s, {} W/(m K), {} J/(kg K), {:e} 1/K",
+                air.density, air.viscosity, air.conductivity, air.specific_heat, air.expansion
+            ),
+        }
+    }
+
+    fn solids(&self, out: &mut dyn Write) -> io::Result<()> {
+        let case = self.case;
+        writeln!(
+            out,
+            "Blocks    {} in {}, {} W in all",
+            case.blocks().len(),
+            counted(case.parts().len(), "part"),
+            fixed(case.heat(), 3)
+        )?;
+        for block in case.blocks().iter().take(LISTED) {
+            let material = &case.materials()[block.material];
+            let [x, y] = [block.rectangle.x, block.rectangle.y];
+            writeln!(
+                out,
+                "  {}: {}, x {} to {} mm, y {} to {} mm{}",
+                block.name.as_deref().unwrap_or("(no name)"),
+                material.name,
+                mm(x[0]),
+                mm(x[1]),
+                mm(y[0]),
+                mm(y[1]),
+                if block.heat == 0.0 { String::new() } else { format!(", {} W", block.heat) }
+            )?;
+        }
+        more(out, case.blocks().len())?;
+        for part in case.parts() {
+            let limit = part.limit.map_or_else(
+                || "no limit".into(),
+                |limit| format!("limit {} degC", fixed(celsius(limit), 1)),
+            );
+            writeln!(
+                out,
+                "  part {}: {}, {} W, {limit}",
+                part.name,
+                counted(part.blocks.len(), "block"),
+                part.heat
+            )?;
+        }
+        Ok(())
+    }
+
+    fn edge(&self, out: &mut dyn Write) -> io::Result<()> {
+        writeln!(out, "Slots     {}", self.case.slots().len())?;
+        for slot in self.case.slots() {
+            writeln!(
+                out,
+                "  {}: {}, {} to {} mm, {} cm2, loss {}",
+                slot.name,
+                side_name(slot.side),
+                mm(slot.span[0]),
+                mm(slot.span[1]),
+                fixed(1e4 * self.case.slot_area(slot), 2),
+                slot.loss
+            )?;
+        }
+        let sides = Side::ALL.map(|side| {
+            let axis = side == Side::Left && self.case.section().geometry == Geometry::Axisymmetric;
+            let what =
+                if axis { "axis".to_string() } else { condition(&self.case.sides()[side.index()]) };
+            format!("{} {what}", side_name(side))
+        });
+        writeln!(out, "Sides     {}", sides.join(", "))
+    }
+
+    fn probes(&self, out: &mut dyn Write) -> io::Result<()> {
+        if !self.case.probes().is_empty() {
+            writeln!(out, "Probes    {}", self.case.probes().len())?;
+        }
+        for probe in self.case.probes() {
+            let place = |at: [f64; 2]| format!("({}, {}) mm", mm(at[0]), mm(at[1]));
+            match probe.shape {
+                ProbeShape::Point(at) => writeln!(out, "  {}: {}", probe.name, place(at))?,
+                ProbeShape::Line { from, to } => {
+                    writeln!(out, "  {}: {} to {}", probe.name, place(from), place(to))?;
+                }
+            }
+        }
+        Ok(())
+    }
+
+    fn mesh(&self, out: &mut dyn Write) -> io::Result<()> {
+        let mesh = &self.generated.mesh;
+        let [smallest, largest] = mesh.cell_sizes();
+        writeln!(
+            out,
+            "Mesh      {} x {} = {} cells, {} to {} mm",
+            mesh.nx(),
+            mesh.ny(),
+            grouped(mesh.cell_count()),
+            mm(smallest),
+            mm(largest)
+        )?;
+        writeln!(out, "  a solve takes about {} MB of memory", fixed(megabytes(mesh), 0))?;
+        let mut crossings: Vec<&Crossing> = self.crossings.iter().collect();
+        let wanted = |c: &Crossing| c.crossed.wanted(self.case.mesh_choice().across);
+        crossings.sort_by_key(|c| (c.cells >= wanted(c), matches!(c.crossed, Crossed::Block(_))));
+        for crossing in crossings.iter().take(LISTED) {
+            let few = if crossing.cells < wanted(crossing) {
+                format!("  (fewer than {})", wanted(crossing))
+            } else {
+                String::new()
+            };
+            writeln!(
+                out,
+                "  {:>4} cells along {} across {}, {} mm{few}",
+                crossing.cells,
+                crossing.axis.letter(),
+                self.crossed(crossing.crossed),
+                mm(crossing.size())
+            )?;
+        }
+        more(out, crossings.len())
+    }
+
+    fn crossed(&self, crossed: Crossed) -> String {
+        let block = |b: usize| {
+            let name = self.case.blocks().get(b).and_then(|b| b.name.clone());
+            name.unwrap_or_else(|| format!("block {}", b + 1))
+        };
+        let end = |end: GapEnd| match end {
+            GapEnd::Block(b) => block(b),
+            GapEnd::Side(side) => format!("the {} side", side_name(side)),
+        };
+        match crossed {
+            Crossed::Block(b) => block(b),
+            Crossed::Slot(s) => {
+                let name = self.case.slots().get(s).map(|s| s.name.as_str());
+                format!("slot {}", name.unwrap_or_default())
+            }
+            Crossed::Gap([a, b]) | Crossed::HalfGap([a, b]) => {
+                format!("the {} between {} and {}", crossed.word(), end(a), end(b))
+            }
+        }
+    }
+
+    fn estimate(&self, out: &mut dyn Write) -> io::Result<()> {
+        let estimate = Estimate::of(self.case);
+        writeln!(
+            out,
+            "By hand   surfaces about {} K above the air, layer about {} mm, Rayleigh about {:.0e}",
+            fixed(estimate.rise, 0),
+            mm((estimate.layer * 1e4).round() / 1e4),
+            estimate.rayleigh
+        )
+    }
+
+    fn doubts(&self, out: &mut dyn Write) -> io::Result<()> {
+        let warnings = self.case.warnings();
+        if warnings.is_empty() && self.generated.notes.is_empty() {
+            return writeln!(out, "\nThe case is in order.");
+        }
+        writeln!(out, "\nThe case can be solved; look at")?;
+        for warning in warnings.iter().chain(&self.generated.notes) {
+            writeln!(out, "  - {warning}")?;
+        }
+        Ok(())
+    }
+}
+
+fn more(out: &mut dyn Write, count: usize) -> io::Result<()> {
+    if count > LISTED { writeln!(out, "  and {} more", count - LISTED) } else { Ok(()) }
+}
+
+/// A count with its noun.
+fn counted(count: usize, noun: &str) -> String {
+    if count == 1 { format!("1 {noun}") } else { format!("{count} {noun}s") }
+}
+
+/// Millimetres with what digits it takes, four significant at most after the point.
+fn mm(metres: f64) -> String {
+    let text = format!("{:.4}", 1e3 * metres);
+    text.trim_end_matches('0').trim_end_matches('.').to_string()
+}
+
+fn megabytes(mesh: &Mesh) -> f64 {
+    (MEMORY[0] * mesh.cell_count() as f64 + MEMORY[1]) / 1e6
+}
+
+fn condition(condition: &SideCondition) -> String {
+    match condition {
+        SideCondition::Adiabatic => "adiabatic".into(),
+        SideCondition::Symmetry => "symmetry".into(),
+        SideCondition::Open => "open".into(),
+        SideCondition::Temperature(t) => format!("at {} degC", fixed(celsius(*t), 1)),
+        SideCondition::Flux(q) => format!("flux {q} W/m2"),
+        SideCondition::Film { coefficient, temperature } => {
+            format!("film {coefficient} W/(m2 K) to {} degC", fixed(celsius(*temperature), 1))
+        }
+        SideCondition::Sliding(speed) => format!("sliding at {speed} m/s"),
+    }
+}

@@ -1,0 +1,273 @@
+//! What is shown while a run works: in place on a terminal, else a plain line now and then.
+
+use std::collections::VecDeque;
+use std::io::{IsTerminal, Write};
+use std::time::{Duration, Instant};
+
+use indicatif::{ProgressBar, ProgressDrawTarget, ProgressStyle};
+use ventrise_solver::Progress;
+
+/// Time between plain lines.
+const PLAIN_EVERY: Duration = Duration::from_secs(5);
+/// Time between drawings on a terminal.
+const DRAW_EVERY: Duration = Duration::from_millis(120);
+/// Iterations over which the fall of the residual is judged.
+const TREND: usize = 60;
+/// Seconds in an hour.
+const HOUR: f64 = 3600.0;
+
+/// A part as far as the display needs it.
+#[derive(Debug, Clone)]
+pub struct WatchedPart {
+    /// Name.
+    pub name: String,
+    /// Limit as a rise above ambient [K].
+    pub limit_rise: Option<f64>,
+}
+
+/// Where progress goes.
+enum Display {
+    Quiet,
+    Plain { last: Option<Instant> },
+    Terminal { bar: ProgressBar, last: Option<Instant> },
+}
+
+/// Shows the progress of one run on standard error.
+pub struct ProgressView {
+    display: Display,
+    parts: Vec<WatchedPart>,
+    ambient: f64,
+    tolerance: f64,
+    begun: Instant,
+    trend: Trend,
+}
+
+impl ProgressView {
+    /// A view for a run; `ambient` [°C], `tolerance` the bound for residuals.
+    pub fn new(parts: Vec<WatchedPart>, ambient: f64, tolerance: f64, quiet: bool) -> Self {
+        let display = if quiet {
+            Display::Quiet
+        } else if std::io::stderr().is_terminal() {
+            let bar = ProgressBar::with_draw_target(None, ProgressDrawTarget::stderr());
+            bar.set_style(
+                ProgressStyle::default_spinner()
+                    .template("{msg}")
+                    .unwrap_or_else(|_| ProgressStyle::default_spinner()),
+            );
+            Display::Terminal { bar, last: None }
+        } else {
+            Display::Plain { last: None }
+        };
+        let (begun, trend) = (Instant::now(), Trend::default());
+        ProgressView { display, parts, ambient, tolerance, begun, trend }
+    }
+
+    /// Takes note of an iteration and shows it when it is time to.
+    pub fn update(&mut self, progress: &Progress) {
+        let now = Instant::now();
+        self.trend.note(progress, now);
+        let is_due = |last: &Option<Instant>, every| last.is_none_or(|l| now - l >= every);
+        match &mut self.display {
+            Display::Quiet => {}
+            Display::Plain { last } if is_due(last, PLAIN_EVERY) => {
+                *last = Some(now);
+                let line = self.line(progress, now);
+                say(&line);
+            }
+            Display::Terminal { last, .. } if is_due(last, DRAW_EVERY) => {
+                *last = Some(now);
+                let text = self.lines(progress, now);
+                if let Display::Terminal { bar, .. } = &self.display {
+                    bar.set_message(text);
+                    bar.tick();
+                }
+            }
+            _ => {}
+        }
+    }
+
+    /// Ends the display, with a last plain line when not on a terminal.
+    pub fn finish(&mut self, last: Option<&Progress>) {
+        match &self.display {
+            Display::Quiet => {}
+            Display::Plain { .. } => {
+                if let Some(progress) = last {
+                    say(&self.line(progress, Instant::now()));
+                }
+            }
+            Display::Terminal { bar, .. } => bar.finish_and_clear(),
+        }
+    }
+
+    fn line(&self, p: &Progress, now: Instant) -> String {
+        let mut line = format!(
+            "iteration {} on {} cells: residual {:.1e} of {:.0e}, heat balance {:.1e}",
+            p.iteration,
+            p.cells,
+            p.residuals.largest(),
+            self.tolerance,
+            p.heat_error
+        );
+        if p.flow_in > 0.0 {
+            line += &format!(", vents {:.2} m3/h", HOUR * p.flow_in);
+        }
+        if let Some(hottest) = self.hottest(p) {
+            line += &format!(", {hottest}");
+        }
+        line + &format!(", {}", self.times(now))
+    }
+
+    fn lines(&self, p: &Progress, now: Instant) -> String {
+        let r = &p.residuals;
+        let mut text = format!(
+            "iteration {} on {} cells   {}\nresiduals   mass {:.1e}   momentum {:.1e} {:.1e}   \
+             energy {:.1e}   bound {:.0e}\nheat balance {:.1e}   vents {:.2} m3/h",
+            p.iteration,
+            p.cells,
+            self.times(now),
+            r.mass,
+            r.momentum_x,
+            r.momentum_y,
+            r.energy,
+            self.tolerance,
+            p.heat_error,
+            HOUR * p.flow_in
+        );
+        if let Some(hottest) = self.hottest(p) {
+            text += &format!("\n{hottest}");
+        }
+        text
+    }
+
+    /// The part with the least margin; without limits, the hottest one.
+    fn hottest(&self, p: &Progress) -> Option<String> {
+        let margin = |part: &WatchedPart, rise: f64| part.limit_rise.map(|limit| limit - rise);
+        let watched = || self.parts.iter().zip(&p.part_max);
+        let judged = watched().filter_map(|(part, rise)| Some((part, rise, margin(part, *rise)?)));
+        let drift = format!("moving {:.0e} K an iteration", p.drift);
+        if let Some((part, rise, margin)) = judged.min_by(|a, b| a.2.total_cmp(&b.2)) {
+            let celsius = self.ambient + rise;
+            return Some(format!("{} {celsius:.1} degC, margin {margin:.1} K, {drift}", part.name));
+        }
+        let (part, rise) = watched().max_by(|a, b| a.1.total_cmp(b.1))?;
+        Some(format!("{} {:.1} degC, {drift}", part.name, self.ambient + rise))
+    }
+
+    fn times(&self, now: Instant) -> String {
+        let elapsed = duration((now - self.begun).as_secs_f64());
+        match self.trend.seconds_left(self.tolerance) {
+            Some(left) => format!("{elapsed}, about {} left", duration(left)),
+            None => elapsed,
+        }
+    }
+}
+
+/// Writes a line to standard error; a closed stream is no reason to stop.
+fn say(line: &str) {
+    let _ = writeln!(std::io::stderr(), "{line}");
+}
+
+/// Seconds in words.
+fn duration(seconds: f64) -> String {
+    match seconds {
+        s if s < 10.0 => format!("{s:.1} s"),
+        s if s < 120.0 => format!("{s:.0} s"),
+        s if s < 7200.0 => format!("{:.0} min", s / 60.0),
+        s => format!("{:.1} h", s / 3600.0),
+    }
+}
+
+/// The last residuals on one mesh, to see how fast they fall.
+#[derive(Debug, Default)]
+struct Trend {
+    cells: usize,
+    /// Logarithm of the largest residual and when it was reached.
+    points: VecDeque<(f64, Instant)>,
+}
+
+impl Trend {
+    fn note(&mut self, progress: &Progress, now: Instant) {
+        if progress.cells != self.cells {
+            self.cells = progress.cells;
+            self.points.clear();
+        }
+        let residual = progress.residuals.largest();
+        if residual > 0.0 && residual.is_finite() {
+            if self.points.len() == TREND {
+                self.points.pop_front();
+            }
+            self.points.push_back((residual.ln(), now));
+        }
+    }
+
+    /// Time until the bound is met on this mesh if the residual keeps falling as it did: a
+    /// straight line fitted to its logarithm against the iterations. `None` when it does not fall.
+    fn seconds_left(&self, tolerance: f64) -> Option<f64> {
+        let count = self.points.len();
+        if count < 5 {
+            return None;
+        }
+        let (first, last) = (self.points.front()?, self.points.back()?);
+        let middle = 0.5 * (count - 1) as f64;
+        let mean = self.points.iter().map(|p| p.0).sum::<f64>() / count as f64;
+        let (mut top, mut bottom) = (0.0, 0.0);
+        for (n, point) in self.points.iter().enumerate() {
+            let along = n as f64 - middle;
+            top += along * (point.0 - mean);
+            bottom += along * along;
+        }
+        let slope = top / bottom;
+        let to_go = last.0 - tolerance.ln();
+        if to_go <= 0.0 {
+            return Some(0.0);
+        }
+        let each = (last.1 - first.1).as_secs_f64() / (count - 1) as f64;
+        let left = to_go / -slope * each;
+        (slope < 0.0 && left < 1e6).then_some(left)
+    }
+}
+
+#[cfg(test)]
+#[allow(clippy::unwrap_used)]
+mod tests {
+    use super::*;
+    use ventrise_solver::Residuals;
+
+    fn progress(cells: usize, residual: f64) -> Progress {
+        let residuals = Residuals { energy: residual, ..Residuals::default() };
+        Progress { cells, residuals, ..Progress::default() }
+    }
+
+    #[test]
+    fn a_residual_that_falls_tenfold_a_second_has_three_seconds_from_1e3_above_the_bound() {
+        let (mut trend, begun) = (Trend::default(), Instant::now());
+        for n in 0..=20 {
+            let seconds = f64::from(n) * 0.25;
+            let residual = 10f64.powf(2.0 - seconds);
+            trend.note(&progress(100, residual), begun + Duration::from_secs_f64(seconds));
+        }
+        let left = trend.seconds_left(1e-6).unwrap();
+        assert!((left - 3.0).abs() < 1e-6, "{left}");
+        trend.note(&progress(400, 1e-2), begun + Duration::from_secs(6));
+        assert_eq!(trend.seconds_left(1e-6), None); // another mesh begins anew
+    }
+
+    #[test]
+    fn a_residual_that_stands_still_gives_no_time() {
+        let (mut trend, begun) = (Trend::default(), Instant::now());
+        for n in 0..20 {
+            trend.note(&progress(100, 1e-3), begun + Duration::from_secs(n));
+        }
+        assert_eq!(trend.seconds_left(1e-6), None);
+    }
+
+    #[test]
+    fn the_part_with_the_least_margin_is_shown() {
+        let part = |name: &str, limit| WatchedPart { name: name.into(), limit_rise: limit };
+        let parts = vec![part("core", Some(50.0)), part("board", Some(30.0)), part("lid", None)];
+        let view = ProgressView::new(parts, 40.0, 1e-6, true);
+        let p = Progress { part_max: vec![31.0, 20.0, 60.0], drift: 0.002, ..Progress::default() };
+        let shown = view.hottest(&p).unwrap();
+        assert_eq!(shown, "board 60.0 degC, margin 10.0 K, moving 2e-3 K an iteration");
+    }
+}
