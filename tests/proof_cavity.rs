@@ -160,7 +160,7 @@ fn any_number_of_threads_gives_the_same_bits() {
 /// number gives the Nusselt number of the cavity in simple numbers: only Ra and Pr matter.
 #[test]
 fn equal_rayleigh_and_prandtl_give_equal_nusselt_at_any_size() {
-    let (rayleigh, side, difference) = (3e5, 0.06, 12.0);
+    let (rayleigh, side, difference) = (3e5, 0.06_f64, 12.0);
     let air = Air::dry(298.15, 101_325.0);
     let gravity = rayleigh * air.kinematic_viscosity() * air.diffusivity()
         / (air.expansion * difference * side.powi(3));

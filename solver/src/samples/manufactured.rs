@@ -485,12 +485,16 @@ mod tests {
             let problem = m.problem().unwrap();
             let sum: f64 = problem.description().sources.as_ref().unwrap().heat.iter().sum();
             let mesh = problem.mesh();
-            let out = if m.upright {
-                gauss([0.0, 1.0], |y| -K * m.t(1.0, y)[1]) * mesh.x_area(mesh.nx())
-            } else {
-                gauss([0.0, 1.0], |x| -K * m.t(x, 1.0)[2] * mesh.x_area_at(x))
+            let flux = |t: f64| {
+                if m.upright {
+                    -K * m.t(1.0, t)[1] * mesh.x_area_at(1.0)
+                } else {
+                    -K * m.t(t, 1.0)[2] * mesh.x_area_at(t)
+                }
             };
-            assert!((sum - out).abs() < 1e-6 * (1.0 + out.abs()), "{m:?}: {sum} {out}");
+            let parts = (0..16).map(|n| f64::from(n) / 16.0);
+            let out: f64 = parts.map(|from| gauss([from, from + 1.0 / 16.0], flux)).sum();
+            assert!((sum - out).abs() < 1e-9 * (1.0 + out.abs()), "{m:?}: {sum} {out}");
         }
     }
 
