@@ -3,6 +3,8 @@
 //! Printed text is compared with `tests/cli/*.txt`, times, paths and round-off masked. To accept
 //! what is printed now, run the tests once with `VENTRISE_ACCEPT=1` and read the difference.
 
+#![allow(clippy::unwrap_used)]
+
 use std::fs;
 use std::io::{BufRead, BufReader, Read};
 use std::path::Path;
@@ -238,7 +240,8 @@ fn a_limit_that_ends_the_run_is_1_with_results() {
     let (code, out, err) = run(&place, &["solve", "case.toml"]);
     assert_eq!(code, 1, "{out}{err}");
     let s = summary(&place, "case.results");
-    assert_eq!((&s["verdict"], s.get("stopped_by")), (&Value::from("stopped early"), None));
+    let by = "iteration limit";
+    assert_eq!((&s["verdict"], &s["stopped_by"]), (&"stopped early".into(), &by.into()));
     let (code, ..) = run(&place, &["solve", "case.toml", "--time-limit", "1 s", "--quiet"]);
     assert_eq!(code, 1);
 }
@@ -271,7 +274,7 @@ fn an_interrupt_ends_the_run_with_4_and_what_there_is() {
     let mut out = String::new();
     child.stdout.take().unwrap().read_to_string(&mut out).unwrap();
     assert_eq!(child.wait().unwrap().code(), Some(4), "{out}");
-    assert!(out.contains("stopped early by a signal"), "{out}");
+    assert!(out.contains("stopped early by the signal"), "{out}");
     let s = summary(&place, "case.results");
     assert_eq!((&s["verdict"], &s["stopped_by"]), (&"stopped early".into(), &"signal".into()));
     assert_eq!(names(place.path()), ["case.results", "case.toml"]);

@@ -2,6 +2,8 @@
 //! build's `tmp` folder, where `.ci/read_vtr.py` compares them bit by bit with what an
 //! independent reader finds.
 
+#![allow(clippy::unwrap_used)]
+
 use std::fmt::Write as _;
 use std::fs::{self, File};
 use std::path::PathBuf;

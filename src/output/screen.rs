@@ -187,11 +187,11 @@ fn verdict(summary: &Summary) -> String {
             None => "swaying. The flow keeps moving in a bounded way; read the bands".into(),
         },
         ("drifting", _) => "drifting. Temperatures still creep; the numbers are not final".into(),
-        (_, Some("signal")) => {
-            "stopped early by a signal. These are the fields it had reached".to_string()
+        (_, Some("stalled")) => {
+            "stopped early. The residuals no longer fell; the numbers are not final".into()
         }
-        (_, Some(_)) => "stopped early by the time limit; the numbers are not final".into(),
-        _ => "stopped early at the iteration limit; the numbers are not final".to_string(),
+        (_, Some(by)) => format!("stopped early by the {by}. The numbers are not final"),
+        (_, None) => "stopped early. The numbers are not final".into(),
     };
     match hottest(summary) {
         Some(part) => format!("{sentence}. {part}."),

@@ -5,7 +5,7 @@
 
 use serde::Serialize;
 use ventrise_mesh::{AIR, Side};
-use ventrise_solver::{Sample, Verdict};
+use ventrise_solver::{Sample, StopReason, Verdict};
 
 use crate::case::{Case, ProbeShape};
 
@@ -27,7 +27,8 @@ pub struct Summary {
     pub case: CaseName,
     /// `settled`, `swaying`, `drifting` or `stopped early`.
     pub verdict: &'static str,
-    /// What ended the iteration early: `signal` or `time limit`.
+    /// What ended the iteration early: `signal`, `time limit`, `iteration limit` or `stalled`
+    /// (residuals no longer fell).
     #[serde(skip_serializing_if = "Option::is_none")]
     pub stopped_by: Option<&'static str>,
     /// About a swaying flow.
@@ -292,10 +293,7 @@ impl Summary {
             ventrise: env!("CARGO_PKG_VERSION"),
             case: CaseName { title: case.title().into(), sha256: case.sha256().into() },
             verdict: verdict_word(&solution.verdict),
-            stopped_by: run.interruption.map(|by| match by {
-                Interruption::Signal => "signal",
-                Interruption::TimeLimit => "time limit",
-            }),
+            stopped_by: stopped_by(run),
             sway: match solution.verdict {
                 Verdict::Swaying { period, growth, .. } => {
                     Some(Sway { period_s: period, growth_per_s: growth })
@@ -380,6 +378,16 @@ pub fn verdict_word(verdict: &Verdict) -> &'static str {
         Verdict::Swaying { .. } => "swaying",
         Verdict::Drifting => "drifting",
         Verdict::StoppedEarly => "stopped early",
+    }
+}
+
+fn stopped_by(run: &Run) -> Option<&'static str> {
+    match (run.interruption, run.solution.stop) {
+        (Some(Interruption::Signal), _) => Some("signal"),
+        (Some(Interruption::TimeLimit), _) => Some("time limit"),
+        (None, StopReason::IterationLimit) => Some("iteration limit"),
+        (None, StopReason::Stalled) => Some("stalled"),
+        (None, StopReason::Converged | StopReason::Asked) => None,
     }
 }
 
