@@ -28,7 +28,7 @@ pub struct WatchedPart {
 /// Where progress goes.
 enum Display {
     Quiet,
-    Plain { last: Option<Instant> },
+    Plain { last: Option<Instant>, shown: usize },
     Terminal { bar: ProgressBar, last: Option<Instant> },
 }
 
@@ -56,7 +56,7 @@ impl ProgressView {
             );
             Display::Terminal { bar, last: None }
         } else {
-            Display::Plain { last: None }
+            Display::Plain { last: None, shown: 0 }
         };
         let (begun, trend) = (Instant::now(), Trend::default());
         ProgressView { display, parts, ambient, tolerance, begun, trend }
@@ -69,8 +69,8 @@ impl ProgressView {
         let is_due = |last: &Option<Instant>, every| last.is_none_or(|l| now - l >= every);
         match &mut self.display {
             Display::Quiet => {}
-            Display::Plain { last } if is_due(last, PLAIN_EVERY) => {
-                *last = Some(now);
+            Display::Plain { last, shown } if is_due(last, PLAIN_EVERY) => {
+                (*last, *shown) = (Some(now), progress.iteration);
                 let line = self.line(progress, now);
                 say(&line);
             }
@@ -90,8 +90,8 @@ impl ProgressView {
     pub fn finish(&mut self, last: Option<&Progress>) {
         match &self.display {
             Display::Quiet => {}
-            Display::Plain { .. } => {
-                if let Some(progress) = last {
+            Display::Plain { shown, .. } => {
+                if let Some(progress) = last.filter(|p| p.iteration != *shown) {
                     say(&self.line(progress, Instant::now()));
                 }
             }
@@ -144,13 +144,16 @@ impl ProgressView {
         let margin = |part: &WatchedPart, rise: f64| part.limit_rise.map(|limit| limit - rise);
         let watched = || self.parts.iter().zip(&p.part_max);
         let judged = watched().filter_map(|(part, rise)| Some((part, rise, margin(part, *rise)?)));
-        let drift = format!("moving {:.0e} K an iteration", p.drift);
+        // No change is known before a second look.
+        let moving = p.drift.is_finite();
+        let drift =
+            if moving { format!(", moving {:.0e} K an iteration", p.drift) } else { String::new() };
         if let Some((part, rise, margin)) = judged.min_by(|a, b| a.2.total_cmp(&b.2)) {
             let celsius = self.ambient + rise;
-            return Some(format!("{} {celsius:.1} degC, margin {margin:.1} K, {drift}", part.name));
+            return Some(format!("{} {celsius:.1} degC, margin {margin:.1} K{drift}", part.name));
         }
         let (part, rise) = watched().max_by(|a, b| a.1.total_cmp(b.1))?;
-        Some(format!("{} {:.1} degC, {drift}", part.name, self.ambient + rise))
+        Some(format!("{} {:.1} degC{drift}", part.name, self.ambient + rise))
     }
 
     fn times(&self, now: Instant) -> String {
@@ -201,7 +204,8 @@ impl Trend {
     }
 
     /// Time until the bound is met on this mesh if the residual keeps falling as it did: a
-    /// straight line fitted to its logarithm against the iterations. `None` when it does not fall.
+    /// straight line fitted to its logarithm against the iterations. `None` when it does not fall, or
+    /// has met the bound (what is left then is not iterating).
     fn seconds_left(&self, tolerance: f64) -> Option<f64> {
         let count = self.points.len();
         if count < 5 {
@@ -218,12 +222,9 @@ impl Trend {
         }
         let slope = top / bottom;
         let to_go = last.0 - tolerance.ln();
-        if to_go <= 0.0 {
-            return Some(0.0);
-        }
         let each = (last.1 - first.1).as_secs_f64() / (count - 1) as f64;
         let left = to_go / -slope * each;
-        (slope < 0.0 && left < 1e6).then_some(left)
+        (slope < 0.0 && to_go > 0.0 && left < 1e6).then_some(left)
     }
 }
 

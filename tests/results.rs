@@ -141,13 +141,13 @@ fn summary_has_every_key_in_the_units_it_says() {
     }
     let part = &s["parts"][0];
     assert_eq!(part["name"], "radio");
-    near(&part["heat_w"], 12.0);
+    near(&part["heat_w"], 1.0);
     near(&part["min_c"], 40.0 + low);
     near(&part["mean_c"], 40.0 + sum / volume);
     near(&part["max_c"], 40.0 + high);
     near(&part["limit_c"], 85.0);
     near(&part["margin_k"], 45.0 - high);
-    near(&part["resistance_k_w"], high / 12.0);
+    near(&part["resistance_k_w"], high);
     assert!(part.get("band_c").is_none());
 
     // Slots: speed 0.1 + 0.01 i over the rings i = 6..10 of 10 mm.
@@ -172,7 +172,7 @@ fn summary_has_every_key_in_the_units_it_says() {
     let film: f64 = (0..20).map(|j| per_height * 0.01 * solved.state.t[mesh.cell(9, j)]).sum();
     assert_eq!(s["sides"][1]["name"], "right");
     near(&s["sides"][1]["heat_w"], film);
-    near(&s["balance"]["heat_in_w"], 12.0);
+    near(&s["balance"]["heat_in_w"], 1.0);
     near(&s["balance"]["heat_out_w"], film + 1200.0 * carried);
 
     let warnings = s["warnings"].as_array().unwrap();

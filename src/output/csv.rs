@@ -34,8 +34,14 @@ fn quoted(text: &str) -> String {
     }
 }
 
+/// A number with all its digits; nothing when it is not finite.
 fn number(value: f64) -> String {
-    format!("{value}")
+    let size = value.abs();
+    match value {
+        v if !v.is_finite() => String::new(),
+        v if size > 0.0 && !(1e-4..1e15).contains(&size) => format!("{v:e}"),
+        v => format!("{v}"),
+    }
 }
 
 fn perhaps(value: Option<f64>) -> String {
@@ -65,7 +71,9 @@ pub fn history(case: &Case, ambient: f64, rows: &[Progress]) -> String {
         let values = [r.mass, r.momentum_x, r.momentum_y, r.energy, p.heat_error, p.mass_error];
         cells.extend(values.map(number));
         cells.extend([number(p.flow_in), number(p.drift)]);
-        cells.extend(p.part_max.iter().map(|rise| number(ambient + rise)));
+        // Rows of a coarser mesh may come without part temperatures.
+        let rises = (0..parts.len()).map(|n| p.part_max.get(n));
+        cells.extend(rises.map(|rise| perhaps(rise.map(|rise| ambient + rise))));
         table.row(cells);
     }
     table.0
@@ -170,4 +178,19 @@ fn inside(case: &Case, sample: &Sample) -> String {
     }
     let name = case.blocks().get(sample.region as usize).and_then(|b| b.name.clone());
     name.unwrap_or_else(|| format!("block {}", sample.region))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn cells_are_quoted_and_numbers_short() {
+        assert_eq!(
+            (quoted("core"), quoted("a, \"b\"")),
+            ("core".into(), "\"a, \"\"b\"\"\"".into())
+        );
+        let shown = [0.0, 70.5, -1.5e-9, f64::INFINITY, f64::NAN].map(number);
+        assert_eq!(shown, ["0", "70.5", "-1.5e-9", "", ""]);
+    }
 }
