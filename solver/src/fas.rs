@@ -8,6 +8,7 @@
 //! # Source
 //! brandt-1977 (full approximation scheme), van-doormaal-1984 (SIMPLEC).
 
+use crate::acceleration::Acceleration;
 use crate::level::Level;
 use crate::linear::multigrid::Link;
 use crate::newton::Newton;
@@ -19,7 +20,7 @@ use crate::{Air, Control, Convection, Problem, Residuals, SolveError, State};
 /// Coarsening stops at about this many cells, few enough for the direct solution.
 const COARSEST_CELLS: usize = 6000;
 /// Newton steps on the coarsest mesh's own problem at the most.
-const COARSEST_STEPS: usize = 100;
+const COARSEST_STEPS: usize = 50;
 /// Coarser meshes keep this many cells across every slot, gap and block.
 const LEAST_ACROSS: usize = 2;
 
@@ -103,16 +104,19 @@ impl Stack {
         self.work[l].rhs.clone_from(&self.levels[l].source);
     }
 
-    /// Solves the coarsest mesh's own problem by Newton's method; `each` is asked after every step.
-    /// Returns the largest relative residual reached.
+    /// Solves the coarsest mesh's own problem, all its sources times `strength`, by Newton's
+    /// method; `each` is asked after every step. Returns the largest relative residual reached.
     pub fn solve_coarsest(
         &mut self,
         tolerance: f64,
         from_rest: bool,
+        strength: f64,
         each: &mut dyn FnMut(Residuals) -> Control,
     ) -> Result<f64, SolveError> {
         let l = self.levels.len() - 1;
         self.pose(l);
+        let source = self.levels[l].source.clone();
+        each_field(&mut self.work[l].rhs, &source, |rhs, source| *rhs = strength * source);
         let (level, work) = (&self.levels[l], &mut self.work[l]);
         let scales = residual::scales(level, &work.state);
         self.newton.solve(
@@ -184,9 +188,16 @@ impl Stack {
         (residual::relative(level, &work.residual, &scales), scales)
     }
 
+    /// Replaces level `l`'s state by the best combination of the latest cycles' results; its
+    /// residual must be up to date.
+    pub fn accelerate(&mut self, l: usize, acceleration: &mut Acceleration, scales: &Scales) {
+        let Work { state, rhs, residual, .. } = &mut self.work[l];
+        acceleration.step(&self.levels[l], state, rhs, residual, scales);
+    }
+
     /// One cycle from level `l` down to the coarsest and back.
     pub fn cycle(&mut self, l: usize) -> Result<(), SolveError> {
-        let smoothing = self.smoothing;
+        let smoothing = simplec::hack(self.smoothing);
         if l + 1 == self.levels.len() {
             let (level, work) = (&self.levels[l], &mut self.work[l]);
             let scales = residual::scales(level, &work.state);

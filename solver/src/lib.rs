@@ -3,6 +3,7 @@
 //! A [`Problem`] (mesh, materials, boundaries) becomes a [`Solution`]: velocities, pressure and
 //! temperature rise, with the numbers read off them. No files, no screen, no clock here.
 
+mod acceleration;
 mod air;
 mod balance;
 mod boundary;

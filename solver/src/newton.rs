@@ -65,8 +65,8 @@ impl Newton {
     }
 
     /// Improves `state` until the largest relative residual is below `target` or `limit` steps are
-    /// done or `each`, asked after every step, says stop. `scales` are raised where the state
-    /// outgrows them. Returns the largest relative residual reached.
+    /// done or `each`, asked after every step, says stop. `scales` serve where the state's own are
+    /// nothing yet. Returns the largest relative residual reached.
     pub fn solve(
         &mut self,
         level: &Level,
@@ -116,9 +116,11 @@ impl Newton {
                 }
             } else if stale {
                 stale = false;
+            } else if norm < ROUND_OFF {
+                break;
             } else {
                 failures += 1;
-                if failures > 12 {
+                if failures > MOST_FAILURES || (norm < NEARLY && failures > 1) {
                     break;
                 }
                 pseudo = if pseudo.is_finite() { 0.2 * pseudo } else { transit_time(level) };
@@ -243,12 +245,15 @@ impl Newton {
         let (mut moved, mut changed) = (state.clone(), rest(level));
         let largest = |f: &[f64]| f.iter().fold(0.0_f64, |a, b| a.max(b.abs()));
         let speed = largest(&state.u).max(largest(&state.v)).max(1e-3 * reference_speed(level));
-        let warmth = largest(&state.t).max(1e-6);
-        let pressure = (level.air.density * speed * speed).max(1e-12);
+        // Pressure and temperature stand linearly in every equation: large steps lose nothing.
+        let warmth = largest(&state.t).max(source_warmth(level, rhs)).max(1e-6);
+        let buoyancy = reference_speed(level).powi(2) * warmth;
+        let pressure = level.air.density * (speed * speed).max(buoyancy);
+        let steps = [1e-6 * speed, 1e-6 * speed, pressure, warmth];
         let pinned: Vec<u32> =
             level.closed_regions.iter().filter_map(|r| numbers.p[r[0] as usize]).collect();
         for field in 0..4 {
-            let step = 1e-6 * [speed, speed, pressure, warmth][field];
+            let step = steps[field];
             let width = if field == 0 { nx + 1 } else { nx };
             let height = if field == 1 { ny + 1 } else { ny };
             for colour in 0..COLOUR_STEP * COLOUR_STEP {
@@ -301,6 +306,11 @@ impl Newton {
 /// First and last pseudo-time step over the transit time.
 const FIRST_STEP: f64 = 0.3;
 const LAST_STEP: f64 = 300.0;
+/// Relative residual below which a step that does not improve it has met round-off; below which
+/// two such steps have; and refused steps in a row that end it anyway.
+const ROUND_OFF: f64 = 1e-9;
+const NEARLY: f64 = 1e-5;
+const MOST_FAILURES: usize = 12;
 /// A factorisation is kept while a step cuts the residual to this.
 const STALE_RATIO: f64 = 0.2;
 
@@ -324,6 +334,21 @@ fn may_depend(row: usize, field: usize, ir: usize, jr: usize, i: usize, j: usize
     }
 }
 
+/// Rise that a cell's own source would hold against its neighbours and sides, at the most [K].
+fn source_warmth(level: &Level, rhs: &State) -> f64 {
+    let nx = level.nx;
+    rhs.t.iter().enumerate().fold(0.0_f64, |most, (n, source)| {
+        let (i, j) = (n % nx, n / nx);
+        let west = i + j * (nx + 1);
+        let conductance = level.x_conductance[west]
+            + level.x_conductance[west + 1]
+            + level.y_conductance[n]
+            + level.y_conductance[n + nx]
+            + level.side_conductance[n];
+        if conductance > 0.0 { most.max(source.abs() / conductance) } else { most }
+    })
+}
+
 /// Free-fall speed √(βg·ΔT·L) for ΔT = 1 K, with a viscous floor.
 fn reference_speed(level: &Level) -> f64 {
     let height: f64 = level.dy.iter().sum();
@@ -337,13 +362,14 @@ fn transit_time(level: &Level) -> f64 {
     level.dy.iter().sum::<f64>() / reference_speed(level)
 }
 
-/// Relative residuals, with the scales of the state where those are larger.
+/// Relative residuals by the state's own scales; `scales` where those are nothing yet.
 fn size(level: &Level, residual: &State, state: &State, scales: &Scales) -> Residuals {
     let own = residual::scales(level, state);
+    let either = |own: f64, given: f64| if own > 0.0 { own } else { given };
     let scales = Scales {
-        mass: scales.mass.max(own.mass),
-        force: scales.force.max(own.force),
-        heat: scales.heat.max(own.heat),
+        mass: either(own.mass, scales.mass),
+        force: either(own.force, scales.force),
+        heat: either(own.heat, scales.heat),
     };
     residual::relative(level, residual, &scales)
 }

@@ -43,12 +43,15 @@ pub(crate) struct Scales {
     pub heat: f64,
 }
 
+/// Least heat scale as a share of all that sides at their temperatures could exchange.
+const LEAST_HEAT: f64 = 1e-10;
+
 /// The scales of a state.
 pub(crate) fn scales(level: &Level, state: &State) -> Scales {
     let (nx, ny) = (level.nx, level.ny);
     let lift = level.gravity.map(|g| (level.air.density * level.air.expansion * g).abs());
-    let [force, heat] = par::sum_rows(ny, nx, |j| {
-        let (mut force, mut heat) = (0.0, 0.0);
+    let [force, heat, gross] = par::sum_rows(ny, nx, |j| {
+        let (mut force, mut heat, mut gross) = (0.0, 0.0, 0.0);
         for i in 0..nx {
             let n = i + j * nx;
             let (t, p) = (state.t[n], state.p[n]);
@@ -62,9 +65,10 @@ pub(crate) fn scales(level: &Level, state: &State) -> Scales {
                     force += level.y_area[i] * (p - state.p[n - nx]).abs();
                 }
             }
+            gross += level.source.t[n].abs();
             heat += (level.source.t[n] - level.side_conductance[n] * t).max(0.0);
         }
-        [force, heat]
+        [force, heat, gross]
     });
     // Half of the flows' sizes across a line is what circulates through it in a closed cavity.
     let mut through = 0.0_f64;
@@ -77,7 +81,8 @@ pub(crate) fn scales(level: &Level, state: &State) -> Scales {
         columns.iter_mut().enumerate().for_each(|(i, c)| *c += level.x_flow(&state.u, i, j).abs());
     }
     let across = columns.iter().fold(0.0_f64, |a, b| a.max(*b));
-    Scales { mass: through.max(0.5 * across), force, heat }
+    // A section at one temperature exchanges nothing but round-off.
+    Scales { mass: through.max(0.5 * across), force, heat: heat.max(LEAST_HEAT * gross) }
 }
 
 /// Sums of the residuals' sizes over their scales.

@@ -1,14 +1,17 @@
 //! The outer iteration: nested start from the coarsest mesh, cycles on every finer one, bounds.
 
+use crate::acceleration::Acceleration;
 use crate::balance::balance;
 use crate::fas::Stack;
 use crate::film::film_rise;
 use crate::numbers::part_temperatures;
+use crate::residual::Scales;
 use crate::settings::{DRIFT_BOUND, HEAT_BOUND, MASS_BOUND};
 use crate::simplec::Smoothing;
+use crate::sway::{self, Finding};
 use crate::{
     Air, AirModel, Control, Problem, Progress, Residuals, Settings, Solution, SolveError, State,
-    StopReason, Verdict, sway,
+    StopReason, Verdict,
 };
 
 /// Residual that the nested start asks of the meshes before the finest.
@@ -17,6 +20,11 @@ const NESTED_TARGET: f64 = 1e-3;
 const NESTED_CYCLES: usize = 6;
 /// Residual asked of the coarsest mesh's own solution.
 const COARSEST_TARGET: f64 = 1e-8;
+/// Steady flows tried when the one found is unstable against another.
+const BRANCHES: usize = 4;
+/// Building up the sources: first share, largest and smallest factor between shares, most steps.
+const BUILD_UP: [f64; 3] = [1.0 / 1024.0, 8.0, 1.05];
+const BUILD_UP_STEPS: usize = 30;
 /// The air's constants are renewed while the film temperature moves by more than this [K].
 const FILM_BOUND: f64 = 0.02;
 /// Cycles within which the residual must at least halve; else the smoothing is damped more.
@@ -51,7 +59,8 @@ pub fn solve(
         Some(state) if state.fits(problem.mesh()) => run.resume(&state)?,
         _ => run.from_rest()?,
     };
-    run.finish(stop)
+    let (stop, verdict) = run.judge(stop)?;
+    Ok(run.solution(stop, verdict))
 }
 
 /// A run under way.
@@ -92,10 +101,15 @@ impl<'a> Run<'a> {
     /// Coarsest mesh first, each finer one from the next coarser.
     fn from_rest(&mut self) -> Result<StopReason, SolveError> {
         let coarsest = self.stack.depth() - 1;
-        if let Some(stop) = self.start_coarsest(coarsest)? {
+        if let Some(stop) = self.start_coarsest(coarsest, true)? {
             return Ok(stop);
         }
-        for l in (0..coarsest).rev() {
+        self.climb(coarsest)
+    }
+
+    /// From the state of level `from` to the finest, each level from the next coarser.
+    fn climb(&mut self, from: usize) -> Result<StopReason, SolveError> {
+        for l in (0..from).rev() {
             let coarser = self.stack.state(l + 1).clone();
             let mut reached = Cycles::Limit;
             for (step, smoothing) in LADDER.iter().enumerate() {
@@ -126,13 +140,18 @@ impl<'a> Run<'a> {
 
     /// From a given state on the finest mesh.
     fn resume(&mut self, state: &State) -> Result<StopReason, SolveError> {
-        if self.stack.depth() == 1 {
-            self.stack.set_state(0, state);
-            return self.from_rest();
-        }
         self.stack.set_state(0, state);
         self.stack.pose(0);
+        if self.stack.depth() == 1 {
+            let ended = self.start_coarsest(0, false)?;
+            return Ok(ended.unwrap_or(StopReason::Converged));
+        }
         self.renew_air(0);
+        self.finest()
+    }
+
+    /// Cycles on the finest level from the state it has.
+    fn finest(&mut self) -> Result<StopReason, SolveError> {
         match self.cycles(0)? {
             Cycles::Reached => Ok(StopReason::Converged),
             Cycles::Limit => Ok(StopReason::IterationLimit),
@@ -146,29 +165,23 @@ impl<'a> Run<'a> {
     }
 
     /// Newton's method on the coarsest mesh, with the film temperature.
-    fn start_coarsest(&mut self, l: usize) -> Result<Option<StopReason>, SolveError> {
+    fn start_coarsest(
+        &mut self,
+        l: usize,
+        from_rest: bool,
+    ) -> Result<Option<StopReason>, SolveError> {
         let finest = l == 0;
         let target = if finest { 1e-2 * self.settings.tolerance } else { COARSEST_TARGET };
-        let mut from_rest = true;
+        let mut from_rest = from_rest;
         let mut end = 0.0;
         let mut converged = false;
         for _ in 0..8 {
-            let (mut rows, mut stop) = (Vec::new(), Control::Continue);
-            {
-                let iteration = self.history.len();
-                let cells = self.stack.cells(l);
-                let watch = &mut self.watch;
-                let mut each = |residuals: Residuals| {
-                    let iteration = iteration + rows.len() + 1;
-                    let row = Progress { iteration, cells, residuals, ..Progress::default() };
-                    stop = watch(&row);
-                    rows.push(row);
-                    stop
-                };
-                end = self.stack.solve_coarsest(target, from_rest, &mut each)?;
+            let mut stopped;
+            (end, stopped) = self.newton(l, target, from_rest, 1.0)?;
+            if from_rest && end > NESTED_TARGET && !stopped {
+                (end, stopped) = self.build_up(l, target)?;
             }
-            self.history.append(&mut rows);
-            if stop == Control::Stop {
+            if stopped {
                 self.lift_to_finest(l);
                 return Ok(Some(StopReason::Asked));
             }
@@ -180,7 +193,8 @@ impl<'a> Run<'a> {
             converged = false;
         }
         if finest {
-            let row = self.progress(l, None);
+            let parts = highest(self.problem, self.stack.state(l));
+            let (row, _) = self.progress(l, Some(&parts));
             self.history.push(row);
             return Ok((!converged).then_some(StopReason::Stalled));
         }
@@ -192,6 +206,73 @@ impl<'a> Run<'a> {
         Ok(None)
     }
 
+    /// Newton's method on the coarsest level `l`; the residual reached and whether the caller
+    /// stopped it.
+    fn newton(
+        &mut self,
+        l: usize,
+        target: f64,
+        from_rest: bool,
+        strength: f64,
+    ) -> Result<(f64, bool), SolveError> {
+        let (mut rows, mut stop) = (Vec::new(), Control::Continue);
+        let (iteration, cells) = (self.history.len(), self.stack.cells(l));
+        let watch = &mut self.watch;
+        let mut each = |residuals: Residuals| {
+            let iteration = iteration + rows.len() + 1;
+            let row = Progress { iteration, cells, residuals, ..Progress::default() };
+            stop = watch(&row);
+            rows.push(row);
+            stop
+        };
+        let end = self.stack.solve_coarsest(target, from_rest, strength, &mut each)?;
+        self.history.append(&mut rows);
+        Ok((end, stop == Control::Stop))
+    }
+
+    /// Where Newton's method does not get there from rest at once: all sources grow from a small
+    /// share of theirs to the whole, each solution being the start of the next.
+    fn build_up(&mut self, l: usize, target: f64) -> Result<(f64, bool), SolveError> {
+        let mut good = State::rest(self.stack.problem(l).unwrap_or(self.problem).mesh());
+        let (mut reached, mut factor) = (0.0, BUILD_UP[1]);
+        let mut end = f64::INFINITY;
+        for _ in 0..BUILD_UP_STEPS {
+            let first = reached == 0.0;
+            let strength = if first { BUILD_UP[0] } else { f64::min(1.0, reached * factor) };
+            let mut start = good.clone();
+            if !first {
+                start.t.iter_mut().for_each(|t| *t *= strength / reached);
+            }
+            self.stack.set_state(l, &start);
+            let goal = if strength < 1.0 { NESTED_TARGET * strength } else { target };
+            let (residual, stopped) = self.newton(l, goal, first, strength)?;
+            end = residual;
+            if stopped {
+                return Ok((end, true));
+            }
+            if residual <= NESTED_TARGET * strength {
+                if strength == 1.0 {
+                    self.note("the sources were built up step by step to get started".into());
+                    return Ok((end, false));
+                }
+                good = self.stack.state(l).clone();
+                reached = strength;
+                factor = (1.5 * factor).min(BUILD_UP[1]);
+            } else if first {
+                break;
+            } else {
+                factor = factor.sqrt();
+                if factor < BUILD_UP[2] {
+                    break;
+                }
+            }
+        }
+        // The nearest solution known, for the finer meshes to go on from.
+        good.t.iter_mut().for_each(|t| *t /= f64::max(reached, BUILD_UP[0]));
+        self.stack.set_state(l, &good);
+        Ok((end, false))
+    }
+
     /// Cycles on level `l` until its target, the limit, a stall or a breakdown.
     fn cycles(&mut self, l: usize) -> Result<Cycles, SolveError> {
         let finest = l == 0;
@@ -199,6 +280,7 @@ impl<'a> Run<'a> {
         let mut best = f64::INFINITY;
         let (mut mark, mut since, mut rung) = (f64::INFINITY, 0, 0);
         let mut parts = None;
+        let mut acceleration = Acceleration::new();
         for _ in 0..limit {
             if self.history.len() >= self.settings.max_iterations {
                 return Ok(Cycles::Limit);
@@ -210,14 +292,18 @@ impl<'a> Run<'a> {
             if let Some((field, cell)) = self.stack.broken(l) {
                 return Ok(Cycles::Broke { field, cell });
             }
-            let row = self.progress(l, parts.as_deref());
+            let (row, scales) = self.progress(l, parts.as_deref());
             parts = Some(row.part_max.clone());
             let largest = row.residuals.largest();
             let done = if finest { self.within_bounds(&row) } else { largest < NESTED_TARGET };
             let control = (self.watch)(&row);
             self.history.push(row);
-            if done && !(finest && self.renew_air(l)) {
-                return Ok(Cycles::Reached);
+            if done {
+                if !(finest && self.renew_air(l)) {
+                    return Ok(Cycles::Reached);
+                }
+                acceleration = Acceleration::new();
+                continue;
             }
             if control == Control::Stop {
                 return Ok(Cycles::Asked);
@@ -238,6 +324,7 @@ impl<'a> Run<'a> {
                 self.stack.smoothing = LADDER[rung];
                 self.note("the residual stood still: damped more strongly".into());
             }
+            self.stack.accelerate(l, &mut acceleration, &scales);
         }
         Ok(Cycles::Limit)
     }
@@ -251,8 +338,8 @@ impl<'a> Run<'a> {
             && row.drift <= DRIFT_BOUND * rise.max(1e-9)
     }
 
-    fn progress(&mut self, l: usize, before: Option<&[f64]>) -> Progress {
-        let (residuals, _) = self.stack.residuals(l);
+    fn progress(&mut self, l: usize, before: Option<&[f64]>) -> (Progress, Scales) {
+        let (residuals, scales) = self.stack.residuals(l);
         let problem = self.stack.problem(l).unwrap_or(self.problem);
         let (air, state) = (&self.stack.level(l).air, self.stack.state(l));
         let b = balance(problem, air, state);
@@ -261,7 +348,7 @@ impl<'a> Run<'a> {
         let drift = before.map_or(f64::INFINITY, |before| {
             part_max.iter().zip(before).fold(0.0, |d: f64, (a, b)| d.max((a - b).abs()))
         });
-        Progress {
+        let row = Progress {
             iteration: self.history.len() + 1,
             cells: self.stack.cells(l),
             residuals,
@@ -270,7 +357,8 @@ impl<'a> Run<'a> {
             flow_in: b.mass_in / air.density,
             part_max,
             drift,
-        }
+        };
+        (row, scales)
     }
 
     /// Takes the air's constants at the film temperature of level `l`'s state; true when they
@@ -308,31 +396,61 @@ impl<'a> Run<'a> {
         SolveError::Broke { field, i: cell % nx, j: cell / nx, iteration: self.history.len() }
     }
 
-    fn finish(mut self, stop: StopReason) -> Result<Solution, SolveError> {
-        let mut verdict = match stop {
-            StopReason::Converged => Verdict::Settled,
-            StopReason::Stalled => Verdict::Drifting,
-            StopReason::IterationLimit | StopReason::Asked => Verdict::StoppedEarly,
-        };
-        if self.settings.assess_stability
-            && matches!(stop, StopReason::Converged | StopReason::Stalled)
-        {
+    /// The verdict; goes on to another steady flow where the one found is unstable against it.
+    fn judge(&mut self, mut stop: StopReason) -> Result<(StopReason, Verdict), SolveError> {
+        for _ in 0..BRANCHES {
+            let verdict = match stop {
+                StopReason::Converged => Verdict::Settled,
+                StopReason::Stalled => Verdict::Drifting,
+                StopReason::IterationLimit | StopReason::Asked => Verdict::StoppedEarly,
+            };
+            let ended = verdict == Verdict::StoppedEarly;
+            if ended || !self.settings.assess_stability {
+                return Ok((stop, verdict));
+            }
             let last = self.history.last().cloned().unwrap_or_default();
             let watch = &mut self.watch;
             let mut going_on = || watch(&last);
-            let found =
-                sway::assess(&mut self.stack, self.problem, &mut self.notes, &mut going_on)?;
-            if stop == StopReason::Converged || found != Verdict::Settled {
-                verdict = found;
+            let (stack, notes) = (&mut self.stack, &mut self.notes);
+            match sway::assess(stack, self.problem, notes, &mut going_on)? {
+                Finding::Stable => return Ok((stop, verdict)),
+                Finding::Swaying(found) => return Ok((stop, found)),
+                Finding::Leaves(l, state) => stop = self.go_on_from(l, &state)?,
             }
         }
-        Ok(Solution {
+        self.note("no stable steady flow was found".into());
+        let band = highest(self.problem, self.stack.state(0)).iter().map(|t| [*t, *t]).collect();
+        Ok((stop, Verdict::Swaying { period: None, growth: None, band }))
+    }
+
+    /// Solves again, from a state on level `l`.
+    fn go_on_from(&mut self, l: usize, state: &State) -> Result<StopReason, SolveError> {
+        self.stack.set_state(l, state);
+        self.stack.pose(l);
+        let coarsest = self.stack.depth() - 1;
+        if l == coarsest {
+            if let Some(stop) = self.start_coarsest(l, false)? {
+                return Ok(stop);
+            }
+        } else if l > 0 {
+            self.cycles(l)?;
+        }
+        if l == 0 && coarsest > 0 { self.finest() } else { self.climb(l) }
+    }
+
+    fn solution(self, stop: StopReason, verdict: Verdict) -> Solution {
+        Solution {
             state: self.stack.state(0).clone(),
             air: self.stack.level(0).air,
             stop,
             verdict,
             history: self.history,
             notes: self.notes,
-        })
+        }
     }
+}
+
+/// Highest rise of every part [K].
+pub(crate) fn highest(problem: &Problem, state: &State) -> Vec<f64> {
+    part_temperatures(problem, state).iter().map(|p| p.map_or(0.0, |p| p.max)).collect()
 }

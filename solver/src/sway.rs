@@ -7,7 +7,7 @@
 use crate::fas::Stack;
 use crate::level::Level;
 use crate::newton::Newton;
-use crate::numbers::part_temperatures;
+use crate::solve::highest;
 use crate::stability::{Mode, leading_mode};
 use crate::{Control, Problem, SolveError, State, Verdict, residual};
 
@@ -18,42 +18,69 @@ const STEPS_PER_PERIOD: usize = 24;
 const MOST_PERIODS: usize = 6;
 /// Size of the disturbance to start with, as a share of the largest speed.
 const DISTURBANCE: f64 = 0.1;
+/// Size of the disturbance that leaves an unstable steady flow, as a share of the temperatures'
+/// spread, and time steps of 0.4 over the growth rate it is followed for.
+const LEAVING: f64 = 0.03;
+const LEAVING_STEPS: usize = 14;
+/// Below this Rayleigh number (on the whole section) air at rest is stable: a layer heated from
+/// below needs 1708 on its height.
+const LEAST_RAYLEIGH: f64 = 500.0;
 /// Chord iterations of a time step at the most, and the change that ends them (share of the
 /// largest speed and rise).
 const CHORD_STEPS: usize = 6;
 const CHORD_BOUND: f64 = 1e-3;
 
-/// The verdict on a solution that met its bounds. `going_on` is asked between time steps.
+/// What the analysis says about a steady solution.
+pub(crate) enum Finding {
+    /// It is stable, or nothing says otherwise.
+    Stable,
+    /// It is unstable and the flow sways about it.
+    Swaying(Verdict),
+    /// It is unstable and the flow leaves it for another steady one: the level and a state there.
+    Leaves(usize, State),
+}
+
+/// Looks for disturbances that grow about the finest state. `going_on` is asked between time
+/// steps.
 pub(crate) fn assess(
     stack: &mut Stack,
     problem: &Problem,
     notes: &mut Vec<String>,
     going_on: &mut dyn FnMut() -> Control,
-) -> Result<Verdict, SolveError> {
+) -> Result<Finding, SolveError> {
     let (l, state) = stack.restricted(CELLS);
     let level = stack.level(l);
     let coarse = stack.problem(l).unwrap_or(problem);
     let speed = largest(&state.u).max(largest(&state.v));
     let extent = level.dx.iter().sum::<f64>().max(level.dy.iter().sum());
-    if speed * extent * level.air.density < level.air.viscosity {
-        // Creeping flow (Reynolds number below one) has no instability of its own.
-        return Ok(Verdict::Settled);
+    let air = &level.air;
+    let diffusivity = air.conductivity / (air.density * air.specific_heat);
+    let viscosity = air.viscosity / air.density;
+    let spread = state
+        .t
+        .iter()
+        .fold([f64::INFINITY, f64::NEG_INFINITY], |[low, high], t| [low.min(*t), high.max(*t)]);
+    let gravity = level.gravity[0].hypot(level.gravity[1]);
+    let rayleigh = air.expansion * gravity * (spread[1] - spread[0]).max(0.0) * extent.powi(3)
+        / (viscosity * diffusivity);
+    if !level.fluid.contains(&true) || (speed * extent < viscosity && rayleigh < LEAST_RAYLEIGH) {
+        return Ok(Finding::Stable);
     }
     let mut newton = Newton::new(level);
-    let shift = 2.0 * speed / extent;
+    let shift = 2.0 * speed.max(5.0 * diffusivity / extent) / extent;
     let Some(mode) = leading_mode(level, &state, &mut newton, shift)? else {
-        return Ok(Verdict::Settled);
+        return Ok(Finding::Stable);
     };
-    if mode.growth <= 0.0 {
-        return Ok(Verdict::Settled);
+    if mode.growth <= 1e-6 * shift {
+        return Ok(Finding::Stable);
     }
     if mode.frequency < 1e-3 * shift {
         notes.push(format!(
-            "the steady flow is unstable: small disturbances grow by {:.2} per second into another \
-             steady flow",
+            "a steady flow was found unstable (growth {:.2e} per second) and left for another",
             mode.growth
         ));
-        return Ok(Verdict::Swaying { period: None, growth: Some(mode.growth), band: Vec::new() });
+        let state = leave(level, &state, &mut newton, &mode, spread[1] - spread[0])?;
+        return Ok(Finding::Leaves(l, state));
     }
     let period = std::f64::consts::TAU / mode.frequency;
     let swings = follow(level, coarse, &state, &mut newton, &mode, going_on)?;
@@ -70,7 +97,41 @@ pub(crate) fn assess(
          of {period:.2} s (found on a mesh of {} x {} cells)",
         mode.growth, level.nx, level.ny
     ));
-    Ok(Verdict::Swaying { period: Some(period), growth: Some(mode.growth), band })
+    let growth = Some(mode.growth);
+    Ok(Finding::Swaying(Verdict::Swaying { period: Some(period), growth, band }))
+}
+
+/// Follows a growing disturbance in time (backward Euler, one factorisation a step) until it is no
+/// longer small.
+fn leave(
+    level: &Level,
+    steady: &State,
+    newton: &mut Newton,
+    mode: &Mode,
+    spread: f64,
+) -> Result<State, SolveError> {
+    let mut moved = steady.clone();
+    moved.clear();
+    newton.numbers().add(&mode.shape, 1.0, &mut moved);
+    let speed = largest(&steady.u).max(largest(&steady.v));
+    let mode_speed = largest(&moved.u).max(largest(&moved.v));
+    let warmth = largest(&moved.t);
+    let size = if warmth > 0.0 { LEAVING * spread / warmth } else { LEAVING * speed / mode_speed };
+    let mut now = steady.clone();
+    newton.numbers().add(&mode.shape, size, &mut now);
+    let mut residual = steady.clone();
+    let step = 0.4 / mode.growth;
+    for _ in 0..LEAVING_STEPS {
+        // One Newton step of the implicit time step: (J + M/Δt)·δ = r.
+        let (factors, masses) = newton.shifted(level, &now, &level.source, 1.0 / step)?;
+        residual::evaluate(level, &now, &level.source, &mut residual);
+        let mut right = vec![0.0; masses.len()];
+        newton.numbers().gather(&residual, &mut right);
+        newton.drop_pinned(level, &mut right);
+        factors.solve(&mut right);
+        newton.numbers().add(&right, 1.0, &mut now);
+    }
+    Ok(now)
 }
 
 /// Lowest and highest `part_max` over the last two periods of a run from the disturbed state.
@@ -162,10 +223,6 @@ fn follow(
     let n = bands.len();
     let widest = |(a, b): (&[f64; 2], &[f64; 2])| [a[0].min(b[0]), a[1].max(b[1])];
     Ok(bands[n - 1].iter().zip(&bands[n.saturating_sub(2)]).map(widest).collect())
-}
-
-fn highest(problem: &Problem, state: &State) -> Vec<f64> {
-    part_temperatures(problem, state).iter().map(|p| p.map_or(0.0, |p| p.max)).collect()
 }
 
 fn largest(values: &[f64]) -> f64 {
