@@ -123,7 +123,7 @@ pub fn compute(name: &str, cells: usize, uniform: bool) -> Result<Comparison, Be
     let problem = case.problem(cells, uniform)?;
     let mesh = problem.mesh();
     let (wall, cpu) = (Instant::now(), cpu_time::ProcessTime::now());
-    let settings = Settings { tolerance: 1e-8, ..Settings::default() };
+    let settings = Settings { tolerance: 1e-7, ..Settings::default() };
     let mut iterations = 0;
     let start = case.start(&problem);
     let solution = ventrise_solver::solve(&problem, &settings, start, &mut |p: &Progress| {

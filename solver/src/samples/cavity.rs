@@ -248,7 +248,7 @@ impl ConductingBlock {
 /// Vertical annulus of gap 1 and height `aspect`: inner wall hot, outer wall cold, ends
 /// adiabatic.
 ///
-/// The inner wall is the surface of a core that conducts 1e5 times as well as air and is heated
+/// The inner wall is the surface of a core that conducts 1e4 times as well as air and is heated
 /// throughout; its temperature comes out, 1 K above the cold wall when the heat belongs to the
 /// Rayleigh number asked for. `nusselt_guess` is the guess of Nu_i that sets the heat.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -268,6 +268,9 @@ pub struct Annulus {
     /// Their grading.
     pub grading: Grading,
 }
+
+/// Conductivity of the core over that of air [-].
+const CORE: f64 = 1e4;
 
 /// What an annulus shows.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -302,7 +305,7 @@ impl Annulus {
         let y = graded(0.0, self.aspect, along, self.grading);
         let mut d = plain(&layout, x, y, unit_air(self.prandtl))?;
         d.gravity = [0.0, -self.rayleigh * self.prandtl];
-        d.solids.push(solid(1e5));
+        d.solids.push(solid(CORE));
         let area = 2.0 * std::f64::consts::PI * inner * self.aspect;
         d.blocks.push(Block { solid: 0, heat: self.nusselt_guess * area });
         d.parts.push(vec![0]);
@@ -312,9 +315,11 @@ impl Annulus {
 
     /// Nusselt numbers of a solution.
     pub fn nusselt(&self, problem: &Problem, air: &Air, state: &State) -> AnnulusNusselt {
-        let difference = block_mean(problem.mesh(), state, 0);
-        let per_radius = 2.0 * std::f64::consts::PI * self.aspect * difference;
+        // The core's mean lies Q/(8π·k·H) above its surface.
         let heat = problem.description().blocks[0].heat;
+        let inside = heat / (8.0 * std::f64::consts::PI * CORE * self.aspect);
+        let difference = block_mean(problem.mesh(), state, 0) - inside;
+        let per_radius = 2.0 * std::f64::consts::PI * self.aspect * difference;
         AnnulusNusselt {
             inner: heat / (per_radius * self.inner_radius()),
             outer: -side_heat(problem, air, state, Side::Right)

@@ -9,8 +9,9 @@ use super::read::{block_mean, interpolate};
 use super::{AMBIENT, SampleError, empty_layout, plain, solid, unit_air};
 use crate::{Block, Problem, SideCondition, State};
 
-/// A cylindrical shell around a heated core that conducts 1e6 times as well, ends adiabatic,
-/// outer face at ambient temperature: ΔT = Q·ln(r_o/r_i)/(2π·k·H).
+/// A cylindrical shell around a heated core that conducts 1e4 times as well, ends adiabatic,
+/// outer face at ambient temperature: Q·ln(r_o/r_i)/(2π·k·H) over the shell, and the core's mean
+/// Q/(8π·k_core·H) above its surface.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Shell {
     /// Inner and outer radius [m].
@@ -25,6 +26,9 @@ pub struct Shell {
     pub cells: usize,
 }
 
+/// Conductivity of the core over that of the shell [-].
+const CORE: f64 = 1e4;
+
 impl Shell {
     /// The problem.
     ///
@@ -37,7 +41,7 @@ impl Shell {
         layout.blocks.push(Rectangle { x: [inner, outer], y: [0.0, self.height] });
         let x = joined(&[uniform(0.0, inner, self.cells), uniform(inner, outer, self.cells)]);
         let mut d = plain(&layout, x, uniform(0.0, self.height, 4), unit_air(0.71))?;
-        d.solids = vec![solid(1e6 * self.conductivity), solid(self.conductivity)];
+        d.solids = vec![solid(CORE * self.conductivity), solid(self.conductivity)];
         d.blocks = vec![Block { solid: 0, heat: self.heat }, Block { solid: 1, heat: 0.0 }];
         d.sides[Side::Right.index()] = SideCondition::Temperature(AMBIENT);
         Ok(Problem::new(d)?)
@@ -48,10 +52,15 @@ impl Shell {
         block_mean(problem.mesh(), state, 0)
     }
 
-    /// The exact difference [K].
-    pub fn exact(&self) -> f64 {
+    /// The exact difference over the shell [K].
+    pub fn exact_shell(&self) -> f64 {
         let ratio = self.radii[1] / self.radii[0];
         self.heat * ratio.ln() / (2.0 * PI * self.conductivity * self.height)
+    }
+
+    /// The exact difference between the core's mean and the outer face [K].
+    pub fn exact(&self) -> f64 {
+        self.exact_shell() + self.heat / (8.0 * PI * CORE * self.conductivity * self.height)
     }
 }
 
