@@ -49,8 +49,8 @@ impl Stack {
             }
             transfers.push(Transfer::new(&mesh, &coarsening));
             links.push(Link::new(&mesh, &coarsening));
+            let coarse = coarse_problems.last().unwrap_or(problem).coarsened(&coarsening);
             mesh = coarsening.mesh;
-            let coarse = problem.with_mesh(mesh.clone());
             levels.push(Level::new(&coarse, air, convection));
             coarse_problems.push(coarse);
         }

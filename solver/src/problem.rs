@@ -1,6 +1,6 @@
 //! The problem: a mesh with materials, heat and boundaries. Checked once, then fixed.
 
-use ventrise_mesh::{AIR, Geometry, Mesh, Side};
+use ventrise_mesh::{AIR, Coarsening, Geometry, Mesh, Side};
 
 use crate::{AirModel, ProblemError, SideCondition, Slot};
 
@@ -33,6 +33,57 @@ pub struct Sources {
     pub y_force: Vec<f64>,
     /// Heat in each cell [W], nx·ny.
     pub heat: Vec<f64>,
+}
+
+impl Sources {
+    /// The same on a coarser mesh: cells add, a face between two coarse lines is shared by
+    /// distance.
+    fn coarsened(&self, fine: &Mesh, coarsening: &Coarsening) -> Sources {
+        let coarse = &coarsening.mesh;
+        let (nx, ny, cx, cy) = (fine.nx(), fine.ny(), coarse.nx(), coarse.ny());
+        let (x_parent, y_parent) = (&coarsening.x_parent, &coarsening.y_parent);
+        let x_share = shares(fine.x(), coarse.x());
+        let y_share = shares(fine.y(), coarse.y());
+        let mut sources = Sources {
+            x_force: vec![0.0; (cx + 1) * cy],
+            y_force: vec![0.0; cx * (cy + 1)],
+            heat: vec![0.0; cx * cy],
+        };
+        for j in 0..ny {
+            for i in 0..nx {
+                sources.heat[x_parent[i] + y_parent[j] * cx] += self.heat[i + j * nx];
+            }
+            for (i, (line, share)) in x_share.iter().enumerate() {
+                let (force, to) = (self.x_force[i + j * (nx + 1)], line + y_parent[j] * (cx + 1));
+                sources.x_force[to] += (1.0 - share) * force;
+                if *share > 0.0 {
+                    sources.x_force[to + 1] += share * force;
+                }
+            }
+        }
+        for (j, (line, share)) in y_share.iter().enumerate() {
+            for (i, parent) in x_parent.iter().enumerate() {
+                let (force, to) = (self.y_force[i + j * nx], parent + line * cx);
+                sources.y_force[to] += (1.0 - share) * force;
+                if *share > 0.0 {
+                    sources.y_force[to + cx] += share * force;
+                }
+            }
+        }
+        sources
+    }
+}
+
+/// For every fine line the coarse line at or before it and how far it lies towards the next.
+fn shares(fine: &[f64], coarse: &[f64]) -> Vec<(usize, f64)> {
+    let place = |x: &f64| {
+        let line = coarse.partition_point(|c| c <= x) - 1;
+        match coarse.get(line + 1) {
+            Some(next) => (line, (x - coarse[line]) / (next - coarse[line])),
+            None => (line, 0.0),
+        }
+    };
+    fine.iter().map(place).collect()
 }
 
 /// All that a problem consists of.
@@ -86,8 +137,11 @@ impl Problem {
 
     /// The same problem on another mesh of the same layout; extra sources belong to one mesh only
     /// and are dropped.
-    pub(crate) fn with_mesh(&self, mesh: Mesh) -> Problem {
-        let description = Description { mesh, sources: None, ..self.description.clone() };
+    pub(crate) fn coarsened(&self, coarsening: &Coarsening) -> Problem {
+        let sources = self.description.sources.as_ref();
+        let sources = sources.map(|s| s.coarsened(self.mesh(), coarsening));
+        let mesh = coarsening.mesh.clone();
+        let description = Description { mesh, sources, ..self.description.clone() };
         Problem { description }
     }
 
