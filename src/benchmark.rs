@@ -117,8 +117,8 @@ impl Comparison {
 /// An unknown name, too few cells, a breakdown of the solver.
 pub fn compute(name: &str, cells: usize, uniform: bool) -> Result<Comparison, BenchmarkError> {
     let case = Case::named(name).ok_or_else(|| unknown(name))?;
-    if !cells.is_multiple_of(4) || cells < 8 {
-        return Err(BenchmarkError::Cells { cells, bound: "a multiple of four, at least 8" });
+    if !cells.is_multiple_of(8) || cells < 16 {
+        return Err(BenchmarkError::Cells { cells, bound: "a multiple of eight, at least 16" });
     }
     let problem = case.problem(cells, uniform)?;
     let mesh = problem.mesh();
@@ -342,6 +342,6 @@ mod tests {
     #[test]
     fn cells_out_of_range_are_refused() {
         let error = compute("square-cavity-1e3", 30, false).unwrap_err();
-        assert_eq!(error.to_string(), "cells must be a multiple of four, at least 8, not 30");
+        assert_eq!(error.to_string(), "cells must be a multiple of eight, at least 16, not 30");
     }
 }

@@ -142,7 +142,7 @@ fn planar_vented_housing() {
 
 #[test]
 fn axisymmetric_vented_housing() {
-    assert_housing("ring-housing", &ring_housing(2), &ring_housing(6));
+    assert_housing("ring-housing", &ring_housing(4), &ring_housing(6));
 }
 
 /// Without heat nothing moves, in either housing.

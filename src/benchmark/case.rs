@@ -170,8 +170,8 @@ impl Case {
             Kind::Block { rayleigh, ratio } => ConductingBlock {
                 rayleigh,
                 ratio,
-                gap_cells: cells / 4,
-                block_cells: cells / 2,
+                gap_cells: 3 * cells / 8,
+                block_cells: cells / 4,
                 grading: if uniform { Grading::Uniform } else { Grading::Both(1.0) },
                 ..ConductingBlock::default()
             }
