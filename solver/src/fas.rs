@@ -197,7 +197,7 @@ impl Stack {
 
     /// One cycle from level `l` down to the coarsest and back.
     pub fn cycle(&mut self, l: usize) -> Result<(), SolveError> {
-        let smoothing = simplec::hack(self.smoothing);
+        let smoothing = self.smoothing;
         if l + 1 == self.levels.len() {
             let (level, work) = (&self.levels[l], &mut self.work[l]);
             let scales = residual::scales(level, &work.state);

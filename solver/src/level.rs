@@ -173,6 +173,11 @@ impl Level {
         level
     }
 
+    /// The larger of the section's width and height [m].
+    pub fn extent(&self) -> f64 {
+        self.dx.iter().sum::<f64>().max(self.dy.iter().sum())
+    }
+
     /// Mass flow through x-face (i, j) [kg/s], positive along x.
     #[inline(always)]
     pub fn x_flow(&self, u: &[f64], i: usize, j: usize) -> f64 {

@@ -46,6 +46,18 @@ pub(crate) struct Scales {
 /// Least heat scale as a share of all that sides at their temperatures could exchange.
 const LEAST_HEAT: f64 = 1e-10;
 
+/// Speeds below this share of the diffusive speed α/L count as rest.
+const LEAST_SPEED: f64 = 1e-8;
+
+/// Flow of the diffusive speed α/L through the section [m³/s].
+fn creep(level: &Level) -> f64 {
+    let air = &level.air;
+    let height: f64 = level.dy.iter().sum();
+    let side = level.x_area.iter().fold(0.0_f64, |a, b| a.max(*b)) * height;
+    let area = side.max(level.y_area.iter().sum());
+    air.conductivity / (air.density * air.specific_heat) / level.extent() * area
+}
+
 /// The scales of a state.
 pub(crate) fn scales(level: &Level, state: &State) -> Scales {
     let (nx, ny) = (level.nx, level.ny);
@@ -81,8 +93,14 @@ pub(crate) fn scales(level: &Level, state: &State) -> Scales {
         columns.iter_mut().enumerate().for_each(|(i, c)| *c += level.x_flow(&state.u, i, j).abs());
     }
     let across = columns.iter().fold(0.0_f64, |a, b| a.max(*b));
-    // A section at one temperature exchanges nothing but round-off.
-    Scales { mass: through.max(0.5 * across), force, heat: heat.max(LEAST_HEAT * gross) }
+    // A section at one temperature exchanges nothing but round-off, and air at rest moves by no
+    // more than that.
+    let creep = LEAST_SPEED * creep(level);
+    Scales {
+        mass: through.max(0.5 * across).max(level.air.density * creep),
+        force: force.max(level.air.viscosity / level.extent() * creep),
+        heat: heat.max(LEAST_HEAT * gross),
+    }
 }
 
 /// Sums of the residuals' sizes over their scales.

@@ -264,14 +264,3 @@ fn energy_step(level: &Level, work: &mut Work, smoothing: &Smoothing) {
     }
     par::add_scaled(&mut state.t, 1.0, change, nx);
 }
-#[allow(missing_docs)]
-pub(crate) fn hack(s: Smoothing) -> Smoothing {
-    let g = |k: &str, d: f64| std::env::var(k).ok().and_then(|v| v.parse().ok()).unwrap_or(d);
-    Smoothing {
-        velocity: g("AU", s.velocity),
-        temperature: g("AT", s.temperature),
-        sweeps: g("SW", 1.0) as usize,
-        pressure: (g("PT", 0.1), g("PN", 3.0) as usize),
-        iterations: [g("N1", 2.0) as usize, g("N2", 2.0) as usize],
-    }
-}

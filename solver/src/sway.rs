@@ -52,7 +52,7 @@ pub(crate) fn assess(
     let level = stack.level(l);
     let coarse = stack.problem(l).unwrap_or(problem);
     let speed = largest(&state.u).max(largest(&state.v));
-    let extent = level.dx.iter().sum::<f64>().max(level.dy.iter().sum());
+    let extent = level.extent();
     let air = &level.air;
     let diffusivity = air.conductivity / (air.density * air.specific_heat);
     let viscosity = air.viscosity / air.density;
