@@ -11,7 +11,7 @@
 use crate::acceleration::Acceleration;
 use crate::level::Level;
 use crate::linear::multigrid::Link;
-use crate::newton::Newton;
+use crate::newton::{Aim, Newton};
 use crate::residual::{self, Scales};
 use crate::simplec::{self, Smoothing, Work, smooth};
 use crate::transfer::Transfer;
@@ -124,8 +124,7 @@ impl Stack {
             &mut work.state,
             &work.rhs,
             &scales,
-            (tolerance, COARSEST_STEPS),
-            from_rest,
+            Aim { target: tolerance, limit: COARSEST_STEPS, from_rest },
             each,
         )
     }
@@ -208,8 +207,7 @@ impl Stack {
                 &mut work.state,
                 &work.rhs,
                 &scales,
-                ((0.01 * now).max(1e-13), 6),
-                false,
+                Aim { target: (0.01 * now).max(1e-13), limit: 6, from_rest: false },
                 &mut |_| Control::Continue,
             )?;
             return Ok(());

@@ -48,6 +48,17 @@ pub(crate) struct Newton {
     pub factorisations: usize,
 }
 
+/// What a solution is to reach.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub(crate) struct Aim {
+    /// Relative residual to get below.
+    pub target: f64,
+    /// Steps at the most.
+    pub limit: usize,
+    /// Whether to begin with short pseudo-time steps.
+    pub from_rest: bool,
+}
+
 /// Columns of one colour are this far apart, so that their rows do not meet.
 const COLOUR_STEP: usize = 3;
 
@@ -73,8 +84,7 @@ impl Newton {
         state: &mut State,
         rhs: &State,
         scales: &Scales,
-        (target, limit): (f64, usize),
-        from_rest: bool,
+        Aim { target, limit, from_rest }: Aim,
         each: &mut dyn FnMut(Residuals) -> Control,
     ) -> Result<f64, SolveError> {
         residual::evaluate(level, state, rhs, &mut self.residual);

@@ -57,7 +57,7 @@ pub fn solve(
     let mut run = Run::new(problem, settings, watch);
     let stop = match start {
         Some(state) if state.fits(problem.mesh()) => run.resume(&state)?,
-        _ => run.from_rest()?,
+        _ => run.start_from_rest()?,
     };
     let (stop, verdict) = run.judge(stop)?;
     Ok(run.solution(stop, verdict))
@@ -99,7 +99,7 @@ impl<'a> Run<'a> {
     }
 
     /// Coarsest mesh first, each finer one from the next coarser.
-    fn from_rest(&mut self) -> Result<StopReason, SolveError> {
+    fn start_from_rest(&mut self) -> Result<StopReason, SolveError> {
         let coarsest = self.stack.depth() - 1;
         if let Some(stop) = self.start_coarsest(coarsest, true)? {
             return Ok(stop);
@@ -159,7 +159,7 @@ impl<'a> Run<'a> {
             Cycles::Stalled => Ok(StopReason::Stalled),
             Cycles::Broke { .. } => {
                 self.note("the given start diverged: started again from rest".into());
-                self.from_rest()
+                self.start_from_rest()
             }
         }
     }
