@@ -1,6 +1,6 @@
 //! The worked examples in `cases/`: each is read, checked and solved on a coarse mesh.
 
-#![allow(clippy::unwrap_used)]
+#![allow(clippy::unwrap_used, clippy::print_stdout)]
 
 use std::collections::BTreeMap;
 use std::fs;
