@@ -1,5 +1,6 @@
 //! Case files: what is understood, what is refused and how.
 
+#![allow(clippy::print_stdout)]
 #![allow(clippy::unwrap_used, clippy::expect_used)]
 
 use std::collections::HashSet;

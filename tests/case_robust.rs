@@ -1,5 +1,6 @@
 //! No text makes the reader panic, however mangled; what is accepted can be written and read back.
 
+#![allow(clippy::print_stdout)]
 #![allow(clippy::unwrap_used, clippy::expect_used)]
 
 use proptest::prelude::*;

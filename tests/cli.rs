@@ -3,6 +3,7 @@
 //! Printed text is compared with `tests/cli/*.txt`, times, paths and round-off masked. To accept
 //! what is printed now, run the tests once with `VENTRISE_ACCEPT=1` and read the difference.
 
+#![allow(clippy::print_stdout)]
 #![allow(clippy::unwrap_used)]
 
 use std::fs;

@@ -1,5 +1,6 @@
 //! The heated square cavity: table values, order, symmetries, balances.
 
+#![allow(clippy::print_stdout)]
 #![allow(clippy::unwrap_used)]
 
 mod proof;

@@ -1,5 +1,6 @@
 //! Conduction in blocks together with air beside them; conduction alone.
 
+#![allow(clippy::print_stdout)]
 #![allow(clippy::unwrap_used)]
 
 mod proof;

@@ -1,5 +1,6 @@
 //! Forced flow: ducts far from their entrance, pressure-driven vents, the lid-driven cavity.
 
+#![allow(clippy::print_stdout)]
 #![allow(clippy::unwrap_used)]
 
 mod proof;

@@ -1,5 +1,6 @@
 //! Order of accuracy against a manufactured solution with a solid beside the air.
 
+#![allow(clippy::print_stdout)]
 #![allow(clippy::unwrap_used)]
 
 mod proof;

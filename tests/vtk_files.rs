@@ -2,6 +2,7 @@
 //! build's `tmp` folder, where `.ci/read_vtr.py` compares them bit by bit with what an
 //! independent reader finds.
 
+#![allow(clippy::print_stdout)]
 #![allow(clippy::unwrap_used)]
 
 use std::fmt::Write as _;

@@ -19,6 +19,9 @@ use crate::{Air, Control, Convection, Problem, Residuals, SolveError, State};
 
 /// Coarsening stops at about this many cells, few enough for the direct solution.
 const COARSEST_CELLS: usize = 6000;
+fn coarse_peclet() -> f64 {
+    std::env::var("VP").ok().and_then(|v| v.parse().ok()).unwrap_or(4.0)
+}
 /// Newton steps on the coarsest mesh's own problem at the most.
 const COARSEST_STEPS: usize = 50;
 /// Coarser meshes keep this many cells across every slot, gap and block.
@@ -51,7 +54,9 @@ impl Stack {
             links.push(Link::new(&mesh, &coarsening));
             let coarse = coarse_problems.last().unwrap_or(problem).coarsened(&coarsening);
             mesh = coarsening.mesh;
-            levels.push(Level::new(&coarse, air, convection));
+            let mut level = Level::new(&coarse, air, convection);
+            level.peclet_limit = coarse_peclet();
+            levels.push(level);
             coarse_problems.push(coarse);
         }
         while let Some(coarsening) = mesh.coarsened(1) {
@@ -68,7 +73,9 @@ impl Stack {
     pub fn set_air(&mut self, problem: &Problem, air: &Air) {
         for (l, level) in self.levels.iter_mut().enumerate() {
             let problem = if l == 0 { problem } else { &self.coarse_problems[l - 1] };
+            let limit = level.peclet_limit;
             *level = Level::new(problem, air, level.convection);
+            level.peclet_limit = limit;
         }
     }
 
@@ -127,6 +134,12 @@ impl Stack {
             Aim { target: tolerance, limit: COARSEST_STEPS, from_rest },
             each,
         )
+    }
+
+    /// Writes level `l`'s equations exactly (or with the coarser meshes' added diffusion again).
+    pub fn set_exact(&mut self, l: usize, exact: bool) {
+        let limit = if exact || l == 0 { f64::INFINITY } else { coarse_peclet() };
+        self.levels[l].peclet_limit = limit;
     }
 
     /// The finest level of at most `cells` cells (else the coarsest), with the finest state

@@ -40,6 +40,9 @@ pub(crate) struct Level {
     pub air: Air,
     pub gravity: [f64; 2],
     pub convection: Convection,
+    /// Largest flow over conductance of a face [-]; beyond it diffusion is added. Infinite on the
+    /// finest mesh, whose equations are to be exact.
+    pub peclet_limit: f64,
     pub dx: Vec<f64>,
     pub dy: Vec<f64>,
     /// Area of x-faces per height [m²/m], nx + 1.
@@ -134,6 +137,7 @@ impl Level {
             air: *air,
             gravity: d.gravity,
             convection,
+            peclet_limit: f64::INFINITY,
             dx: (0..nx).map(|i| mesh.dx(i)).collect(),
             dy: (0..ny).map(|j| mesh.dy(j)).collect(),
             x_area: (0..=nx).map(|i| mesh.x_area(i)).collect(),

@@ -412,7 +412,9 @@ impl<'a> Run<'a> {
             let watch = &mut self.watch;
             let mut going_on = || watch(&last);
             let (stack, notes) = (&mut self.stack, &mut self.notes);
-            match sway::assess(stack, self.problem, notes, &mut going_on)? {
+            let found = sway::assess(stack, self.problem, notes, &mut going_on);
+            (0..stack.depth()).for_each(|l| stack.set_exact(l, false));
+            match found? {
                 Finding::Stable => return Ok((stop, verdict)),
                 Finding::Swaying(found) => return Ok((stop, found)),
                 Finding::Leaves(l, state) => stop = self.go_on_from(l, &state)?,

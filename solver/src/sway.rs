@@ -49,6 +49,7 @@ pub(crate) fn assess(
     going_on: &mut dyn FnMut() -> Control,
 ) -> Result<Finding, SolveError> {
     let (l, state) = stack.restricted(CELLS);
+    stack.set_exact(l, true);
     let level = stack.level(l);
     let coarse = stack.problem(l).unwrap_or(problem);
     let speed = largest(&state.u).max(largest(&state.v));

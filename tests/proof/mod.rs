@@ -1,6 +1,6 @@
 //! What all proofs share: solving to the end, observed orders, comparisons with a stated band.
 
-#![allow(dead_code, clippy::unwrap_used, clippy::expect_used)]
+#![allow(dead_code, clippy::unwrap_used, clippy::expect_used, clippy::print_stdout)]
 
 use ventrise_solver::{Control, Problem, Settings, Solution, State, StopReason, solve};
 

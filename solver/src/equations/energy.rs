@@ -19,7 +19,7 @@ pub(crate) fn row(
     let (nx, ny) = (level.nx, level.ny);
     let (u, v, t) = (&state.u[..], &state.v[..], &state.t[..]);
     let heat = level.air.specific_heat;
-    let scheme = level.convection;
+    let scheme = (level.convection, level.peclet_limit);
     for i in 0..nx {
         let n = i + j * nx;
         let here = t[n];

@@ -13,9 +13,16 @@ use crate::Convection;
 /// One neighbour's share: [exact, implicit] coefficients of (φ_nb − φ_P).
 ///
 /// Exact: D − F·w with w the neighbour's weight in the face value. Implicit: the same while
-/// positive, else upwind, so that relaxation stays stable. `conductance` D, outward `flow` F.
+/// positive, else upwind, so that relaxation stays stable. On coarser meshes D is raised until
+/// |F|/D is within `peclet_limit`: central differences there would show waves, not the flow. `conductance` D, outward `flow` F.
 #[inline(always)]
-pub(crate) fn link(scheme: Convection, conductance: f64, flow: f64, weight: f64) -> [f64; 2] {
+pub(crate) fn link(
+    (scheme, peclet_limit): (Convection, f64),
+    conductance: f64,
+    flow: f64,
+    weight: f64,
+) -> [f64; 2] {
+    let conductance = conductance.max(flow.abs() / peclet_limit);
     let upwind = conductance + (-flow).max(0.0);
     match scheme {
         Convection::Central => {

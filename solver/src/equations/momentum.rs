@@ -20,7 +20,7 @@ pub(crate) fn x_row(
 ) {
     let (nx, ny) = (level.nx, level.ny);
     let (u, v) = (&state.u[..], &state.v[..]);
-    let scheme = level.convection;
+    let scheme = (level.convection, level.peclet_limit);
     let lift = -level.air.density * level.air.expansion * level.gravity[0];
     for i in 0..=nx {
         let f = i + j * (nx + 1);
@@ -95,7 +95,7 @@ pub(crate) fn y_row(
 ) {
     let (nx, ny) = (level.nx, level.ny);
     let (u, v) = (&state.u[..], &state.v[..]);
-    let scheme = level.convection;
+    let scheme = (level.convection, level.peclet_limit);
     let lift = -level.air.density * level.air.expansion * level.gravity[1];
     for i in 0..nx {
         let f = i + j * nx;
