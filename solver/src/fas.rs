@@ -19,9 +19,9 @@ use crate::{Air, Control, Convection, Problem, Residuals, SolveError, State};
 
 /// Coarsening stops at about this many cells, few enough for the direct solution.
 const COARSEST_CELLS: usize = 6000;
-fn coarse_peclet() -> f64 {
-    std::env::var("VP").ok().and_then(|v| v.parse().ok()).unwrap_or(4.0)
-}
+/// Largest flow over conductance of a face on coarser meshes: found best of 2, 4 and none on
+/// housings whose cells are large for their speeds.
+const COARSE_PECLET: f64 = 4.0;
 /// Newton steps on the coarsest mesh's own problem at the most.
 const COARSEST_STEPS: usize = 50;
 /// Coarser meshes keep this many cells across every slot, gap and block.
@@ -55,7 +55,7 @@ impl Stack {
             let coarse = coarse_problems.last().unwrap_or(problem).coarsened(&coarsening);
             mesh = coarsening.mesh;
             let mut level = Level::new(&coarse, air, convection);
-            level.peclet_limit = coarse_peclet();
+            level.peclet_limit = COARSE_PECLET;
             levels.push(level);
             coarse_problems.push(coarse);
         }
@@ -138,7 +138,7 @@ impl Stack {
 
     /// Writes level `l`'s equations exactly (or with the coarser meshes' added diffusion again).
     pub fn set_exact(&mut self, l: usize, exact: bool) {
-        let limit = if exact || l == 0 { f64::INFINITY } else { coarse_peclet() };
+        let limit = if exact || l == 0 { f64::INFINITY } else { COARSE_PECLET };
         self.levels[l].peclet_limit = limit;
     }
 

@@ -14,7 +14,7 @@ use crate::{Control, Problem, SolveError, State, Verdict, residual};
 /// Meshes up to this size are analysed [cells].
 const CELLS: usize = 12_000;
 /// Time steps per period of the leading mode, and most periods followed.
-const STEPS_PER_PERIOD: usize = 24;
+const STEPS_PER_PERIOD: usize = 20;
 const MOST_PERIODS: usize = 6;
 /// Size of the disturbance to start with, as a share of the largest speed.
 const DISTURBANCE: f64 = 0.1;
@@ -26,9 +26,11 @@ const LEAVING_STEPS: usize = 14;
 /// below needs 1708 on its height.
 const LEAST_RAYLEIGH: f64 = 500.0;
 /// Chord iterations of a time step at the most, and the change that ends them (share of the
-/// largest speed and rise).
-const CHORD_STEPS: usize = 6;
+/// largest speed and rise). A step that is not ended by then renews the factors, at most every
+/// `RENEWAL` steps.
+const CHORD_STEPS: usize = 4;
 const CHORD_BOUND: f64 = 1e-3;
+const RENEWAL: usize = 10;
 
 /// What the analysis says about a steady solution.
 pub(crate) enum Finding {
@@ -135,7 +137,8 @@ fn leave(
     Ok(now)
 }
 
-/// Lowest and highest `part_max` over the last two periods of a run from the disturbed state.
+/// Lowest and highest `part_max` over the last two periods of a run from the disturbed state;
+/// nothing when the run was ended before.
 fn follow(
     level: &Level,
     problem: &Problem,
@@ -167,10 +170,12 @@ fn follow(
     };
     let mut bands: Vec<Vec<[f64; 2]>> = Vec::new();
     let mut sizes: Vec<f64> = Vec::new();
+    let mut age = 0;
     for _ in 0..MOST_PERIODS {
         let mut band = vec![[f64::INFINITY, f64::NEG_INFINITY]; problem.description().parts.len()];
         let mut size = 0.0_f64;
         for _ in 0..STEPS_PER_PERIOD {
+            age += 1;
             let (x1, x0) = (gather(newton, &now), gather(newton, &before));
             // Extrapolated start of the step.
             let mut next = now.clone();
@@ -194,13 +199,14 @@ fn follow(
                 if size < CHORD_BOUND {
                     break;
                 }
-                if k + 1 == CHORD_STEPS {
+                if k + 1 == CHORD_STEPS && age >= RENEWAL {
+                    age = 0;
                     factors = newton.shifted(level, &next, &level.source, 1.5 / step)?.0;
                 }
             }
             before = std::mem::replace(&mut now, next);
             if going_on() == Control::Stop || !largest(&now.v).is_finite() {
-                return Ok(bands.pop().unwrap_or(band));
+                return Ok(Vec::new());
             }
             for (b, t) in band.iter_mut().zip(highest(problem, &now)) {
                 *b = [b[0].min(t), b[1].max(t)];

@@ -206,8 +206,10 @@ fn hottest(summary: &Summary) -> Option<String> {
     Some(if margin < 0.0 {
         format!("\"{}\" is {} K over its limit", part.name, fixed(-margin, 1))
     } else {
+        let final_numbers = matches!(summary.verdict, "settled" | "swaying");
         format!(
-            "All limits are kept; \"{}\" has the least margin, {} K",
+            "{} limits are kept; \"{}\" has the least margin, {} K",
+            if final_numbers { "All" } else { "So far all" },
             part.name,
             fixed(margin, 1)
         )
