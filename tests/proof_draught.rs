@@ -1,6 +1,6 @@
 //! Natural draught: open channel, stack with losses, vented housings, air at rest.
 
-#![allow(clippy::print_stdout)]
+#![allow(clippy::print_stdout, clippy::type_complexity)]
 #![allow(clippy::unwrap_used)]
 
 mod proof;

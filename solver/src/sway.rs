@@ -28,9 +28,9 @@ const LEAST_RAYLEIGH: f64 = 500.0;
 /// Chord iterations of a time step at the most, and the change that ends them (share of the
 /// largest speed and rise). A step that is not ended by then renews the factors, at most every
 /// `RENEWAL` steps.
-const CHORD_STEPS: usize = 4;
+const CHORD_STEPS: usize = 5;
 const CHORD_BOUND: f64 = 1e-3;
-const RENEWAL: usize = 10;
+const RENEWAL: usize = 3;
 
 /// What the analysis says about a steady solution.
 pub(crate) enum Finding {
@@ -205,7 +205,7 @@ fn follow(
                 }
             }
             before = std::mem::replace(&mut now, next);
-            if going_on() == Control::Stop || !largest(&now.v).is_finite() {
+            if going_on() == Control::Stop || !(largest(&now.v) + largest(&now.t)).is_finite() {
                 return Ok(Vec::new());
             }
             for (b, t) in band.iter_mut().zip(highest(problem, &now)) {
@@ -233,5 +233,7 @@ fn follow(
 }
 
 fn largest(values: &[f64]) -> f64 {
-    values.iter().fold(0.0, |a: f64, b| if b.is_nan() { f64::NAN } else { a.max(b.abs()) })
+    values
+        .iter()
+        .fold(0.0, |a: f64, b| if a.is_nan() || b.is_nan() { f64::NAN } else { a.max(b.abs()) })
 }
