@@ -26,11 +26,10 @@ const LEAVING_STEPS: usize = 14;
 /// below needs 1708 on its height.
 const LEAST_RAYLEIGH: f64 = 500.0;
 /// Chord iterations of a time step at the most, and the change that ends them (share of the
-/// largest speed and rise). A step that is not ended by then renews the factors, at most every
-/// `RENEWAL` steps.
+/// largest speed and rise). A step that is not ended by then renews the factors and may take
+/// as many again.
 const CHORD_STEPS: usize = 5;
 const CHORD_BOUND: f64 = 1e-3;
-const RENEWAL: usize = 3;
 
 /// What the analysis says about a steady solution.
 pub(crate) enum Finding {
@@ -170,18 +169,17 @@ fn follow(
     };
     let mut bands: Vec<Vec<[f64; 2]>> = Vec::new();
     let mut sizes: Vec<f64> = Vec::new();
-    let mut age = 0;
+
     for _ in 0..MOST_PERIODS {
         let mut band = vec![[f64::INFINITY, f64::NEG_INFINITY]; problem.description().parts.len()];
         let mut size = 0.0_f64;
         for _ in 0..STEPS_PER_PERIOD {
-            age += 1;
             let (x1, x0) = (gather(newton, &now), gather(newton, &before));
             // Extrapolated start of the step.
             let mut next = now.clone();
             let change: Vec<f64> = x1.iter().zip(&x0).map(|(a, b)| a - b).collect();
             newton.numbers().add(&change, 1.0, &mut next);
-            for k in 0..CHORD_STEPS {
+            for k in 0..2 * CHORD_STEPS {
                 residual::evaluate(level, &next, &level.source, &mut residual);
                 let mut right = gather(newton, &residual);
                 let x = gather(newton, &next);
@@ -199,8 +197,7 @@ fn follow(
                 if size < CHORD_BOUND {
                     break;
                 }
-                if k + 1 == CHORD_STEPS && age >= RENEWAL {
-                    age = 0;
+                if k + 1 == CHORD_STEPS {
                     factors = newton.shifted(level, &next, &level.source, 1.5 / step)?.0;
                 }
             }
