@@ -2,7 +2,6 @@
 
 pub mod benchmark;
 pub mod case;
-pub mod check;
 pub mod cli;
 pub mod output;
 pub mod progress;

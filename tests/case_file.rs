@@ -121,20 +121,11 @@ fn bad_cases_are_refused_with_their_messages() {
 }
 
 #[test]
-fn check_tells_what_was_understood() {
+fn default_meshes_are_of_moderate_size() {
     for name in ["vented-planar.toml", "vented-axisymmetric.toml", "every-key.toml"] {
         let case = reference(name);
         let generated = ventrise::case::setup::mesh(&case).unwrap();
-        let text = ventrise::check::report(&case, &generated);
-        assert!(text.starts_with(case.title()));
-        for part in case.parts() {
-            assert!(text.contains(&part.name), "{text}");
-        }
-        for slot in case.slots() {
-            assert!(text.contains(&format!("slot {}", slot.name)), "{text}");
-        }
         let cells = generated.mesh.cell_count();
-        assert!(text.contains(&format!("{cells} cells")), "{text}");
         let most = if case.mesh_choice().cell.is_some() { 60_000 } else { 40_000 };
         assert!((8_000..=most).contains(&cells), "{name}: {cells} cells by default");
         ventrise::case::setup::problem(&case, generated.mesh).unwrap();
