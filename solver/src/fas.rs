@@ -55,7 +55,7 @@ impl Stack {
             let coarse = coarse_problems.last().unwrap_or(problem).coarsened(&coarsening);
             mesh = coarsening.mesh;
             let mut level = Level::new(&coarse, air, convection);
-            level.peclet_limit = COARSE_PECLET;
+            level.slack = 1.0 / COARSE_PECLET;
             levels.push(level);
             coarse_problems.push(coarse);
         }
@@ -73,9 +73,9 @@ impl Stack {
     pub fn set_air(&mut self, problem: &Problem, air: &Air) {
         for (l, level) in self.levels.iter_mut().enumerate() {
             let problem = if l == 0 { problem } else { &self.coarse_problems[l - 1] };
-            let limit = level.peclet_limit;
+            let slack = level.slack;
             *level = Level::new(problem, air, level.convection);
-            level.peclet_limit = limit;
+            level.slack = slack;
         }
     }
 
@@ -138,8 +138,7 @@ impl Stack {
 
     /// Writes level `l`'s equations exactly (or with the coarser meshes' added diffusion again).
     pub fn set_exact(&mut self, l: usize, exact: bool) {
-        let limit = if exact || l == 0 { f64::INFINITY } else { COARSE_PECLET };
-        self.levels[l].peclet_limit = limit;
+        self.levels[l].slack = if exact || l == 0 { 0.0 } else { 1.0 / COARSE_PECLET };
     }
 
     /// The finest level of at most `cells` cells (else the coarsest), with the finest state
@@ -205,6 +204,22 @@ impl Stack {
     pub fn accelerate(&mut self, l: usize, acceleration: &mut Acceleration, scales: &Scales) {
         let Work { state, rhs, residual, .. } = &mut self.work[l];
         acceleration.step(&self.levels[l], state, rhs, residual, scales);
+    }
+
+    /// Residuals of level `l`'s state.
+    pub fn evaluate(&mut self, l: usize) {
+        let Work { state, rhs, residual, .. } = &mut self.work[l];
+        residual::evaluate(&self.levels[l], state, rhs, residual);
+    }
+
+    /// One smoothing iteration on level `l`.
+    pub fn smooth(&mut self, l: usize) {
+        smooth(&self.levels[l], &mut self.work[l], &self.smoothing);
+    }
+
+    /// One pressure correction on level `l`, to the reduction the smoothing asks.
+    pub fn correct_pressure(&mut self, l: usize) {
+        simplec::correct_pressure(&self.levels[l], &mut self.work[l], &self.smoothing);
     }
 
     /// One cycle from level `l` down to the coarsest and back.

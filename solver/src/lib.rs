@@ -19,6 +19,7 @@ mod linear;
 mod newton;
 mod numbers;
 mod par;
+mod pieces;
 mod probe;
 mod problem;
 mod residual;
@@ -40,6 +41,7 @@ pub use numbers::{
     Numbers, PartTemperature, block_temperatures, cell_velocities, heat_fluxes, numbers,
     part_temperatures,
 };
+pub use pieces::Pieces;
 pub use probe::{Sample, Sampler};
 pub use problem::{Block, Description, Problem, Solid, Sources};
 pub use settings::{Convection, DRIFT_BOUND, HEAT_BOUND, MASS_BOUND, Settings};

@@ -3,33 +3,21 @@
 use crate::equations::{energy, mass, momentum};
 use crate::level::Level;
 use crate::{Residuals, State, par};
-use ventrise_mesh::Side;
 
-/// All residuals of a state with the given right-hand sides, into `out` (mass in `p`).
+/// All residuals of a state with the given right-hand sides, into `out` (mass in `p`). One pass:
+/// what a row reads stays near for all four equations.
 pub(crate) fn evaluate(level: &Level, state: &State, rhs: &State, out: &mut State) {
-    let nx = level.nx;
-    par::each_row(&mut out.u, nx + 1, |j, row| {
-        momentum::x_row(level, state, &rhs.u, j, |i, r, _| row[i] = r);
+    let (nx, ny) = (level.nx, level.ny);
+    let State { u, v, p, t } = out;
+    let (v, v_last) = v.split_at_mut(nx * ny);
+    let arrays = [(&mut p[..], nx), (&mut t[..], nx), (v, nx), (&mut u[..], nx + 1)];
+    par::each_rows(arrays, |j, [p, t, v, u]| {
+        momentum::x_row(level, state, &rhs.u, j, |i, r, _| u[i] = r);
+        momentum::y_row(level, state, &rhs.v, j, |i, r, _| v[i] = r);
+        mass::row(level, state, &rhs.p, j, |i, r| p[i] = r);
+        energy::row(level, state, &rhs.t, j, |i, r, _| t[i] = r);
     });
-    par::each_row(&mut out.v, nx, |j, row| {
-        momentum::y_row(level, state, &rhs.v, j, |i, r, _| row[i] = r);
-    });
-    for side in Side::ALL {
-        let (speeds, forces) = match side {
-            Side::Left | Side::Right => (&state.u, &mut out.u),
-            Side::Bottom | Side::Top => (&state.v, &mut out.v),
-        };
-        for o in &level.openings[side.index()] {
-            let speed = speeds[o.face];
-            let [force, _] =
-                momentum::opening_force(level.air.density, o.area, o.loss, o.outward, speed);
-            forces[o.face] += force;
-        }
-    }
-    par::each_row(&mut out.p, nx, |j, row| mass::row(level, state, &rhs.p, j, row));
-    par::each_row(&mut out.t, nx, |j, row| {
-        energy::row(level, state, &rhs.t, j, |i, r, _| row[i] = r);
-    });
+    momentum::y_row(level, state, &rhs.v, ny, |i, r, _| v_last[i] = r);
 }
 
 /// What the residuals are compared with.
