@@ -100,11 +100,28 @@ impl<'a> Run<'a> {
 
     /// Coarsest mesh first, each finer one from the next coarser.
     fn start_from_rest(&mut self) -> Result<StopReason, SolveError> {
-        let coarsest = self.stack.depth() - 1;
-        if let Some(stop) = self.start_coarsest(coarsest, true)? {
+        let bottom = self.stack.bottom();
+        let mut from_rest = true;
+        for l in (bottom + 1..self.stack.depth()).rev() {
+            if !from_rest {
+                self.stack.start_from_coarser(l);
+            }
+            let (end, stopped) = self.newton(l, NESTED_TARGET, from_rest, 1.0)?;
+            if stopped {
+                self.lift_to_finest(l);
+                return Ok(StopReason::Asked);
+            }
+            // What a coarser mesh could not solve is no start for a finer one.
+            from_rest = end > NESTED_TARGET;
+            self.renew_air(l);
+        }
+        if !from_rest {
+            self.stack.start_from_coarser(bottom);
+        }
+        if let Some(stop) = self.start_bottom(bottom, from_rest)? {
             return Ok(stop);
         }
-        self.climb(coarsest)
+        self.climb(bottom)
     }
 
     /// From the state of level `from` to the finest, each level from the next coarser.
@@ -142,8 +159,8 @@ impl<'a> Run<'a> {
     fn resume(&mut self, state: &State) -> Result<StopReason, SolveError> {
         self.stack.set_state(0, state);
         self.stack.pose(0);
-        if self.stack.depth() == 1 {
-            let ended = self.start_coarsest(0, false)?;
+        if self.stack.bottom() == 0 {
+            let ended = self.start_bottom(0, false)?;
             return Ok(ended.unwrap_or(StopReason::Converged));
         }
         self.renew_air(0);
@@ -164,28 +181,35 @@ impl<'a> Run<'a> {
         }
     }
 
-    /// Newton's method on the coarsest mesh, with the film temperature.
-    fn start_coarsest(
+    /// Newton's method on the coarsest mesh of the cycles, with the film temperature.
+    fn start_bottom(
         &mut self,
         l: usize,
         from_rest: bool,
     ) -> Result<Option<StopReason>, SolveError> {
         let finest = l == 0;
         let target = if finest { 1e-2 * self.settings.tolerance } else { COARSEST_TARGET };
-        let mut from_rest = from_rest;
+        let mut fresh = from_rest;
         let mut end = 0.0;
         let mut converged = false;
         for _ in 0..8 {
             let mut stopped;
-            (end, stopped) = self.newton(l, target, from_rest, 1.0)?;
-            if from_rest && end > NESTED_TARGET && !stopped {
+            (end, stopped) = self.newton(l, target, fresh, 1.0)?;
+            if !fresh && end > NESTED_TARGET && !stopped {
+                let mesh = self.stack.problem(l).unwrap_or(self.problem).mesh();
+                let rest = State::rest(mesh);
+                self.stack.set_state(l, &rest);
+                (end, stopped) = self.newton(l, target, true, 1.0)?;
+                fresh = true;
+            }
+            if fresh && end > NESTED_TARGET && !stopped {
                 (end, stopped) = self.build_up(l, target)?;
             }
             if stopped {
                 self.lift_to_finest(l);
                 return Ok(Some(StopReason::Asked));
             }
-            from_rest = false;
+            fresh = false;
             converged = end <= self.settings.tolerance.max(target);
             if !self.renew_air(l) {
                 break;
@@ -225,7 +249,7 @@ impl<'a> Run<'a> {
             rows.push(row);
             stop
         };
-        let end = self.stack.solve_coarsest(target, from_rest, strength, &mut each)?;
+        let end = self.stack.solve_directly(l, target, from_rest, strength, &mut each)?;
         self.history.append(&mut rows);
         Ok((end, stop == Control::Stop))
     }
@@ -429,9 +453,9 @@ impl<'a> Run<'a> {
     fn go_on_from(&mut self, l: usize, state: &State) -> Result<StopReason, SolveError> {
         self.stack.set_state(l, state);
         self.stack.pose(l);
-        let coarsest = self.stack.depth() - 1;
+        let coarsest = self.stack.bottom();
         if l == coarsest {
-            if let Some(stop) = self.start_coarsest(l, false)? {
+            if let Some(stop) = self.start_bottom(l, false)? {
                 return Ok(stop);
             }
         } else if l > 0 {

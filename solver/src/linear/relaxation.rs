@@ -14,7 +14,7 @@ use crate::par;
 /// Rows solved side by side: their chains of divisions overlap.
 const LANES: usize = 4;
 /// Columns solved side by side in one task; even.
-const BLOCK: usize = 32;
+const BLOCK: usize = 128;
 /// Pivots up to this are none: the last cell of a line that hangs on nothing is kept at zero.
 const NO_PIVOT: f32 = 1e-30;
 
@@ -144,6 +144,9 @@ fn solve_rows<const K: usize>(
 }
 
 /// Solves the columns of colour `first`, then the others.
+///
+/// Both colours are solved for all columns of a block, which keeps the loops free of questions; of
+/// each solution the columns of its colour are taken.
 fn columns(a: &Stencil, x: &mut [f32], b: &[f32], first: usize, value: &mut [f32]) {
     let nx = a.nx;
     let len = x.len();
@@ -154,36 +157,26 @@ fn columns(a: &Stencil, x: &mut [f32], b: &[f32], first: usize, value: &mut [f32
     par::each_band([(&mut *value, BLOCK * ny)], 1, |k, [out]| {
         let from = k * BLOCK;
         let width = out.len() / ny;
-        // The second colour needs the first one's new values beyond the block's border, so that
-        // column is solved here too.
-        let before = usize::from(first == 1 && from > 0);
-        let after = usize::from(first == 0 && from + width < nx);
-        let (lo, wide) = (from - before, width + before + after);
-        let mut new = vec![0.0; wide * ny];
-        let mut upper = vec![0.0; wide * ny];
-        for colour in [first, 1 - first] {
-            let begin = (lo + colour) % 2;
-            if colour == first {
-                forward(a, b, (lo, begin), (&mut new, &mut upper), wide, |_, j, c| {
-                    let at = |i: usize| old[j * nx + i];
-                    [at((lo + c).saturating_sub(1)), at((lo + c + 1).min(nx - 1))]
-                });
-            } else {
-                forward(a, b, (lo, begin), (&mut new, &mut upper), wide, |new, j, c| {
-                    let at = |c: usize| new[j * wide + c];
-                    [at(c.saturating_sub(1)), at((c + 1).min(wide - 1))]
-                });
+        // The second colour needs the first one's new values beside the block too.
+        let (lo, hi) = (from.saturating_sub(1), (from + width + 1).min(nx));
+        let wide = hi - lo;
+        let [mut values, mut others, mut upper] = [(); 3].map(|()| vec![0.0; wide * ny]);
+        // Beyond the edge the coefficients are zero: any value serves.
+        let (left, right) = (lo.saturating_sub(1), (hi + 1).min(nx));
+        solve_columns(a, b, lo, wide, (&mut values, &mut upper), |j, row| {
+            let beside = &old[j * nx + left..j * nx + right];
+            row[left + 1 - lo..][..beside.len()].copy_from_slice(beside);
+        });
+        solve_columns(a, b, lo, wide, (&mut others, &mut upper), |j, row| {
+            row[1..=wide].copy_from_slice(&values[j * wide..(j + 1) * wide]);
+        });
+        for (j, out) in out.chunks_exact_mut(width).enumerate() {
+            let span = j * wide + from - lo..j * wide + from - lo + width;
+            let pairs = values[span.clone()].iter().zip(&others[span]);
+            // A block begins with an even column.
+            for (c, (o, (one, other))) in out.iter_mut().zip(pairs).enumerate() {
+                *o = if c % 2 == first { *one } else { *other };
             }
-            for j in (0..ny - 1).rev() {
-                let (here, above) = new[j * wide..(j + 2) * wide].split_at_mut(wide);
-                let upper = &upper[j * wide..(j + 1) * wide];
-                for c in (begin..wide).step_by(2) {
-                    here[c] += upper[c] * above[c];
-                }
-            }
-        }
-        for (out, new) in out.chunks_exact_mut(width).zip(new.chunks_exact(wide)) {
-            out.copy_from_slice(&new[before..before + width]);
         }
     });
     let value = &*value;
@@ -195,35 +188,58 @@ fn columns(a: &Stencil, x: &mut [f32], b: &[f32], first: usize, value: &mut [f32
     });
 }
 
-/// Forward elimination of every second column from `begin` on, in the `wide` columns from `lo` on;
-/// `beside(new, j, c)` gives the values west and east.
-#[inline(always)]
-fn forward(
+/// Solves all of the `wide` columns from `lo` on; `beside(j, row)` puts the values of row j into
+/// row[1..=wide] and those of the columns next to them before and after.
+fn solve_columns(
     a: &Stencil,
     b: &[f32],
-    (lo, begin): (usize, usize),
-    (new, upper): (&mut [f32], &mut [f32]),
+    lo: usize,
     wide: usize,
-    beside: impl Fn(&[f32], usize, usize) -> [f32; 2],
+    (values, upper): (&mut [f32], &mut [f32]),
+    beside: impl Fn(usize, &mut [f32]),
 ) {
-    let ny = new.len() / wide;
-    let mut q = vec![0.0_f32; wide];
-    let mut last = vec![0.0_f32; wide];
-    for j in 0..ny {
-        let start = j * a.nx + lo;
-        let span = start..start + wide;
-        let (rest, w, e) = (&a.rest[span.clone()], &a.w[span.clone()], &a.e[span.clone()]);
-        let (s, n, b) = (&a.s[span.clone()], &a.n[span.clone()], &b[span]);
-        let upper = &mut upper[j * wide..(j + 1) * wide];
-        for c in (begin..wide).step_by(2) {
-            let [west, east] = beside(new, j, c);
-            let kept = rest[c] + w[c] + e[c] + s[c] * q[c];
-            let pivot = inverse(kept + n[c]);
-            q[c] = kept * pivot;
-            last[c] = (b[c] + w[c] * west + e[c] * east + s[c] * last[c]) * pivot;
-            new[j * wide + c] = last[c];
-            upper[c] = n[c] * pivot;
-        }
+    let mut row = vec![0.0; wide + 2];
+    let (mut kept, mut last) = (vec![0.0; wide], vec![0.0; wide]);
+    let rows = values.chunks_exact_mut(wide).zip(upper.chunks_exact_mut(wide)).enumerate();
+    for (j, (values, upper)) in rows {
+        beside(j, &mut row);
+        let span = j * a.nx + lo..j * a.nx + lo + wide;
+        eliminate(
+            [&a.rest, &a.w, &a.e, &a.s, &a.n, b].map(|f| &f[span.clone()]),
+            &row,
+            (&mut kept, &mut last),
+            (values, upper),
+        );
+    }
+    let ny = values.len() / wide;
+    for j in (0..ny - 1).rev() {
+        let (here, above) = values[j * wide..(j + 2) * wide].split_at_mut(wide);
+        let upper = &upper[j * wide..(j + 1) * wide];
+        here.iter_mut().zip(upper.iter().zip(above)).for_each(|(x, (u, above))| *x += u * *above);
+    }
+}
+
+/// One row of the forward elimination of columns: `kept` q and `last` value of the row before are
+/// replaced by this one's. Apart, so that its arrays are known not to overlap.
+#[inline(never)]
+fn eliminate(
+    [rest, w, e, s, n, b]: [&[f32]; 6],
+    row: &[f32],
+    (kept, last): (&mut [f32], &mut [f32]),
+    (values, upper): (&mut [f32], &mut [f32]),
+) {
+    let wide = values.len();
+    let (rest, w, e) = (&rest[..wide], &w[..wide], &e[..wide]);
+    let (s, n, b) = (&s[..wide], &n[..wide], &b[..wide]);
+    let (west, east) = (&row[..wide], &row[2..wide + 2]);
+    let (kept, last, upper) = (&mut kept[..wide], &mut last[..wide], &mut upper[..wide]);
+    for c in 0..wide {
+        let own = rest[c] + w[c] + e[c] + s[c] * kept[c];
+        let pivot = inverse(own + n[c]);
+        kept[c] = own * pivot;
+        last[c] = (b[c] + w[c] * west[c] + e[c] * east[c] + s[c] * last[c]) * pivot;
+        values[c] = last[c];
+        upper[c] = n[c] * pivot;
     }
 }
 
