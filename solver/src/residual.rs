@@ -27,7 +27,7 @@ pub(crate) struct Scales {
     pub mass: f64,
     /// Sum of the sizes of buoyancy, pressure and opening forces over the control volumes [N].
     pub force: f64,
-    /// Heat put in by blocks and sides [W].
+    /// Heat put in by blocks and sides, or taken out by them, whichever is more [W].
     pub heat: f64,
 }
 
@@ -50,8 +50,8 @@ fn creep(level: &Level) -> f64 {
 pub(crate) fn scales(level: &Level, state: &State) -> Scales {
     let (nx, ny) = (level.nx, level.ny);
     let lift = level.gravity.map(|g| (level.air.density * level.air.expansion * g).abs());
-    let [force, heat, gross] = par::sum_rows(ny, nx, |j| {
-        let (mut force, mut heat, mut gross) = (0.0, 0.0, 0.0);
+    let [force, heat_in, heat_out, gross] = par::sum_rows(ny, nx, |j| {
+        let (mut force, mut heat_in, mut heat_out, mut gross) = (0.0, 0.0, 0.0, 0.0);
         for i in 0..nx {
             let n = i + j * nx;
             let (t, p) = (state.t[n], state.p[n]);
@@ -66,9 +66,11 @@ pub(crate) fn scales(level: &Level, state: &State) -> Scales {
                 }
             }
             gross += level.source.t[n].abs();
-            heat += (level.source.t[n] - level.side_conductance[n] * t).max(0.0);
+            let heat = level.source.t[n] - level.side_conductance[n] * t;
+            heat_in += heat.max(0.0);
+            heat_out += (-heat).max(0.0);
         }
-        [force, heat, gross]
+        [force, heat_in, heat_out, gross]
     });
     // Half of the flows' sizes across a line is what circulates through it in a closed cavity.
     let mut through = 0.0_f64;
@@ -87,7 +89,7 @@ pub(crate) fn scales(level: &Level, state: &State) -> Scales {
     Scales {
         mass: through.max(0.5 * across).max(level.air.density * creep),
         force: force.max(level.air.viscosity / level.extent() * creep),
-        heat: heat.max(LEAST_HEAT * gross),
+        heat: heat_in.max(heat_out).max(LEAST_HEAT * gross),
     }
 }
 

@@ -106,10 +106,10 @@ impl<'a> Run<'a> {
             if !from_rest {
                 self.stack.start_from_coarser(l);
             }
-            let (end, stopped) = self.newton(l, NESTED_TARGET, from_rest, 1.0)?;
-            if stopped {
+            let (end, stop) = self.newton(l, NESTED_TARGET, from_rest, 1.0)?;
+            if let Some(stop) = stop {
                 self.lift_to_finest(l);
-                return Ok(StopReason::Asked);
+                return Ok(stop);
             }
             // What a coarser mesh could not solve is no start for a finer one.
             from_rest = end > NESTED_TARGET;
@@ -193,21 +193,21 @@ impl<'a> Run<'a> {
         let mut end = 0.0;
         let mut converged = false;
         for _ in 0..8 {
-            let mut stopped;
-            (end, stopped) = self.newton(l, target, fresh, 1.0)?;
-            if !fresh && end > NESTED_TARGET && !stopped {
+            let mut stop;
+            (end, stop) = self.newton(l, target, fresh, 1.0)?;
+            if !fresh && end > NESTED_TARGET && stop.is_none() {
                 let mesh = self.stack.problem(l).unwrap_or(self.problem).mesh();
                 let rest = State::rest(mesh);
                 self.stack.set_state(l, &rest);
-                (end, stopped) = self.newton(l, target, true, 1.0)?;
+                (end, stop) = self.newton(l, target, true, 1.0)?;
                 fresh = true;
             }
-            if fresh && end > NESTED_TARGET && !stopped {
-                (end, stopped) = self.build_up(l, target)?;
+            if fresh && end > NESTED_TARGET && stop.is_none() {
+                (end, stop) = self.build_up(l, target)?;
             }
-            if stopped {
+            if stop.is_some() {
                 self.lift_to_finest(l);
-                return Ok(Some(StopReason::Asked));
+                return Ok(stop);
             }
             fresh = false;
             converged = end <= self.settings.tolerance.max(target);
@@ -230,33 +230,41 @@ impl<'a> Run<'a> {
         Ok(None)
     }
 
-    /// Newton's method on the coarsest level `l`; the residual reached and whether the caller
-    /// stopped it.
+    /// Newton's method on level `l`; the residual reached and why it was stopped, if it was.
     fn newton(
         &mut self,
         l: usize,
         target: f64,
         from_rest: bool,
         strength: f64,
-    ) -> Result<(f64, bool), SolveError> {
-        let (mut rows, mut stop) = (Vec::new(), Control::Continue);
-        let (iteration, cells) = (self.history.len(), self.stack.cells(l));
+    ) -> Result<(f64, Option<StopReason>), SolveError> {
+        let (mut rows, mut stop) = (Vec::new(), None);
+        let (before, cells) = (self.history.len(), self.stack.cells(l));
+        let limit = self.settings.max_iterations;
         let watch = &mut self.watch;
         let mut each = |residuals: Residuals| {
-            let iteration = iteration + rows.len() + 1;
+            let iteration = before + rows.len() + 1;
             let row = Progress { iteration, cells, residuals, ..Progress::default() };
-            stop = watch(&row);
+            if watch(&row) == Control::Stop {
+                stop = Some(StopReason::Asked);
+            } else if iteration >= limit {
+                stop = Some(StopReason::IterationLimit);
+            }
             rows.push(row);
-            stop
+            if stop.is_some() { Control::Stop } else { Control::Continue }
         };
         let end = self.stack.solve_directly(l, target, from_rest, strength, &mut each)?;
         self.history.append(&mut rows);
-        Ok((end, stop == Control::Stop))
+        Ok((end, stop))
     }
 
     /// Where Newton's method does not get there from rest at once: all sources grow from a small
     /// share of theirs to the whole, each solution being the start of the next.
-    fn build_up(&mut self, l: usize, target: f64) -> Result<(f64, bool), SolveError> {
+    fn build_up(
+        &mut self,
+        l: usize,
+        target: f64,
+    ) -> Result<(f64, Option<StopReason>), SolveError> {
         let mut good = State::rest(self.stack.problem(l).unwrap_or(self.problem).mesh());
         let (mut reached, mut factor) = (0.0, BUILD_UP[1]);
         let mut end = f64::INFINITY;
@@ -269,15 +277,15 @@ impl<'a> Run<'a> {
             }
             self.stack.set_state(l, &start);
             let goal = if strength < 1.0 { NESTED_TARGET * strength } else { target };
-            let (residual, stopped) = self.newton(l, goal, first, strength)?;
+            let (residual, stop) = self.newton(l, goal, first, strength)?;
             end = residual;
-            if stopped {
-                return Ok((end, true));
+            if stop.is_some() {
+                return Ok((end, stop));
             }
             if residual <= NESTED_TARGET * strength {
                 if strength == 1.0 {
                     self.note("the sources were built up step by step to get started".into());
-                    return Ok((end, false));
+                    return Ok((end, None));
                 }
                 good = self.stack.state(l).clone();
                 reached = strength;
@@ -294,7 +302,7 @@ impl<'a> Run<'a> {
         // The nearest solution known, for the finer meshes to go on from.
         good.t.iter_mut().for_each(|t| *t /= f64::max(reached, BUILD_UP[0]));
         self.stack.set_state(l, &good);
-        Ok((end, false))
+        Ok((end, None))
     }
 
     /// Cycles on level `l` until its target, the limit, a stall or a breakdown.
