@@ -32,6 +32,7 @@ mod stability;
 mod state;
 mod sway;
 mod transfer;
+mod transient;
 
 pub use air::{Air, AirModel, standard_pressure};
 pub use balance::{Balance, OpeningFlow, REST_SPEED, SideFlow, balance, side_flows, slot_flows};
@@ -44,7 +45,7 @@ pub use numbers::{
 pub use pieces::Pieces;
 pub use probe::{Sample, Sampler};
 pub use problem::{Block, Description, Problem, Solid, Sources};
-pub use settings::{Convection, DRIFT_BOUND, HEAT_BOUND, MASS_BOUND, Settings};
+pub use settings::{Convection, DRIFT_BOUND, HEAT_BOUND, MASS_BOUND, SOLVED, Settings};
 pub use solution::{Control, Progress, Residuals, Solution, StopReason, Verdict};
 pub use solve::solve;
 pub use state::State;

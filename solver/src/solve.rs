@@ -6,7 +6,7 @@ use crate::fas::Stack;
 use crate::film::film_rise;
 use crate::numbers::part_temperatures;
 use crate::residual::Scales;
-use crate::settings::{DRIFT_BOUND, HEAT_BOUND, MASS_BOUND};
+use crate::settings::{DRIFT_BOUND, HEAT_BOUND, MASS_BOUND, SOLVED};
 use crate::simplec::Smoothing;
 use crate::sway::{self, Finding};
 use crate::{
@@ -436,7 +436,9 @@ impl<'a> Run<'a> {
                 StopReason::Stalled => Verdict::Drifting,
                 StopReason::IterationLimit | StopReason::Asked => Verdict::StoppedEarly,
             };
-            let ended = verdict == Verdict::StoppedEarly;
+            // Only a solution has a stability.
+            let unsolved = self.history.last().is_none_or(|row| row.residuals.largest() > SOLVED);
+            let ended = verdict == Verdict::StoppedEarly || unsolved;
             if ended || !self.settings.assess_stability {
                 return Ok((stop, verdict));
             }
@@ -454,7 +456,7 @@ impl<'a> Run<'a> {
         }
         self.note("no stable steady flow was found".into());
         let band = highest(self.problem, self.stack.state(0)).iter().map(|t| [*t, *t]).collect();
-        Ok((stop, Verdict::Swaying { period: None, growth: None, band }))
+        Ok((stop, Verdict::Swaying { period: None, growth: None, band, slot_band: Vec::new() }))
     }
 
     /// Solves again, from a state on level `l`.

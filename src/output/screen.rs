@@ -177,6 +177,16 @@ pub(super) fn grouped(count: usize) -> String {
 
 /// The verdict in a sentence.
 fn verdict(summary: &Summary) -> String {
+    if !summary.solved {
+        let r = &summary.residuals;
+        let worst = r.mass.max(r.momentum_x).max(r.momentum_y).max(r.energy);
+        return format!(
+            "{}. No solution was found: the equations are off by {worst:.0e} of their scale. The \
+             numbers above are the last attempt, no basis for a decision. Try a finer mesh, and \
+             see whether the heat has a way out.",
+            summary.verdict
+        );
+    }
     let sentence = match (summary.verdict, summary.stopped_by) {
         ("settled", _) => "settled. Every bound is met and the temperatures stand still".into(),
         ("swaying", _) => match summary.sway.as_ref().and_then(|s| s.period_s) {
@@ -186,6 +196,10 @@ fn verdict(summary: &Summary) -> String {
             ),
             None => "swaying. The flow keeps moving in a bounded way; read the bands".into(),
         },
+        ("drifting", Some("stalled")) => {
+            "drifting. The residuals no longer fell before every bound was met; see the balances"
+                .into()
+        }
         ("drifting", _) => "drifting. Temperatures still creep; the numbers are not final".into(),
         (_, Some("stalled")) => {
             "stopped early. The residuals no longer fell; the numbers are not final".into()
