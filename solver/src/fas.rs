@@ -18,7 +18,8 @@ use crate::transfer::Transfer;
 use crate::{Air, Control, Convection, Problem, Residuals, SolveError, State};
 
 /// Cycles go down to the first mesh of at most so many cells, few enough for the direct solution.
-const COARSEST_CELLS: usize = 6000;
+/// Where that mesh proves too coarse for the flow, the second number is tried.
+pub(crate) const COARSEST_CELLS: [usize; 2] = [2000, 6000];
 /// The nested start begins on a mesh of about so many cells, where a direct solution costs nearly
 /// nothing and many of them do no harm.
 const STARTING_CELLS: usize = 700;
@@ -45,7 +46,12 @@ pub(crate) struct Stack {
 }
 
 impl Stack {
-    pub fn new(problem: &Problem, air: &Air, convection: Convection) -> Stack {
+    pub fn new(
+        problem: &Problem,
+        air: &Air,
+        convection: Convection,
+        coarsest_cells: usize,
+    ) -> Stack {
         let mut levels = vec![Level::new(problem, air, convection)];
         let mut transfers = Vec::new();
         let mut links = Vec::new();
@@ -60,7 +66,7 @@ impl Stack {
             transfers.push(Transfer::new(&mesh, &coarsening));
             links.push(Link::new(&mesh, &coarsening));
             let coarse = coarse_problems.last().unwrap_or(problem).coarsened(&coarsening);
-            bottom += usize::from(mesh.cell_count() > COARSEST_CELLS);
+            bottom += usize::from(mesh.cell_count() > coarsest_cells);
             mesh = coarsening.mesh;
             let mut level = Level::new(&coarse, air, convection);
             level.slack = 1.0 / COARSE_PECLET;

@@ -1,7 +1,7 @@
 //! The pieces of an iteration one by one, for benchmarks: what a number in a profile stands for.
 
-use crate::fas::Stack;
-use crate::{AirModel, Air, Convection, Problem, SolveError, State};
+use crate::fas::{COARSEST_CELLS, Stack};
+use crate::{Air, AirModel, Convection, Problem, SolveError, State};
 
 /// A problem on its chain of meshes, at a state, with every piece of a cycle callable alone.
 pub struct Pieces {
@@ -16,7 +16,7 @@ impl Pieces {
             AirModel::Given(air) => air,
             AirModel::Film { pressure } => Air::dry(d.ambient, pressure),
         };
-        let mut stack = Stack::new(problem, &air, Convection::Central);
+        let mut stack = Stack::new(problem, &air, Convection::Central, COARSEST_CELLS[0]);
         stack.set_state(0, state);
         stack.pose(0);
         Pieces { stack }

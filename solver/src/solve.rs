@@ -2,7 +2,7 @@
 
 use crate::acceleration::Acceleration;
 use crate::balance::balance;
-use crate::fas::Stack;
+use crate::fas::{COARSEST_CELLS, Stack};
 use crate::film::film_rise;
 use crate::numbers::part_temperatures;
 use crate::residual::Scales;
@@ -27,6 +27,10 @@ const BUILD_UP: [f64; 3] = [1.0 / 1024.0, 8.0, 1.05];
 const BUILD_UP_STEPS: usize = 30;
 /// The air's constants are renewed while the film temperature moves by more than this [K].
 const FILM_BOUND: f64 = 0.02;
+/// Residual at which the film temperature of the finest mesh is first taken, and the reduction
+/// after which it is taken again.
+const FIRST_FILM_CHECK: f64 = 3e-2;
+const FILM_CHECKS: f64 = 0.03;
 /// Cycles within which the residual must at least halve; else the smoothing is damped more.
 const PATIENCE: usize = 12;
 /// Growth of the residual over the best one that counts as divergence.
@@ -54,12 +58,16 @@ pub fn solve(
     start: Option<State>,
     watch: &mut dyn FnMut(&Progress) -> Control,
 ) -> Result<Solution, SolveError> {
-    let mut run = Run::new(problem, settings, watch);
-    let stop = match start {
-        Some(state) if state.fits(problem.mesh()) => run.resume(&state)?,
-        _ => run.start_from_rest()?,
+    let mut run = Run::new(problem, settings, watch, COARSEST_CELLS[0]);
+    let mut ended = match start {
+        Some(state) if state.fits(problem.mesh()) => run.resume(&state),
+        _ => run.start_from_rest(),
     };
-    let (stop, verdict) = run.judge(stop)?;
+    let failed = matches!(ended, Ok(StopReason::Stalled) | Err(SolveError::Broke { .. }));
+    if failed && run.go_down_less() {
+        ended = run.start_from_rest();
+    }
+    let (stop, verdict) = run.judge(ended?)?;
     Ok(run.solution(stop, verdict))
 }
 
@@ -88,14 +96,28 @@ impl<'a> Run<'a> {
         problem: &'a Problem,
         settings: &'a Settings,
         watch: &'a mut dyn FnMut(&Progress) -> Control,
+        coarsest_cells: usize,
     ) -> Self {
         let d = problem.description();
         let air = match d.air {
             AirModel::Given(air) => air,
             AirModel::Film { pressure } => Air::dry(d.ambient, pressure),
         };
-        let stack = Stack::new(problem, &air, settings.convection);
+        let stack = Stack::new(problem, &air, settings.convection, coarsest_cells);
         Run { problem, settings, watch, stack, history: Vec::new(), notes: Vec::new(), film: 0.0 }
+    }
+
+    /// Ends the cycles on a finer mesh than before, where there is one; all else begins anew.
+    fn go_down_less(&mut self) -> bool {
+        let air = self.stack.level(0).air;
+        let convection = self.settings.convection;
+        let stack = Stack::new(self.problem, &air, convection, COARSEST_CELLS[1]);
+        if stack.bottom() >= self.stack.bottom() {
+            return false;
+        }
+        self.stack = stack;
+        self.note("the coarsest mesh was too coarse for this flow: begun again on a finer".into());
+        true
     }
 
     /// Coarsest mesh first, each finer one from the next coarser.
@@ -313,6 +335,8 @@ impl<'a> Run<'a> {
         let (mut mark, mut since, mut rung) = (f64::INFINITY, 0, 0);
         let mut parts = None;
         let mut acceleration = Acceleration::new();
+        // The film temperature follows early: late news would undo most of the work.
+        let mut film_check = FIRST_FILM_CHECK;
         for _ in 0..limit {
             if self.history.len() >= self.settings.max_iterations {
                 return Ok(Cycles::Limit);
@@ -330,6 +354,13 @@ impl<'a> Run<'a> {
             let done = if finest { self.within_bounds(&row) } else { largest < NESTED_TARGET };
             let control = (self.watch)(&row);
             self.history.push(row);
+            if finest && !done && largest < film_check {
+                film_check = FILM_CHECKS * largest;
+                if self.renew_air(l) {
+                    acceleration = Acceleration::new();
+                    continue;
+                }
+            }
             if done {
                 if !(finest && self.renew_air(l)) {
                     return Ok(Cycles::Reached);
