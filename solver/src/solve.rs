@@ -31,6 +31,8 @@ const FILM_BOUND: f64 = 0.02;
 /// after which it is taken again.
 const FIRST_FILM_CHECK: f64 = 3e-2;
 const FILM_CHECKS: f64 = 0.03;
+/// Residual over the tolerance from which on the mass balance is restored after every cycle.
+const NEARLY: f64 = 30.0;
 /// Cycles within which the residual must at least halve; else the smoothing is damped more.
 const PATIENCE: usize = 12;
 /// Growth of the residual over the best one that counts as divergence.
@@ -342,7 +344,8 @@ impl<'a> Run<'a> {
                 return Ok(Cycles::Limit);
             }
             self.stack.cycle(l)?;
-            if finest {
+            // Round-off in the mass balance is asked of the last states only.
+            if finest && best < NEARLY * self.settings.tolerance {
                 self.stack.restore_mass(l);
             }
             if let Some((field, cell)) = self.stack.broken(l) {
