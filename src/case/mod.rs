@@ -5,11 +5,14 @@
 
 mod blocks;
 mod check;
+mod doubts;
 mod edge;
 mod error;
 mod estimate;
 pub mod materials;
+mod meshing;
 mod model;
+mod overlap;
 mod parse;
 mod read;
 mod resolved;
