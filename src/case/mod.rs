@@ -17,6 +17,7 @@ mod parse;
 mod read;
 mod resolved;
 pub mod setup;
+mod surfaces;
 mod tables;
 pub mod units;
 
