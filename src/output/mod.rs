@@ -2,8 +2,6 @@
 
 use std::io;
 
-use ventrise_mesh::Side;
-
 pub mod csv;
 pub mod folder;
 pub mod overview;
@@ -11,20 +9,12 @@ pub mod readings;
 pub mod screen;
 pub mod summary;
 pub mod vtk;
+pub mod words;
 
+pub use crate::case::side_name;
 pub use folder::{Folder, FolderError};
 pub use readings::{Interruption, Readings, Run};
 pub use summary::Summary;
-
-/// Name of a side in files and on screen.
-pub fn side_name(side: Side) -> &'static str {
-    match side {
-        Side::Left => "left",
-        Side::Right => "right",
-        Side::Bottom => "bottom",
-        Side::Top => "top",
-    }
-}
 
 /// Writes all files of a run into its folder; returns their names. `revolve` is the number of
 /// sectors of the revolved fields, if they are wanted.

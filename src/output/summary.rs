@@ -121,6 +121,8 @@ pub struct AirNumbers {
     pub max_speed_m_s: f64,
     /// Highest temperature of the air [°C].
     pub max_temperature_c: Option<f64>,
+    /// Lowest temperature of the air [°C].
+    pub min_temperature_c: Option<f64>,
     /// Pressure of the warm column between lowest and highest opening [Pa].
     pub stack_pressure_pa: f64,
 }
@@ -239,6 +241,8 @@ pub struct SideHeat {
     pub in_m3_s: f64,
     /// Air that leaves where the side is open [m³/s].
     pub out_m3_s: f64,
+    /// Mean temperature of the air that leaves, when the side is open [°C].
+    pub out_mean_c: Option<f64>,
 }
 
 /// A probe: a point, or a line with its extremes.
@@ -321,6 +325,7 @@ impl Summary {
                 expansion: air.expansion,
                 max_speed_m_s: numbers.max_speed,
                 max_temperature_c: numbers.max_air_rise.map(celsius),
+                min_temperature_c: readings.min_air_rise.map(celsius),
                 stack_pressure_pa: numbers.stack_pressure,
             },
             numbers: Dimensionless {
@@ -460,6 +465,7 @@ fn sides(readings: &Readings) -> Vec<SideHeat> {
             convection_w: flow.open.heat,
             in_m3_s: flow.open.inflow,
             out_m3_s: flow.open.outflow,
+            out_mean_c: flow.open.out_mean_rise.map(|rise| readings.ambient + rise),
         }
     };
     Side::ALL.map(side).to_vec()
