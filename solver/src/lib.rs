@@ -22,6 +22,7 @@ mod par;
 mod pieces;
 mod probe;
 mod problem;
+mod radiation;
 mod residual;
 pub mod samples;
 mod settings;
@@ -45,6 +46,10 @@ pub use numbers::{
 pub use pieces::Pieces;
 pub use probe::{Sample, Sampler};
 pub use problem::{Block, Description, Problem, Solid, Sources};
+pub use radiation::{
+    Backing, Correction, Face, Owner, PATCH_COUNT, Patch, Radiation, RadiationError,
+    RadiationSource, STEFAN_BOLTZMANN, SideSurface, Surfaces,
+};
 pub use settings::{Convection, DRIFT_BOUND, HEAT_BOUND, MASS_BOUND, SOLVED, Settings};
 pub use solution::{Control, Progress, Residuals, Solution, StopReason, Verdict};
 pub use solve::solve;
