@@ -11,9 +11,7 @@ use std::time::Instant;
 use ventrise::case::{Case, setup};
 use ventrise_mesh::Side;
 use ventrise_solver::samples::{Grading, SquareCavity, side_heat};
-use ventrise_solver::{
-    Control, Pieces, Problem, Settings, Solution, part_temperatures, solve,
-};
+use ventrise_solver::{Control, Pieces, Problem, Settings, Solution, part_temperatures, solve};
 
 /// One problem on a series of meshes.
 struct Series {
@@ -24,7 +22,8 @@ struct Series {
 }
 
 fn cavity(name: &'static str, grading: Grading) -> Series {
-    let mesh = |cells| SquareCavity { cells, grading, ..SquareCavity::default() }.problem().unwrap();
+    let mesh =
+        |cells| SquareCavity { cells, grading, ..SquareCavity::default() }.problem().unwrap();
     Series {
         name,
         answer: "mean Nu",
@@ -80,7 +79,15 @@ fn measure(series: &Series, most: usize) {
     println!("\n{}", series.name);
     println!(
         "{:>12} {:>8} {:>7} {:>9} {:>9} {:>8} {:>11} {:>8} {:>11}",
-        "mesh", "cells", "cycles", "seconds", "CPU s", "ns/cell", "work units", "B/cell", series.answer
+        "mesh",
+        "cells",
+        "cycles",
+        "seconds",
+        "CPU s",
+        "ns/cell",
+        "work units",
+        "B/cell",
+        series.answer
     );
     let mut points = Vec::new();
     for problem in series.meshes.iter().filter(|p| p.mesh().cell_count() <= most) {
@@ -105,7 +112,11 @@ fn measure(series: &Series, most: usize) {
             seconds / unit,
             bytes,
             (series.read)(problem, &solution),
-            if solution.stop == ventrise_solver::StopReason::Converged { "" } else { "  NOT SETTLED" },
+            if solution.stop == ventrise_solver::StopReason::Converged {
+                ""
+            } else {
+                "  NOT SETTLED"
+            },
         );
         points.push(((cells as f64).ln(), seconds.ln()));
     }

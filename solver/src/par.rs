@@ -80,8 +80,7 @@ pub(crate) fn sum_rows<const N: usize>(
     if count <= rows {
         return (0..count).map(part).fold([0.0; N], add);
     }
-    let parts: Vec<[f64; N]> =
-        (0..count).into_par_iter().with_min_len(rows).map(part).collect();
+    let parts: Vec<[f64; N]> = (0..count).into_par_iter().with_min_len(rows).map(part).collect();
     parts.into_iter().fold([0.0; N], add)
 }
 

@@ -284,11 +284,7 @@ impl<'a> Run<'a> {
 
     /// Where Newton's method does not get there from rest at once: all sources grow from a small
     /// share of theirs to the whole, each solution being the start of the next.
-    fn build_up(
-        &mut self,
-        l: usize,
-        target: f64,
-    ) -> Result<(f64, Option<StopReason>), SolveError> {
+    fn build_up(&mut self, l: usize, target: f64) -> Result<(f64, Option<StopReason>), SolveError> {
         let mut good = State::rest(self.stack.problem(l).unwrap_or(self.problem).mesh());
         let (mut reached, mut factor) = (0.0, BUILD_UP[1]);
         let mut end = f64::INFINITY;

@@ -169,8 +169,7 @@ fn follow(
     let speed = largest(&steady.u).max(largest(&steady.v));
     let size = DISTURBANCE * speed / largest(&shape.u).max(largest(&shape.v));
     let mut start = steady.clone();
-    for (to, from) in
-        [(&mut start.u, &shape.u), (&mut start.v, &shape.v), (&mut start.t, &shape.t)]
+    for (to, from) in [(&mut start.u, &shape.u), (&mut start.v, &shape.v), (&mut start.t, &shape.t)]
     {
         to.iter_mut().zip(from).for_each(|(t, f)| *t += size * f);
     }

@@ -426,7 +426,10 @@ fn parts(case: &Case, readings: &Readings, solution: &Solution) -> Vec<Part> {
             max_c,
             band_c: band(n),
             limit_c,
-            margin_k: limit_c.zip(hottest).filter(|_| solved).map(|(limit, hottest)| limit - hottest),
+            margin_k: limit_c
+                .zip(hottest)
+                .filter(|_| solved)
+                .map(|(limit, hottest)| limit - hottest),
             resistance_k_w: found.filter(|_| part.heat > 0.0).map(|f| f.max / part.heat),
         }
     };
@@ -438,20 +441,18 @@ fn slots(case: &Case, readings: &Readings, verdict: &Verdict) -> Vec<Slot> {
         Verdict::Swaying { slot_band, .. } => slot_band.get(n).copied(),
         _ => None,
     };
-    let slot = |(n, (slot, flow)): (
-        usize,
-        (&crate::case::Slot, &ventrise_solver::OpeningFlow),
-    )| Slot {
-        name: slot.name.clone(),
-        side: side_name(slot.side),
-        in_m3_s: flow.inflow,
-        out_m3_s: flow.outflow,
-        out_mean_c: flow.out_mean_rise.map(|rise| readings.ambient + rise),
-        mean_pressure_pa: flow.mean_pressure,
-        heat_w: flow.heat,
-        area_m2: flow.area,
-        net_in_band_m3_s: band(n),
-    };
+    let slot =
+        |(n, (slot, flow)): (usize, (&crate::case::Slot, &ventrise_solver::OpeningFlow))| Slot {
+            name: slot.name.clone(),
+            side: side_name(slot.side),
+            in_m3_s: flow.inflow,
+            out_m3_s: flow.outflow,
+            out_mean_c: flow.out_mean_rise.map(|rise| readings.ambient + rise),
+            mean_pressure_pa: flow.mean_pressure,
+            heat_w: flow.heat,
+            area_m2: flow.area,
+            net_in_band_m3_s: band(n),
+        };
     case.slots().iter().zip(&readings.slots).enumerate().map(slot).collect()
 }
 

@@ -2,9 +2,9 @@
 //! ambient.
 
 use super::link;
+use crate::State;
 use crate::level::Level;
 use crate::linear::stencil::Coefficients;
-use crate::State;
 
 /// Residual [W] (heat put in less heat leaving) and implicit coefficients [W/K] of row j:
 /// `emit(i, residual, coefficients)`. Air entering through an opening has rise zero.

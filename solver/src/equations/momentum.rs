@@ -4,9 +4,9 @@
 //! wall coefficient. With constant μ and div u = 0 the transposed gradient drops out.
 
 use super::link;
+use crate::State;
 use crate::level::Level;
 use crate::linear::stencil::Coefficients;
-use crate::State;
 
 /// One control volume of a velocity component. Its neighbours: before and after along the
 /// velocity, low and high across it.
