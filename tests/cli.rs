@@ -231,7 +231,7 @@ fn revolved_fields_are_written_when_asked_for() {
 
 /// A run that takes many iterations.
 fn long() -> String {
-    let mesh = "cells = [80, 160]\n\n[solve]\ntolerance = 1e-12\nmax-iterations = 1000000";
+    let mesh = "cells = [400, 800]\n\n[solve]\ntolerance = 1e-12\nmax-iterations = 1000000";
     RING.replace("cells = [10, 20]", mesh)
 }
 

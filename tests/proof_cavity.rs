@@ -192,6 +192,7 @@ fn equal_rayleigh_and_prandtl_give_equal_nusselt_at_any_size() {
             SideCondition::Adiabatic,
         ],
         parts: vec![],
+        joints: Vec::new(),
         sources: None,
         radiation: None,
     })

@@ -115,6 +115,7 @@ fn two_closed_cavities_share_a_metal_partition() {
             SideCondition::Adiabatic,
         ],
         parts: vec![vec![0]],
+        joints: Vec::new(),
         sources: None,
         radiation: None,
     })

@@ -62,6 +62,7 @@ fn nusselt(row: &Row, cells: usize) -> ([f64; 2], [f64; 2], f64) {
             SideCondition::Adiabatic,
         ],
         parts: Vec::new(),
+        joints: Vec::new(),
         sources: None,
         radiation: Some(Surfaces {
             blocks: Vec::new(),

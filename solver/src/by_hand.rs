@@ -29,6 +29,7 @@ pub(crate) fn bare(mesh: Mesh) -> Description {
         slots: Vec::new(),
         sides: [SideCondition::Adiabatic; 4],
         parts: Vec::new(),
+        joints: Vec::new(),
         sources: None,
         radiation: None,
     }

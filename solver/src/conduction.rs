@@ -8,9 +8,22 @@ use ventrise_mesh::{AIR, Side};
 use crate::{Air, Problem, SideCondition};
 
 /// Conductance between two cell centres [W/K], two half cells in series:
-/// A / (d₀/k₀ + d₁/k₁). `area` A [m²]; `dist` d, centre to face [m]; `k` [W/(m·K)], > 0.
-pub(crate) fn face_conductance(area: f64, dist: [f64; 2], k: [f64; 2]) -> f64 {
-    area / (dist[0] / k[0] + dist[1] / k[1])
+/// A / (d₀/k₀ + R + d₁/k₁). `area` A [m²]; `dist` d, centre to face [m]; `k` [W/(m·K)], > 0; `joint`
+/// R, resistance of the joint between them [K·m²/W].
+pub(crate) fn face_conductance(area: f64, dist: [f64; 2], k: [f64; 2], joint: f64) -> f64 {
+    area / (dist[0] / k[0] + joint + dist[1] / k[1])
+}
+
+/// Resistance of the joint between two cells [K·m²/W]; none between cells of one block or air.
+fn joint(problem: &Problem, cells: [usize; 2]) -> f64 {
+    let joints = &problem.description().joints;
+    let regions = cells.map(|n| problem.mesh().regions()[n]);
+    if joints.is_empty() || regions[0] == regions[1] || regions.contains(&AIR) {
+        return 0.0;
+    }
+    let pair = regions.map(|r| r as usize);
+    let of = |j: &&crate::Joint| j.blocks == pair || j.blocks == [pair[1], pair[0]];
+    joints.iter().filter(of).map(|j| j.resistance).sum()
 }
 
 /// Conductivity of a cell along x and y [W/(m·K)].
@@ -27,15 +40,19 @@ pub(crate) fn cell_conductivity(problem: &Problem, air: &Air, cell: usize) -> [f
 /// Conductance through the interior x-face (i, j), 0 < i < nx [W/K].
 pub(crate) fn x_conductance(problem: &Problem, air: &Air, i: usize, j: usize) -> f64 {
     let mesh = problem.mesh();
-    let k = [i - 1, i].map(|c| cell_conductivity(problem, air, mesh.cell(c, j))[0]);
-    face_conductance(mesh.x_area(i) * mesh.dy(j), [0.5 * mesh.dx(i - 1), 0.5 * mesh.dx(i)], k)
+    let cells = [i - 1, i].map(|c| mesh.cell(c, j));
+    let k = cells.map(|n| cell_conductivity(problem, air, n)[0]);
+    let dist = [0.5 * mesh.dx(i - 1), 0.5 * mesh.dx(i)];
+    face_conductance(mesh.x_area(i) * mesh.dy(j), dist, k, joint(problem, cells))
 }
 
 /// Conductance through the interior y-face (i, j), 0 < j < ny [W/K].
 pub(crate) fn y_conductance(problem: &Problem, air: &Air, i: usize, j: usize) -> f64 {
     let mesh = problem.mesh();
-    let k = [j - 1, j].map(|c| cell_conductivity(problem, air, mesh.cell(i, c))[1]);
-    face_conductance(mesh.y_area(i), [0.5 * mesh.dy(j - 1), 0.5 * mesh.dy(j)], k)
+    let cells = [j - 1, j].map(|c| mesh.cell(i, c));
+    let k = cells.map(|n| cell_conductivity(problem, air, n)[1]);
+    let dist = [0.5 * mesh.dy(j - 1), 0.5 * mesh.dy(j)];
+    face_conductance(mesh.y_area(i), dist, k, joint(problem, cells))
 }
 
 /// Heat exchange of a boundary face: conductance · (rise − T) + heat enters the cell beside it.

@@ -10,6 +10,7 @@ mod boundary;
 #[cfg(test)]
 mod by_hand;
 mod conduction;
+mod contacts;
 mod equations;
 mod error;
 mod fas;
@@ -39,6 +40,7 @@ mod transient;
 pub use air::{Air, AirModel, standard_pressure};
 pub use balance::{Balance, OpeningFlow, REST_SPEED, SideFlow, balance, side_flows, slot_flows};
 pub use boundary::{SideCondition, Slot};
+pub use contacts::{Contact, contacts};
 pub use error::{ProblemError, SolveError};
 pub use numbers::{
     Numbers, PartTemperature, block_temperatures, cell_velocities, heat_fluxes, numbers,
@@ -46,7 +48,7 @@ pub use numbers::{
 };
 pub use pieces::Pieces;
 pub use probe::{Sample, Sampler};
-pub use problem::{Block, Description, Problem, Solid, Sources};
+pub use problem::{Block, Description, Joint, Problem, Solid, Sources};
 pub use radiant::{RadiantHeat, radiant_heat};
 pub use radiation::{
     Backing, Correction, Face, Owner, PATCH_COUNT, Patch, Radiation, RadiationError,

@@ -25,6 +25,15 @@ pub struct Block {
     pub heat: f64,
 }
 
+/// A joint: contact resistance wherever two blocks touch.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Joint {
+    /// The two blocks, indices into [`Description::blocks`].
+    pub blocks: [usize; 2],
+    /// Resistance of a unit of area [K·m²/W], ≥ 0.
+    pub resistance: f64,
+}
+
 /// Extra sources of manufactured solutions: integrals over each control volume.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Sources {
@@ -108,6 +117,8 @@ pub struct Description {
     pub sides: [SideCondition; 4],
     /// Groups of blocks whose temperatures are watched.
     pub parts: Vec<Vec<usize>>,
+    /// Joints between touching blocks.
+    pub joints: Vec<Joint>,
     /// Extra sources, for manufactured solutions.
     pub sources: Option<Sources>,
     /// How the surfaces radiate; nothing: radiation is not modelled.
@@ -201,6 +212,14 @@ fn check(d: &Description) -> Result<(), ProblemError> {
             return Err(ProblemError::Index { what: "material", index: block.solid, count });
         }
         number("heat", block.heat, true, "finite")?;
+    }
+    for joint in &d.joints {
+        let r = joint.resistance;
+        number("joint resistance", r, r >= 0.0, "zero or more")?;
+        let count = d.blocks.len();
+        if let Some(index) = joint.blocks.into_iter().find(|b| *b >= count) {
+            return Err(ProblemError::Index { what: "block", index, count });
+        }
     }
     let regions = d.mesh.regions();
     if let Some(b) = regions.iter().filter(|r| **r != AIR).map(|r| *r as usize).max() {

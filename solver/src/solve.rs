@@ -33,6 +33,10 @@ const FIRST_FILM_CHECK: f64 = 3e-2;
 const FILM_CHECKS: f64 = 0.03;
 /// Residual over the tolerance from which on the mass balance is restored after every cycle.
 const NEARLY: f64 = 30.0;
+/// Residual with which a stalled iteration is taken for a flow without a steady state, and the
+/// largest error of the heat balance with which following it in time can be worth while.
+const NO_STEADY: f64 = 1e-4;
+const WANDER_HEAT: f64 = 0.05;
 /// Cycles within which the residual must at least halve; else the smoothing is damped more.
 const PATIENCE: usize = 12;
 /// Growth of the residual over the best one that counts as divergence.
@@ -468,6 +472,16 @@ impl<'a> Run<'a> {
             };
             // Only a solution has a stability.
             let unsolved = self.history.last().is_none_or(|row| row.residuals.largest() > SOLVED);
+            if verdict == Verdict::Drifting && self.settings.assess_stability {
+                let last = self.history.last().cloned().unwrap_or_default();
+                if last.residuals.largest() > NO_STEADY && last.heat_error < WANDER_HEAT {
+                    let watch = &mut self.watch;
+                    let mut going_on = || watch(&last);
+                    let (stack, notes) = (&mut self.stack, &mut self.notes);
+                    let found = sway::wander(stack, self.problem, notes, &mut going_on);
+                    return Ok((stop, found.unwrap_or(verdict)));
+                }
+            }
             let ended = verdict == Verdict::StoppedEarly || unsolved;
             if ended || !self.settings.assess_stability {
                 return Ok((stop, verdict));

@@ -87,26 +87,14 @@ pub(crate) fn assess(
     shape.clear();
     newton.numbers().add(&mode.shape, 1.0, &mut shape);
     let scheme = (air, level.convection);
-    let swing = follow(coarse, scheme, &state, &shape, period, going_on);
-    // On the finest mesh: its own steady values, moved by as much; they belong to the band.
-    let moved = |fine: f64, steady: f64, [low, high]: [f64; 2]| {
-        [fine + (low - steady).min(0.0), fine + (high - steady).max(0.0)]
-    };
-    let (steady, fine) = (highest(coarse, &state), highest(problem, stack.state(0)));
-    let net = |problem: &Problem, state: &State| -> Vec<f64> {
-        slot_flows(problem, air, state).iter().map(|s| s.inflow - s.outflow).collect()
-    };
-    let (steady_flow, fine_flow) = (net(coarse, &state), net(problem, stack.state(0)));
-    let all = |fine: &[f64], steady: &[f64], swing: &[[f64; 2]]| -> Vec<[f64; 2]> {
-        let values = fine.iter().zip(steady).zip(swing);
-        values.map(|((fine, steady), swing)| moved(*fine, *steady, *swing)).collect()
-    };
-    let (band, slot_band) = match &swing {
-        Some(swing) => {
-            (all(&fine, &steady, &swing.parts), all(&fine_flow, &steady_flow, &swing.slots))
-        }
-        None => (Vec::new(), Vec::new()),
-    };
+    let size = DISTURBANCE * speed / largest(&shape.u).max(largest(&shape.v));
+    let mut start = state.clone();
+    for (to, from) in [(&mut start.u, &shape.u), (&mut start.v, &shape.v), (&mut start.t, &shape.t)]
+    {
+        to.iter_mut().zip(from).for_each(|(t, f)| *t += size * f);
+    }
+    let swing = follow(coarse, scheme, &state, &start, period, going_on);
+    let (band, slot_band) = bands(stack, problem, l, &state, swing.as_ref());
     notes.push(format!(
         "the steady flow is unstable: disturbances grow by {:.2} per second and sway with a period \
          of {period:.2} s (found on a mesh of {} x {} cells)",
@@ -114,6 +102,60 @@ pub(crate) fn assess(
     ));
     let growth = Some(mode.growth);
     Ok(Finding::Swaying(Verdict::Swaying { period: Some(period), growth, band, slot_band }))
+}
+
+/// Where the iteration found no steady flow: follows the flow in time from the state it has. The
+/// verdict when the flow stays bounded, with the bands over the last of several turnovers.
+pub(crate) fn wander(
+    stack: &mut Stack,
+    problem: &Problem,
+    notes: &mut Vec<String>,
+    going_on: &mut dyn FnMut() -> Control,
+) -> Option<Verdict> {
+    let (l, state) = stack.restricted(CELLS);
+    let level = stack.level(l);
+    let coarse = stack.problem(l).unwrap_or(problem);
+    let speed = largest(&state.u).max(largest(&state.v));
+    let turnover = level.extent() / speed;
+    if !turnover.is_finite() {
+        return None;
+    }
+    let scheme = (&level.air, level.convection);
+    let swing = follow(coarse, scheme, &state, &state, turnover, going_on)?;
+    let (band, slot_band) = bands(stack, problem, l, &state, Some(&swing));
+    notes.push(format!(
+        "no steady flow was found; followed in time for several turnovers of {turnover:.1} s it \
+         keeps moving and stays bounded"
+    ));
+    Some(Verdict::Swaying { period: None, growth: None, band, slot_band })
+}
+
+/// Bands of parts and slots on the finest mesh: its own values moved as those of level `l` swing
+/// about their own at `state`; both belong to the band.
+fn bands(
+    stack: &Stack,
+    problem: &Problem,
+    l: usize,
+    state: &State,
+    swing: Option<&Swing>,
+) -> (Vec<[f64; 2]>, Vec<[f64; 2]>) {
+    let Some(swing) = swing else { return (Vec::new(), Vec::new()) };
+    let coarse = stack.problem(l).unwrap_or(problem);
+    let air = &stack.level(l).air;
+    let net = |problem: &Problem, state: &State| -> Vec<f64> {
+        slot_flows(problem, air, state).iter().map(|s| s.inflow - s.outflow).collect()
+    };
+    let all = |fine: &[f64], own: &[f64], swing: &[[f64; 2]]| -> Vec<[f64; 2]> {
+        let moved = |((fine, own), [low, high]): ((&f64, &f64), &[f64; 2])| {
+            [fine + (low - own).min(0.0), fine + (high - own).max(0.0)]
+        };
+        fine.iter().zip(own).zip(swing).map(moved).collect()
+    };
+    let finest = stack.state(0);
+    (
+        all(&highest(problem, finest), &highest(coarse, state), &swing.parts),
+        all(&net(problem, finest), &net(coarse, state), &swing.slots),
+    )
 }
 
 /// Follows a growing disturbance in time (backward Euler, one factorisation a step) until it is no
@@ -162,19 +204,13 @@ fn follow(
     problem: &Problem,
     (air, scheme): (&Air, Convection),
     steady: &State,
-    shape: &State,
+    start: &State,
     period: f64,
     going_on: &mut dyn FnMut() -> Control,
 ) -> Option<Swing> {
     let speed = largest(&steady.u).max(largest(&steady.v));
-    let size = DISTURBANCE * speed / largest(&shape.u).max(largest(&shape.v));
-    let mut start = steady.clone();
-    for (to, from) in [(&mut start.u, &shape.u), (&mut start.v, &shape.v), (&mut start.t, &shape.t)]
-    {
-        to.iter_mut().zip(from).for_each(|(t, f)| *t += size * f);
-    }
     let step = period / STEPS_PER_PERIOD as f64;
-    let mut run = Transient::new(problem, air, scheme, &start, step);
+    let mut run = Transient::new(problem, air, scheme, start, step);
     let mut bands: Vec<Vec<[f64; 2]>> = Vec::new();
     let mut sizes: Vec<f64> = Vec::new();
     for _ in 0..MOST_PERIODS {

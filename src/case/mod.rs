@@ -9,6 +9,7 @@ mod doubts;
 mod edge;
 mod error;
 mod estimate;
+mod joints;
 pub mod materials;
 mod meshing;
 mod model;

@@ -79,6 +79,15 @@ pub struct Block {
     pub emissivity: Option<f64>,
 }
 
+/// A joint between two touching blocks.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Joint {
+    /// Indices into [`Case::blocks`].
+    pub blocks: [usize; 2],
+    /// Resistance of a unit of area [K·m²/W].
+    pub resistance: f64,
+}
+
 /// Blocks judged together.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Part {
@@ -175,6 +184,7 @@ pub struct Case {
     pub(super) materials: Vec<Material>,
     pub(super) blocks: Vec<Block>,
     pub(super) parts: Vec<Part>,
+    pub(super) joints: Vec<Joint>,
     pub(super) slots: Vec<Slot>,
     pub(super) sides: [SideCondition; 4],
     pub(super) side_emissivities: [Option<f64>; 4],
@@ -229,6 +239,11 @@ impl Case {
     /// Parts, in the order of their first blocks.
     pub fn parts(&self) -> &[Part] {
         &self.parts
+    }
+
+    /// Joints, pair by pair of touching blocks.
+    pub fn joints(&self) -> &[Joint] {
+        &self.joints
     }
 
     /// Slots, in the order of the file.

@@ -377,6 +377,24 @@ impl<'t> Reader<'t> {
         None
     }
 
+    /// Two texts in brackets.
+    pub fn two_texts(&mut self, scope: &Scope, key: &str) -> Option<Located<[String; 2]>> {
+        let value = scope.get(key)?;
+        if let DeValue::Array(array) = value.get_ref() {
+            let texts = array.iter().filter_map(|item| match item.get_ref() {
+                DeValue::String(text) if !text.trim().is_empty() => Some(text.trim().to_string()),
+                _ => None,
+            });
+            let texts: Vec<String> = texts.collect();
+            if let (2, Ok(two)) = (array.len(), <[String; 2]>::try_from(texts)) {
+                return Some(Located { value: two, span: value.span() });
+            }
+        }
+        let wanted = "two names in brackets belong here, such as [\"core\", \"heater\"]";
+        self.wrong_kind(scope, key, value, wanted);
+        None
+    }
+
     fn quantity_of(
         &mut self,
         scope: &Scope,

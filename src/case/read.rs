@@ -9,6 +9,7 @@ use toml::de::DeTable;
 use super::blocks::read_blocks;
 use super::edge::{read_probes, read_sides, read_slots};
 use super::error::{CaseError, CaseErrors, Cause};
+use super::joints::read_joints;
 use super::model::{Case, Origin};
 use super::parse::{Keys, Reader, Scope};
 use super::tables::{
@@ -22,10 +23,10 @@ const LARGEST_FILE: usize = 10_000_000;
 const TOP: Keys = Keys {
     what: "the case file",
     known: &[
-        "title", "section", "ambient", "air", "material", "block", "slot", "sides", "probe",
-        "mesh", "solve",
+        "title", "section", "ambient", "air", "material", "block", "joint", "slot", "sides",
+        "probe", "mesh", "solve",
     ],
-    later: &["fan", "joint"],
+    later: &["fan"],
 };
 
 impl Case {
@@ -131,6 +132,8 @@ fn read_case(reader: &mut Reader, top: &Scope, text: &str, file: &str) -> Option
     let solve = read_solve(reader, top);
 
     let bodies = check::assemble(reader, section.as_ref(), own, &drafts);
+    let names: Vec<_> = drafts.iter().map(|d| d.name.as_ref().map(|n| n.value.clone())).collect();
+    let joints = read_joints(reader, top, &names, &bodies.blocks, &bodies.parts);
     if let Some(section) = &section {
         check::slots(reader, section, &slots, &bodies.blocks, sides.as_ref());
         check::probes(reader, section, &probes);
@@ -147,6 +150,7 @@ fn read_case(reader: &mut Reader, top: &Scope, text: &str, file: &str) -> Option
         materials: bodies.materials,
         blocks: bodies.blocks.into_iter().map(|b| b.block).collect(),
         parts: bodies.parts,
+        joints,
         slots: slots.into_iter().filter_map(|s| s.finish()).collect(),
         sides: sides.conditions,
         side_emissivities: sides.emissivities,

@@ -79,6 +79,7 @@ impl Case {
         }
         self.write_air(&mut lines);
         self.write_bodies(&mut lines);
+        self.write_joints(&mut lines);
         self.write_edge(&mut lines);
         for probe in &self.probes {
             lines.header("[[probe]]");
@@ -173,6 +174,24 @@ impl Case {
             if let Some(limit) = block.part.and_then(|p| self.parts[p].limit) {
                 lines.quantity("limit", limit, Dimension::Temperature);
             }
+        }
+    }
+
+    fn write_joints(&self, lines: &mut Lines) {
+        let mut written: Vec<[&str; 2]> = Vec::new();
+        for joint in &self.joints {
+            let names = joint.blocks.map(|b| {
+                let block = &self.blocks[b];
+                let part = block.part.map(|p| self.parts[p].name.as_str());
+                block.name.as_deref().or(part).unwrap_or_default()
+            });
+            if written.contains(&names) {
+                continue;
+            }
+            written.push(names);
+            lines.header("[[joint]]");
+            lines.line(&format!("between = [{}, {}]", quoted(names[0]), quoted(names[1])));
+            lines.quantity("resistance", joint.resistance, Dimension::AreaResistance);
         }
     }
 

@@ -2,8 +2,8 @@
 
 use ventrise_mesh::{Generated, Layout, Mesh, MeshError, Side, SlotSpan, Spacing, generate};
 use ventrise_solver::{
-    AirModel, Block, Description, Problem, ProblemError, Settings, SideCondition, SideSurface,
-    Slot, Solid, Surfaces,
+    AirModel, Block, Description, Joint, Problem, ProblemError, Settings, SideCondition,
+    SideSurface, Slot, Solid, Surfaces,
 };
 
 use super::estimate::{Estimate, GRAVITY};
@@ -101,6 +101,11 @@ pub fn problem(case: &Case, mesh: Mesh) -> Result<Problem, ProblemError> {
         slots: case.slots().iter().map(|s| Slot { loss: s.loss, drive: 0.0 }).collect(),
         sides: *case.sides(),
         parts: case.parts().iter().map(|p| p.blocks.clone()).collect(),
+        joints: case
+            .joints()
+            .iter()
+            .map(|j| Joint { blocks: j.blocks, resistance: j.resistance })
+            .collect(),
         sources: None,
         radiation: surfaces(case),
     })

@@ -5,7 +5,7 @@
 
 use serde::Serialize;
 use ventrise_mesh::{AIR, Side};
-use ventrise_solver::{SOLVED, Sample, Solution, StopReason, Verdict};
+use ventrise_solver::{SOLVED, Sample, Solution, StopReason, Verdict, contacts};
 
 use crate::case::{Case, ProbeShape};
 
@@ -20,6 +20,9 @@ const TURBULENT_REYNOLDS: f64 = 2300.0;
 
 /// Radiation left out that is worth a warning, as a share of the heat put in.
 const LEAST_RADIATION: f64 = 0.01;
+/// Heat flux across touching blocks from which on a joint without resistance is worth a warning:
+/// every K cm²/W would cost half a kelvin [W/m²].
+const JOINT_FLUX: f64 = 5e3;
 /// View factors that add up to one within this are as good as the stated 0.1 %.
 const WORST_VIEW_DEFECT: f64 = 2e-3;
 
@@ -400,7 +403,8 @@ pub fn verdict_word(verdict: &Verdict) -> &'static str {
 }
 
 fn solved(solution: &Solution) -> bool {
-    solution.history.last().is_some_and(|row| row.residuals.largest() <= SOLVED)
+    let bounded = matches!(&solution.verdict, Verdict::Swaying { band, .. } if !band.is_empty());
+    bounded || solution.history.last().is_some_and(|row| row.residuals.largest() <= SOLVED)
 }
 
 fn stopped_by(run: &Run) -> Option<&'static str> {
@@ -553,6 +557,24 @@ fn warnings(run: &Run, readings: &Readings) -> Vec<String> {
                 "view factors of a surface added up to one within {:.1e} only before they were \
                  corrected; mirror sides opposite each other are followed so far and no further",
                 correction.defect
+            ));
+        }
+    }
+    for contact in contacts(run.problem, &run.solution.air, &run.solution.state) {
+        let flux = contact.heat.abs() / contact.area;
+        if !contact.has_joint && flux > JOINT_FLUX {
+            let of = |b: usize| match &run.case.blocks()[b].name {
+                Some(name) => format!("\"{name}\""),
+                None => format!("block {}", b + 1),
+            };
+            warnings.push(format!(
+                "between {} and {} {:.1} W cross {:.1} cm2 and no joint is given: every K cm2/W \
+                 would cost {:.1} K",
+                of(contact.blocks[0]),
+                of(contact.blocks[1]),
+                contact.heat.abs(),
+                1e4 * contact.area,
+                1e-4 * flux
             ));
         }
     }

@@ -64,6 +64,7 @@ fn plain(layout: &Layout, x: Vec<f64>, y: Vec<f64>, air: Air) -> Result<Descript
         slots: Vec::new(),
         sides: [SideCondition::Adiabatic; 4],
         parts: Vec::new(),
+        joints: Vec::new(),
         sources: None,
         radiation: None,
     })
