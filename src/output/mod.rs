@@ -7,13 +7,19 @@ use ventrise_mesh::Side;
 pub mod csv;
 pub mod folder;
 pub mod overview;
+pub mod pictures;
 pub mod readings;
+pub mod report;
+pub mod results;
 pub mod screen;
 pub mod summary;
+pub mod table;
+pub mod told;
 pub mod vtk;
 
-pub use folder::{Folder, FolderError};
+pub use folder::{Folder, FolderError, write_whole};
 pub use readings::{Interruption, Readings, Run};
+pub use results::{Results, ResultsError};
 pub use summary::Summary;
 
 /// Name of a side in files and on screen.
