@@ -16,6 +16,7 @@ pub mod summary;
 pub mod table;
 pub mod told;
 pub mod vtk;
+mod vtr;
 
 pub use folder::{Folder, FolderError, write_whole};
 pub use readings::{Interruption, Readings, Run};

@@ -6,15 +6,13 @@
 use std::fs;
 use std::path::Path;
 
-use vtkio::IOBuffer;
-use vtkio::model::{Attribute, DataSet, Piece, Vtk};
-
 use crate::case::Case;
 
 use super::readings::celsius;
 use super::table::Table;
 use super::told::Told;
-use super::vtk::{Field, Fields, Values};
+use super::vtk::{Fields, Values};
+use super::vtr;
 
 /// What a folder of results holds.
 #[derive(Debug, Clone)]
@@ -115,9 +113,10 @@ impl Results {
         let summary = text("summary.json")?;
         let [case, history, probes] =
             [text("case.toml")?, text("history.csv")?, text("probes.csv")?];
-        let bytes = fs::read(folder.join("fields.vtr")).map_err(missing("fields.vtr"))?;
+        let fields =
+            vtr::read(&text("fields.vtr")?).map_err(|reason| damaged("fields.vtr", reason))?;
         let texts = Texts { case: &case, summary: &summary, history: &history, probes: &probes };
-        Results::new(&texts, read_fields(&bytes)?)
+        Results::new(&texts, fields)
     }
 
     /// Ambient temperature [°C].
@@ -189,37 +188,3 @@ impl Results {
         Ok(())
     }
 }
-
-/// Reads the fields that [`Fields::write_rectilinear`] wrote.
-fn read_fields(bytes: &[u8]) -> Result<Fields, ResultsError> {
-    let wrong = |reason: &str| damaged("fields.vtr", reason);
-    let vtk = Vtk::parse_xml(bytes).map_err(|e| damaged("fields.vtr", e))?;
-    let DataSet::RectilinearGrid { pieces, .. } = vtk.data else {
-        return Err(wrong("no rectilinear grid"));
-    };
-    let Some(Piece::Inline(piece)) = pieces.into_iter().next() else {
-        return Err(wrong("no piece"));
-    };
-    let line = |buffer: IOBuffer| buffer.into_vec::<f64>().ok_or_else(|| wrong("no mesh lines"));
-    let (x, y) = (line(piece.coords.x)?, line(piece.coords.y)?);
-    let mut fields = Vec::new();
-    for attribute in piece.data.cell {
-        let Attribute::DataArray(array) = attribute else { continue };
-        let Some(name) = NAMES.into_iter().find(|name| *name == array.name) else { continue };
-        let values = match array.data {
-            IOBuffer::F64(v) if VECTORS.contains(&name) => {
-                Values::Vector(v.chunks_exact(3).map(|v| [v[0], v[1]]).collect())
-            }
-            IOBuffer::F64(v) => Values::Scalar(v),
-            IOBuffer::I32(v) => Values::Index(v),
-            _ => return Err(wrong("values of an unexpected kind")),
-        };
-        fields.push(Field { name, values });
-    }
-    Ok(Fields { x, y, fields })
-}
-
-/// Fields that are read.
-const NAMES: [&str; 5] = ["temperature", "velocity", "speed", "block", "heat_flux"];
-/// Of them those with components.
-const VECTORS: [&str; 2] = ["velocity", "heat_flux"];

@@ -2,15 +2,15 @@
 
 use super::colour::{DASHES, FAINT, GRID, INK, LINES};
 use super::frame::{SMALL, WIDTH};
-use super::lettering::{shortened, width};
+use super::lettering::shortened;
 use super::names::spread;
 use super::svg::{Anchor, Box, Stroke, Svg, Type};
 use super::ticks::{Ticks, power};
 
 /// Room left of a panel for the numbers of its axis.
-const LEFT: f64 = 56.0;
+const LEFT: f64 = 52.0;
 /// Room right of a panel for names of curves.
-const RIGHT: f64 = 146.0;
+const RIGHT: f64 = 136.0;
 /// Most points of a curve that are drawn.
 const POINTS: usize = 700;
 
@@ -101,15 +101,6 @@ impl Panel {
         svg.line([at, y], [at, y + h], Stroke::new(FAINT, 0.8).dashed("1 3"));
     }
 
-    /// A level line over the panel's whole width with its name at its right end inside.
-    pub fn level(&self, svg: &mut Svg, y: f64, name: &str) {
-        let Box { x, w, .. } = self.place;
-        let at = self.at(self.x[0], y)[1];
-        svg.line([x, at], [x + w, at], Stroke::new(INK, 1.0).dashed("1.5 3"));
-        let set = Type::new(SMALL).coloured(FAINT);
-        svg.text([x + 6.0, at - 5.0], name, set);
-    }
-
     /// A shaded range of x.
     pub fn shade(&self, svg: &mut Svg, from: f64, to: f64, fill: &str) {
         let (a, b) = (self.at(from, 0.0)[0], self.at(to, 0.0)[0]);
@@ -117,27 +108,32 @@ impl Panel {
         svg.rect(Box { x: a, y, w: b - a, h }, fill, None);
     }
 
-    /// Curves in their own colours and dashes, named at their right ends.
-    pub fn curves(&self, svg: &mut Svg, curves: &[Curve]) {
-        let mut ends: Vec<(f64, usize)> = Vec::new();
+    /// Curves in their own colours and dashes, named at their right ends; `level` is a value with
+    /// its name that a level line is drawn at.
+    pub fn curves(&self, svg: &mut Svg, curves: &[Curve], level: Option<(f64, &str)>) {
+        let Box { x, y, w, h } = self.place;
+        let right = x + w;
+        let mut ends: Vec<(f64, &str, Stroke)> = Vec::new();
+        if let Some((value, name)) = level {
+            let at = self.at(self.x[0], value)[1];
+            let stroke = Stroke::new(INK, 1.0).dashed("1.5 3");
+            svg.line([x, at], [right, at], stroke);
+            ends.push((at, name, stroke));
+        }
         for (n, curve) in curves.iter().enumerate() {
             let runs = self.runs(&curve.points);
             let end = runs.last().and_then(|r| r.last()).map(|p| p[1]);
             svg.lines(&runs, stroke(n));
-            ends.extend(end.map(|end| (end, n)));
+            ends.extend(end.map(|end| (end, curve.name.as_str(), stroke(n))));
         }
         ends.sort_by(|a, b| a.0.total_cmp(&b.0));
-        let Box { x, y, w, h } = self.place;
         let wanted: Vec<f64> = ends.iter().map(|e| e.0).collect();
         let levels = spread(&wanted, 17.0, y + 6.0, y + h - 4.0);
-        let right = x + w;
-        for ((end, n), level) in ends.iter().zip(&levels) {
+        for ((end, name, stroke), level) in ends.iter().zip(&levels) {
             let lead = vec![vec![[right + 2.0, *end], [right + 12.0, *level]]];
             svg.lines(&lead, Stroke::new(FAINT, 0.7));
-            svg.line([right + 13.0, *level], [right + 35.0, *level], stroke(*n));
-            let room = WIDTH - right - 44.0;
-            let text = shortened(&curves[*n].name, SMALL, false, room);
-            debug_assert!(width(&text, SMALL, false) <= room);
+            svg.line([right + 13.0, *level], [right + 35.0, *level], *stroke);
+            let text = shortened(name, SMALL, false, WIDTH - right - 44.0);
             svg.text([right + 40.0, level + 4.3], &text, Type::new(SMALL));
         }
         if let Some(last) = levels.last() {

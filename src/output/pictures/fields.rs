@@ -6,7 +6,7 @@ use std::io;
 use crate::output::results::Results;
 
 use super::colour::{FAINT, INK, PAPER, SOLID, Scale};
-use super::frame::{Frame, SMALL, WIDTH};
+use super::frame::{Frame, LEFT, SMALL, WIDTH};
 use super::lettering::shortened;
 use super::names::{Named, beside, boxes, by_name, by_part};
 use super::raster::{between, image, strip};
@@ -243,9 +243,9 @@ impl<'a> Picture<'a> {
     /// The colour scale below everything, with marks at places 0 to 1.
     fn scale(&mut self, scale: Scale, name: &str, marks: &[(f64, String)]) -> io::Result<()> {
         let top = self.svg.bottom() + 16.0;
-        let place = Box { x: 56.0, y: top + 8.0, w: 380.0, h: 13.0 };
-        let name = shortened(name, SMALL, false, WIDTH - 60.0);
-        self.svg.text([56.0, top], &name, Type::new(SMALL).coloured(FAINT));
+        let place = Box { x: LEFT, y: top + 8.0, w: WIDTH - 2.0 * LEFT, h: 13.0 };
+        let name = shortened(name, SMALL, false, WIDTH - LEFT - 4.0);
+        self.svg.text([LEFT, top], &name, Type::new(SMALL).coloured(FAINT));
         self.svg.image(place, &strip(&scale.colours())?);
         self.svg.rect(place, "none", Some(Stroke::new(INK, 0.8)));
         for (at, text) in marks.iter().filter(|(at, _)| (-1e-9..=1.0 + 1e-9).contains(at)) {

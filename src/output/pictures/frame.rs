@@ -11,19 +11,19 @@ use super::svg::{Anchor, Box, Stroke, Svg, Type};
 use super::ticks::Ticks;
 
 /// Width of every picture.
-pub const WIDTH: f64 = 560.0;
+pub const WIDTH: f64 = 480.0;
 /// Size of lesser letters.
 pub const SMALL: f64 = 12.5;
 /// Most room for the section; a slender one may grow taller, so that its width shows something.
-const MOST: [f64; 2] = [340.0, 440.0];
+const MOST: [f64; 2] = [264.0, 400.0];
 /// Most height of a slender section.
-const TALLEST: f64 = 620.0;
+const TALLEST: f64 = 580.0;
 /// Width up to which a section counts as slender.
-const SLENDER: f64 = 110.0;
+const SLENDER: f64 = 100.0;
 /// Room left of the section for its axis.
-const LEFT: f64 = 76.0;
+pub const LEFT: f64 = 72.0;
 /// Least room for names beside it.
-const NAMES: f64 = 140.0;
+const NAMES: f64 = 136.0;
 
 /// Where the section lies on the page. Axisymmetric sections are drawn on both sides of the axis.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -50,7 +50,7 @@ impl Frame {
         let (w, h) = (across * scale, section.height * scale);
         // What a slender section leaves over goes to both sides of it.
         let spare = WIDTH - LEFT - w - NAMES;
-        let x = LEFT + (0.5 * (spare - 90.0)).max(0.0);
+        let x = LEFT + (0.5 * (spare - 70.0)).max(0.0);
         let origin = if mirrored { x + 0.5 * w } else { x };
         Frame { section: Box { x, y: top, w, h }, scale, height: section.height, origin, mirrored }
     }

@@ -47,8 +47,8 @@ pub fn draw(results: &Results) -> Option<String> {
     } else {
         format!("{tolerance:e}")
     };
-    panel.curves(&mut svg, &residuals);
-    panel.level(&mut svg, tolerance, &format!("tolerance {name}"));
+    let name = format!("tolerance {name}");
+    panel.curves(&mut svg, &residuals, Some((tolerance, &name)));
 
     let mut watched: Vec<(f64, Curve)> = Vec::new();
     for name in table.header.iter().filter(|h| h.ends_with(WATCHED)) {
@@ -70,7 +70,7 @@ pub fn draw(results: &Results) -> Option<String> {
         };
         panel.axes(&mut svg, "iteration", &name);
         passages(&mut svg, &panel, results);
-        panel.curves(&mut svg, &watched);
+        panel.curves(&mut svg, &watched, None);
     }
     let told =
         format!("Residuals and part temperatures over {} iterations", results.told.iterations);

@@ -55,13 +55,13 @@ pub fn pictures(results: &Results) -> io::Result<Vec<Picture>> {
     );
     add(
         "temperature.svg",
-        "Dark is cold, light is hot; thin dark lines join places at the temperatures marked on \
+        "Dark is cold, light is hot; thin lines join places at the temperatures marked on \
          the scale, arrows follow the air.",
         Some(fields::temperature(results)?),
     );
     add(
         "speed.svg",
-        "Paper-white air stands still; arrows follow the air, and tell nothing of its speed.",
+        "The palest air stands still; arrows follow the air, and their length tells nothing.",
         fields::speed(results)?,
     );
     add(

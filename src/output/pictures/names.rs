@@ -111,8 +111,8 @@ pub fn beside(svg: &mut Svg, frame: &Frame, mut named: Vec<Named>) {
     named.sort_by(|a, b| a.0.total_cmp(&b.0));
 
     let section = frame.section;
-    let column = section.x + section.w + 34.0;
-    let room = WIDTH - column - 4.0;
+    let column = section.x + section.w + 30.0;
+    let room = WIDTH - column - 2.0;
     // With many names there is room for one further line each.
     let most = if named.len() > FEW { 1 } else { 2 };
     named.iter_mut().for_each(|n| n.1.details.truncate(most));

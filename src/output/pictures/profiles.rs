@@ -73,7 +73,7 @@ fn line(svg: &mut Svg, results: &Results, name: &str, top: f64) -> bool {
             panel.shade(svg, *from, *to, BLOCK);
         }
         panel.axes(svg, "distance, mm", up);
-        panel.curves(svg, &[Curve { name: what.into(), points }]);
+        panel.curves(svg, &[Curve { name: what.into(), points }], None);
         top = panel.bottom() + 28.0;
     }
     true

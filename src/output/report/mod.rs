@@ -18,6 +18,8 @@ use super::results::{Results, ResultsError, Texts};
 use super::screen::fixed;
 use super::summary::Summary;
 
+/// The picture that stands beside the margins.
+const FIRST: &str = "margins.svg";
 /// Name of the page.
 pub const PAGE: &str = "report.html";
 const TEMPLATE: &str = include_str!("page.html");
@@ -91,7 +93,8 @@ fn page(results: &Results, pictures: &[Picture]) -> Result<String, minijinja::Er
         question => answer::question(results),
         answer => answer::answer(results),
         margins => rows::margins(results),
-        pictures => pictures.iter().map(shown).collect::<Vec<_>>(),
+        first => pictures.iter().filter(|p| p.file == FIRST).map(shown).collect::<Vec<_>>(),
+        pictures => pictures.iter().filter(|p| p.file != FIRST).map(shown).collect::<Vec<_>>(),
         paths => rows::paths(results),
         paths_note => rows::paths_note(results),
         vents => rows::vents(results),
@@ -123,7 +126,7 @@ fn facts(results: &Results) -> Vec<[String; 2]> {
     };
     let ambient = case.ambient();
     let place = match ambient.altitude {
-        Some(altitude) => format!("at {} m", rows::number(altitude)),
+        Some(altitude) => format!("altitude {} m", rows::number(altitude)),
         None => format!("{} hPa", fixed(ambient.pressure / 100.0, 0)),
     };
     vec![
