@@ -12,6 +12,8 @@ use std::process::{Command, Stdio};
 
 use roxmltree::Document;
 use tempfile::TempDir;
+use ventrise::case::Case;
+use ventrise::output::pictures::layout;
 
 const RING: &str = include_str!("cases/ring.toml");
 const PICTURES: [&str; 7] = [
@@ -127,17 +129,10 @@ fn pictures_are_well_formed_and_name_what_they_show() {
             for attribute in node.attributes().filter(|a| a.name() == "href") {
                 assert!(attribute.value().starts_with("data:image/png;base64,"), "{name}");
             }
-            for axis in ["x", "y", "x1", "x2", "y1", "y2", "cx", "cy"] {
-                let value = node.attribute(axis).map(|v| v.parse::<f64>().unwrap());
-                let end = if axis.starts_with('y') || axis == "cy" { view[3] } else { view[2] };
-                assert!(
-                    value.is_none_or(|v| (-0.01..=end + 0.01).contains(&v)),
-                    "{name}: {node:?}"
-                );
-            }
         }
+        all_inside(name, svg);
     }
-    let layout = said(&files["layout.svg"]);
+    let drawn = said(&files["layout.svg"]);
     for words in [
         "core, main",
         "1 W, limit 85 °C",
@@ -145,12 +140,13 @@ fn pictures_are_well_formed_and_name_what_they_show() {
         "axis: symmetry",
         "right: wall with a film of 8 W/(m² K) to 40 °C",
         "floor: bottom, 60 to 100 mm, 201 cm², loss 1.5",
+        "P1",
         "TC1: at (50, 110) mm",
         "column: from (50, 0) to (50, 200) mm",
         "radius, mm",
         "height, mm",
     ] {
-        assert!(layout.contains(words), "{words}:\n{layout}");
+        assert!(drawn.contains(words), "{words}:\n{drawn}");
     }
     assert!(said(&files["temperature.svg"]).contains("temperature, °C"));
     assert!(said(&files["temperature.svg"]).contains("radio"));
@@ -172,6 +168,47 @@ fn a_crowded_case_is_drawn_too_and_its_names_stay_text() {
     assert!(!page.contains("<crowd>") && !page.contains("part <"), "names are markup");
     assert!(page.contains("Undecided"));
     assert!(page.len() < LARGEST_PAGE, "{}", page.len());
+}
+
+/// Places of everything in a drawing.
+fn all_inside(name: &str, svg: &str) {
+    let document = Document::parse(svg).unwrap();
+    let view = document.root_element().attribute("viewBox").unwrap();
+    let view: Vec<f64> = view.split(' ').map(|v| v.parse().unwrap()).collect();
+    for node in document.descendants().filter(|n| n.is_element()) {
+        for axis in ["x", "y", "x1", "x2", "y1", "y2", "cx", "cy"] {
+            let value = node.attribute(axis).map(|v| v.parse::<f64>().unwrap());
+            let end = if axis.starts_with('y') || axis == "cy" { view[3] } else { view[2] };
+            assert!(value.is_none_or(|v| (-0.01..=end + 0.01).contains(&v)), "{name}: {node:?}");
+        }
+    }
+}
+
+#[test]
+fn sections_of_every_shape_stay_inside_their_drawing() {
+    let sizes = [1.0, 7.3, 61.0, 333.3, 900.0];
+    for (w, h) in sizes.iter().flat_map(|w| sizes.map(|h| (*w, h))) {
+        for geometry in ["\"planar\"\ndepth = \"1 m\"", "\"axisymmetric\""] {
+            let text = format!(
+                "[section]\ngeometry = {geometry}\nwidth = \"{w} mm\"\nheight = \"{h} mm\"\n\
+                 [ambient]\ntemperature = \"20 degC\"\n[[block]]\nname = \"thin\"\nmaterial = \
+                 \"copper\"\nx = [\"{} mm\", \"{} mm\"]\ny = [\"{} mm\", \"{} mm\"]\nheat = \
+                 \"1 W\"\n[[slot]]\nname = \"vent\"\nside = \"top\"\nfrom = \"{} mm\"\nto = \
+                 \"{w} mm\"\nloss = 1.5\n[sides]\nright = \"open\"\n",
+                0.3 * w,
+                0.301 * w,
+                0.1 * h,
+                0.9 * h,
+                0.9 * w
+            );
+            let case = Case::parse(&text, "shape.toml").unwrap_or_else(|e| panic!("{e}"));
+            let lines = |extent: f64| (0..=50).map(move |n| 1e-3 * extent * f64::from(n) / 50.0);
+            let [x, y] = [w, h].map(|extent| lines(extent).collect::<Vec<f64>>());
+            let svg = layout(&case, &x, &y);
+            all_inside(&format!("{w} x {h} {geometry}"), &svg);
+            assert!(said(&svg).contains("thin") && said(&svg).contains("vent: top"), "{w} x {h}");
+        }
+    }
 }
 
 #[test]

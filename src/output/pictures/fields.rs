@@ -11,7 +11,7 @@ use super::lettering::shortened;
 use super::names::{Named, beside, boxes, by_name, by_part};
 use super::raster::{between, image, strip};
 use super::svg::{Anchor, Box, Stroke, Svg, Type};
-use super::ticks::{Ticks, power};
+use super::ticks::{Ticks, decimal, power};
 use super::trace;
 
 /// Air slower than this share of the fastest gets no lines.
@@ -29,7 +29,9 @@ pub fn temperature(results: &Results) -> io::Result<String> {
     let ticks = Ticks::of(range[0], range[1], 6);
     let span = (range[1] - range[0]).max(f64::MIN_POSITIVE);
     let mut picture = Picture::begin(results, "temperature", "Temperature");
-    let bands = ticks.at.clone();
+    // Not at the ends of the range, where round-off alone would draw them.
+    let inside = |t: &f64| (0.02..0.98).contains(&((t - range[0]) / span));
+    let bands: Vec<f64> = ticks.at.iter().copied().filter(inside).collect();
     picture.field(values, Scale::Temperature, &|v| (v - range[0]) / span, &bands)?;
     picture.outlines("none");
     picture.flow(26.0, [INK, PAPER]);
@@ -38,7 +40,7 @@ pub fn temperature(results: &Results) -> io::Result<String> {
         let boxes = boxes(&picture.frame, &results.case, &group);
         Some(Named {
             name: group.name,
-            details: vec![format!("{max:.1} °C at most")],
+            details: vec![format!("{} °C at most", decimal(max, 1))],
             weight: max,
             boxes,
         })

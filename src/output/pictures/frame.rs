@@ -15,15 +15,19 @@ pub const WIDTH: f64 = 480.0;
 /// Size of lesser letters.
 pub const SMALL: f64 = 12.5;
 /// Most room for the section; a slender one may grow taller, so that its width shows something.
-const MOST: [f64; 2] = [264.0, 400.0];
+const MOST: [f64; 2] = [244.0, 400.0];
 /// Most height of a slender section.
 const TALLEST: f64 = 580.0;
 /// Width up to which a section counts as slender.
 const SLENDER: f64 = 100.0;
 /// Room left of the section for its axis.
 pub const LEFT: f64 = 72.0;
+/// Width of a flat section, whose names are listed below it.
+const FLAT_WIDTH: f64 = 392.0;
+/// Width over height from which a section counts as flat.
+const FLAT: f64 = 1.7;
 /// Least room for names beside it.
-const NAMES: f64 = 136.0;
+const NAMES: f64 = 164.0;
 
 /// Where the section lies on the page. Axisymmetric sections are drawn on both sides of the axis.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -37,6 +41,7 @@ pub struct Frame {
     /// Page position of x = 0.
     origin: f64,
     mirrored: bool,
+    flat: bool,
 }
 
 impl Frame {
@@ -46,18 +51,32 @@ impl Frame {
         let mirrored = section.geometry == Geometry::Axisymmetric;
         let across = if mirrored { 2.0 * section.width } else { section.width };
         let slender = (SLENDER / across).min(TALLEST / section.height);
-        let scale = (MOST[0] / across).min(MOST[1] / section.height).max(slender);
+        let flat = across > FLAT * section.height;
+        let most = if flat { FLAT_WIDTH } else { MOST[0] };
+        let scale = (most / across).min(MOST[1] / section.height).max(slender);
         let (w, h) = (across * scale, section.height * scale);
         // What a slender section leaves over goes to both sides of it.
         let spare = WIDTH - LEFT - w - NAMES;
         let x = LEFT + (0.5 * (spare - 70.0)).max(0.0);
         let origin = if mirrored { x + 0.5 * w } else { x };
-        Frame { section: Box { x, y: top, w, h }, scale, height: section.height, origin, mirrored }
+        Frame {
+            section: Box { x, y: top, w, h },
+            scale,
+            height: section.height,
+            origin,
+            mirrored,
+            flat,
+        }
     }
 
     /// Whether the section is drawn on both sides of its axis.
     pub fn is_mirrored(&self) -> bool {
         self.mirrored
+    }
+
+    /// Whether it is too wide for names beside it.
+    pub fn is_flat(&self) -> bool {
+        self.flat
     }
 
     /// Page position of a place [m].
@@ -281,9 +300,11 @@ mod tests {
                 "geometry = \"planar\"\nwidth = \"{}\"\nheight = \"{}\"\ndepth = \"1 m\"",
                 size.0, size.1
             ));
-            let Box { x, w, h, .. } = Frame::fit(&case, 60.0).section;
-            assert!(w <= MOST[0] + 1e-9 && h <= TALLEST + 1e-9);
-            assert!(x >= LEFT && x + w + NAMES <= WIDTH + 1e-9, "{size:?}: {x} {w}");
+            let frame = Frame::fit(&case, 60.0);
+            let Box { x, w, h, .. } = frame.section;
+            let beside = if frame.is_flat() { 10.0 } else { NAMES };
+            assert!(h <= TALLEST + 1e-9 && x >= LEFT, "{size:?}: {x} {h}");
+            assert!(x + w + beside <= WIDTH + 1e-9, "{size:?}: {x} {w}");
         }
     }
 

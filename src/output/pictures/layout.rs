@@ -32,8 +32,8 @@ pub fn draw(case: &Case, x: &[f64], y: &[f64]) -> String {
     frame.edge(&mut svg, case);
     let base = frame.axes(&mut svg, 26.0);
     slot_letters(&mut svg, &frame, case);
-    beside(&mut svg, &frame, named(&frame, case));
-    probes(&mut svg, &frame, case);
+    let taken = beside(&mut svg, &frame, named(&frame, case));
+    probes(&mut svg, &frame, case, taken);
     let base = base.max(svg.bottom()) + 12.0;
     let base = key(&mut svg, case, base);
     svg.reach(base);
@@ -153,11 +153,15 @@ fn badge(svg: &mut Svg, at: [f64; 2], letter: &str) {
     svg.text([at[0], at[1] + 3.8], letter, set);
 }
 
-/// Probes with their numbers; a number that finds no free place is left out.
-fn probes(svg: &mut Svg, frame: &Frame, case: &Case) {
-    let mut taken: Vec<Box> = Vec::new();
+/// Mark of a probe.
+fn mark(n: usize) -> String {
+    format!("P{}", n + 1)
+}
+
+/// Probes with their marks; a mark that finds no free place is left out.
+fn probes(svg: &mut Svg, frame: &Frame, case: &Case, mut taken: Vec<Box>) {
     for (n, probe) in case.probes().iter().enumerate() {
-        let (mark, corners) = match probe.shape {
+        let (place, corners) = match probe.shape {
             ProbeShape::Point(at) => {
                 let at = frame.at(at);
                 svg.circle(at, 3.6, PAPER, Some(Stroke::new(AIR_MARK, 1.6)));
@@ -172,28 +176,19 @@ fn probes(svg: &mut Svg, frame: &Frame, case: &Case) {
                 (middle, [[5.0, -5.0], [-5.0, -5.0], [5.0, 14.0], [-5.0, 14.0]])
             }
         };
-        let text = (n + 1).to_string();
+        let text = mark(n);
         let w = width(&text, 12.0, true);
         let free = corners.iter().find_map(|[dx, dy]| {
-            let x = if *dx > 0.0 { mark[0] + dx } else { mark[0] + dx - w };
-            let place = Box { x, y: mark[1] + dy - 10.0, w, h: 12.0 };
-            (!taken.iter().any(|t| overlap(t, &place))).then_some(place)
+            let x = if *dx > 0.0 { place[0] + dx } else { place[0] + dx - w };
+            let place = Box { x, y: place[1] + dy - 10.0, w, h: 12.0 };
+            (!taken.iter().any(|t| t.overlaps(&place))).then_some(place)
         });
         if let Some(place) = free {
             taken.push(place);
-            svg.raw(&format!(
-                "<g paint-order=\"stroke\" stroke=\"{PAPER}\" stroke-width=\"3\" \
-                 stroke-linejoin=\"round\">"
-            ));
             let set = Type::new(12.0).bold().coloured(AIR_MARK);
-            svg.text([place.x, place.y + 10.0], &text, set);
-            svg.raw("</g>");
+            svg.haloed([place.x, place.y + 10.0], &text, set);
         }
     }
-}
-
-fn overlap(a: &Box, b: &Box) -> bool {
-    a.x < b.x + b.w && b.x < a.x + a.w && a.y < b.y + b.h && b.y < a.y + a.h
 }
 
 /// What letters, numbers and kinds of lines mean; returns where it ends.
@@ -234,7 +229,7 @@ fn key(svg: &mut Svg, case: &Case, top: f64) -> f64 {
         };
         row(svg, &text, &|svg, y| {
             let set = Type::new(12.0).bold().coloured(AIR_MARK).anchored(Anchor::Middle);
-            svg.text([22.0, y], &(n + 1).to_string(), set);
+            svg.text([22.0, y], &mark(n), set);
         });
     }
     let left = |count: usize| count.saturating_sub(LISTED);

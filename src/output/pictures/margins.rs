@@ -8,7 +8,7 @@ use super::colour::{ALARM, FAINT, GRID, HEATED, INK, LINES, PAPER, SOLID};
 use super::frame::{SMALL, WIDTH};
 use super::lettering::{shortened, width};
 use super::svg::{Anchor, Box, Stroke, Svg, Type};
-use super::ticks::Ticks;
+use super::ticks::{Ticks, decimal};
 
 /// Height of a part's row.
 const ROW: f64 = 48.0;
@@ -60,7 +60,7 @@ pub fn draw(results: &Results) -> Option<String> {
         row(&mut svg, part, ambient, level, &at);
         svg.line([at(ambient), bar[0]], [at(ambient), bar[1]], Stroke::new(INK, 1.6));
     }
-    let named = format!("temperature, °C; the bars begin at ambient, {ambient:.1} °C");
+    let named = format!("temperature, °C; the bars begin at ambient, {} °C", decimal(ambient, 1));
     let set = Type::new(SMALL).coloured(FAINT);
     svg.text([left, bottom + 34.0], &named, set);
     let mut end = bottom + 42.0;
@@ -76,14 +76,14 @@ pub fn draw(results: &Results) -> Option<String> {
 fn row(svg: &mut Svg, part: &ToldPart, ambient: f64, top: f64, at: &dyn Fn(f64) -> f64) {
     let Some(max) = part.max_c else { return };
     let over = part.margin_k.is_some_and(|m| m < 0.0);
+    let hottest = decimal(max, 1);
     let (said, colour) = match (part.margin_k, part.limit_c) {
-        (Some(margin), Some(limit)) if over => {
-            (format!("{max:.1} °C, {:.1} K over its limit of {limit:.1}", -margin), ALARM)
-        }
         (Some(margin), Some(limit)) => {
-            (format!("{max:.1} °C, {margin:.1} K below its limit of {limit:.1}"), INK)
+            let (by, limit) = (decimal(margin.abs(), 1), decimal(limit, 1));
+            let (what, colour) = if over { ("over", ALARM) } else { ("below", INK) };
+            (format!("{hottest} °C, {by} K {what} its limit of {limit}"), colour)
         }
-        _ => (format!("{max:.1} °C, no limit"), FAINT),
+        _ => (format!("{hottest} °C, no limit"), FAINT),
     };
     let end = WIDTH - 8.0;
     let set = Type { bold: over, ..Type::new(SMALL) };

@@ -1,7 +1,8 @@
 //! Names of blocks and parts, in a column beside the section, each with a line to what it names.
 //!
 //! Names keep the order of heights, and every line first runs level to the section's edge; so no
-//! two lines cross, and no name lies on another.
+//! two lines cross, and no name lies on another. Names that do not find room beside a flat section
+//! are listed below it, by numbers.
 
 use std::collections::BTreeMap;
 
@@ -9,8 +10,8 @@ use crate::case::Case;
 
 use super::colour::{FAINT, INK, PAPER};
 use super::frame::{Frame, SMALL, WIDTH};
-use super::lettering::shortened;
-use super::svg::{Box, Stroke, Svg, Type};
+use super::lettering::{shortened, width};
+use super::svg::{Anchor, Box, Stroke, Svg, Type};
 
 /// Most names of one picture; further ones are counted.
 const MOST: usize = 14;
@@ -18,6 +19,10 @@ const MOST: usize = 14;
 const FEW: usize = 7;
 /// Distance of further lines.
 const BELOW: f64 = 15.5;
+/// How much further than the section names may reach before they are listed below.
+const OVER: f64 = 50.0;
+/// Size of numbers on blocks.
+const NUMBER: f64 = 11.0;
 /// Size of names.
 const SIZE: f64 = 13.5;
 
@@ -101,8 +106,8 @@ pub fn boxes(frame: &Frame, case: &Case, group: &Group) -> Vec<Box> {
     group.blocks.iter().map(|b| frame.rect(&case.blocks()[*b].rectangle)).collect()
 }
 
-/// Draws names beside the section.
-pub fn beside(svg: &mut Svg, frame: &Frame, mut named: Vec<Named>) {
+/// Draws names beside the section, or numbers on it; returns the places of numbers.
+pub fn beside(svg: &mut Svg, frame: &Frame, mut named: Vec<Named>) -> Vec<Box> {
     named.retain(|n| !n.boxes.is_empty() && !n.name.is_empty());
     let all = named.len();
     named.sort_by(|a, b| b.weight.total_cmp(&a.weight));
@@ -111,13 +116,18 @@ pub fn beside(svg: &mut Svg, frame: &Frame, mut named: Vec<Named>) {
     named.sort_by(|a, b| a.0.total_cmp(&b.0));
 
     let section = frame.section;
-    let column = section.x + section.w + 30.0;
+    let column = section.x + section.w + 28.0;
     let room = WIDTH - column - 2.0;
     // With many names there is room for one further line each.
     let most = if named.len() > FEW { 1 } else { 2 };
-    named.iter_mut().for_each(|n| n.1.details.truncate(most));
-    let lines = named.iter().map(|n| n.1.details.len()).max().unwrap_or(0);
+    let lines = named.iter().map(|n| n.1.details.len().min(most)).max().unwrap_or(0);
     let row = 20.0 + BELOW * lines as f64;
+    if frame.is_flat() || row * named.len() as f64 > section.h + OVER {
+        let named: Vec<Named> = named.into_iter().map(|n| n.1).collect();
+        let taken = listed(svg, &named);
+        more(svg, all, [44.0, svg.bottom() + 4.0]);
+        return taken;
+    }
     let wanted: Vec<f64> = named.iter().map(|n| n.0).collect();
     let levels = spread(&wanted, row, section.y + 4.0, section.y + section.h - 4.0);
     let mut last = section.y;
@@ -125,19 +135,59 @@ pub fn beside(svg: &mut Svg, frame: &Frame, mut named: Vec<Named>) {
         lead(svg, section, target(&named.boxes, *level), [column - 4.0, *level]);
         let name = shortened(&named.name, SIZE, true, room);
         svg.text([column, level + 4.7], &name, Type::new(SIZE).bold());
-        for (n, detail) in named.details.iter().enumerate() {
+        for (n, detail) in named.details.iter().take(most).enumerate() {
             let at = [column, level + 5.0 + BELOW * (n + 1) as f64];
             let detail = shortened(detail, SMALL, false, room);
             svg.text(at, &detail, Type::new(SMALL).coloured(FAINT));
         }
         last = level + row - 14.0;
     }
-    if all > MOST {
-        last += 16.0;
-        let more = format!("and {} more", all - MOST);
-        svg.text([column, last], &more, Type::new(SMALL).coloured(FAINT));
-    }
     svg.reach(last + 6.0);
+    more(svg, all, [column, last + 16.0]);
+    Vec::new()
+}
+
+/// How many names are left out.
+fn more(svg: &mut Svg, all: usize, at: [f64; 2]) {
+    if all > MOST {
+        let text = format!("and {} more", all - MOST);
+        svg.text(at, &text, Type::new(SMALL).coloured(FAINT));
+        svg.reach(at[1] + 8.0);
+    }
+}
+
+/// Numbers on what is named and names with their numbers below everything; returns the places of
+/// the numbers. A number that would lie on another one is left out.
+fn listed(svg: &mut Svg, named: &[Named]) -> Vec<Box> {
+    let mut taken: Vec<Box> = Vec::new();
+    let mut y = svg.bottom() + 12.0;
+    for (n, named) in named.iter().enumerate() {
+        let number = (n + 1).to_string();
+        let w = width(&number, NUMBER, true);
+        for b in &named.boxes {
+            let x = b.x + 0.5 * b.w;
+            let base = b.y + 0.5 * b.h + 0.36 * NUMBER;
+            let place = Box { x: x - 0.5 * w, y: base - NUMBER, w, h: NUMBER + 3.0 };
+            if taken.iter().any(|t| t.overlaps(&place)) {
+                continue;
+            }
+            taken.push(place);
+            let set = Type::new(NUMBER).bold().anchored(Anchor::Middle);
+            svg.haloed([x, base], &number, set);
+        }
+        let set = Type::new(SMALL).bold();
+        svg.text([30.0, y], &number, set.anchored(Anchor::End));
+        let details = named.details.join(", ");
+        let room = WIDTH - 44.0 - 4.0;
+        let name = shortened(&named.name, SMALL, true, 0.62 * room);
+        svg.text([44.0, y], &name, set);
+        let after = 44.0 + width(&name, SMALL, true) + 8.0;
+        let details = shortened(&details, SMALL, false, WIDTH - after - 4.0);
+        svg.text([after, y], &details, Type::new(SMALL).coloured(FAINT));
+        y += 18.0;
+    }
+    svg.reach(y - 4.0);
+    taken
 }
 
 /// Mean height of rectangles on the page.
@@ -153,7 +203,8 @@ fn target(boxes: &[Box], level: f64) -> [f64; 2] {
         |a: &&Box, b: &&Box| off(a).total_cmp(&off(b)).then((b.x + b.w).total_cmp(&(a.x + a.w)));
     let Some(b) = boxes.iter().min_by(order) else { return [0.0, level] };
     let inset = (0.5 * b.h).min(5.0);
-    [b.x + b.w - (0.5 * b.w).min(7.0), level.clamp(b.y + inset, b.y + b.h - inset)]
+    // Not `clamp`: round-off may put the bounds of a thin block the wrong way round.
+    [b.x + b.w - (0.5 * b.w).min(7.0), level.min(b.y + b.h - inset).max(b.y + inset)]
 }
 
 /// A line from a place level to the section's edge and on to its name.
@@ -228,6 +279,18 @@ mod tests {
         let b = |x, y| Box { x, y, w: 10.0, h: 40.0 };
         let [x, y] = target(&[b(0.0, 0.0), b(50.0, 0.0), b(50.0, 200.0)], 60.0);
         assert!((50.0..60.0).contains(&x) && (0.0..40.0).contains(&y), "{x} {y}");
+    }
+
+    #[test]
+    fn blocks_thinner_than_a_line_can_be_pointed_at() {
+        for n in 0..2000 {
+            let y = 61.3 + 0.037_1 * f64::from(n);
+            let b = Box { x: 100.0, y, w: 0.01, h: 0.013 * f64::from(n % 7) };
+            for level in [0.0, y, 900.0] {
+                let at = target(&[b], level)[1];
+                assert!((b.y - 1e-9..=b.y + b.h + 1e-9).contains(&at), "{b:?}");
+            }
+        }
     }
 
     #[test]

@@ -104,6 +104,14 @@ pub struct Box {
     pub h: f64,
 }
 
+impl Box {
+    /// Whether two rectangles share an area.
+    pub fn overlaps(&self, other: &Box) -> bool {
+        let along = |a: f64, length: f64, b: f64, other: f64| a < b + other && b < a + length;
+        along(self.x, self.w, other.x, other.w) && along(self.y, self.h, other.y, other.h)
+    }
+}
+
 impl Svg {
     /// An empty drawing; `name` is a word of its own for every kind of picture.
     pub fn new(name: &'static str, width: f64) -> Svg {
@@ -177,6 +185,9 @@ impl Svg {
 
     /// A line of text; `at` is on its base line.
     pub fn text(&mut self, at: [f64; 2], text: &str, set: Type) {
+        if text.is_empty() {
+            return;
+        }
         let anchor = match set.anchor {
             Anchor::Start => "",
             Anchor::Middle => " text-anchor=\"middle\"",
@@ -190,6 +201,16 @@ impl Svg {
             set.fill,
             escaped(text)
         ));
+    }
+
+    /// A line of text with a rim of paper, to be read on anything.
+    pub fn haloed(&mut self, at: [f64; 2], text: &str, set: Type) {
+        self.raw(&format!(
+            "<g paint-order=\"stroke\" stroke=\"{PAPER}\" stroke-width=\"3\" \
+             stroke-linejoin=\"round\">"
+        ));
+        self.text(at, text, set);
+        self.raw("</g>");
     }
 
     /// An embedded PNG, stretched over its place.

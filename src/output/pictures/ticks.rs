@@ -40,10 +40,15 @@ impl Ticks {
 
     /// A tick as text.
     pub fn text(&self, value: f64) -> String {
-        let text = format!("{value:.*}", self.decimals);
-        let zero = !text.contains(|c: char| ('1'..='9').contains(&c));
-        if zero { text.trim_start_matches('-').into() } else { text.replace('-', "−") }
+        decimal(value, self.decimals)
     }
+}
+
+/// A number with fixed decimals, a minus sign proper, no negative zero.
+pub fn decimal(value: f64, decimals: usize) -> String {
+    let text = format!("{value:.decimals$}");
+    let zero = !text.contains(|c: char| ('1'..='9').contains(&c));
+    if zero { text.trim_start_matches('-').into() } else { text.replace('-', "−") }
 }
 
 /// A power of ten as text: `0.01`, `1`, `1000`, beyond that `1e-6`.
