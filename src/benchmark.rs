@@ -10,8 +10,14 @@ use serde_json::Value;
 use ventrise_solver::samples::SampleError;
 use ventrise_solver::{Progress, Settings, SolveError};
 
+use crate::memory;
+use crate::output::words::counted;
+
 pub use case::{Case, names};
 pub use table::{Reference, references, source_text};
+
+/// Most cells along each side: 17 million in all, near the most that a mesh may have.
+const MOST_CELLS: usize = 4096;
 
 /// What to compute.
 #[derive(Debug, Clone, Default, PartialEq)]
@@ -47,6 +53,19 @@ pub enum BenchmarkError {
         cells: usize,
         /// The bound in words.
         bound: &'static str,
+    },
+    /// More memory than there is [GB].
+    #[error(
+        "{cells} cells along each side need about {needed:.1} GB of memory, and this machine has \
+         {available:.1} GB left; ask for fewer"
+    )]
+    Memory {
+        /// Cells along each side.
+        cells: usize,
+        /// Needed.
+        needed: f64,
+        /// Left.
+        available: f64,
     },
     /// The case could not be built.
     #[error(transparent)]
@@ -117,8 +136,14 @@ impl Comparison {
 /// An unknown name, too few cells, a breakdown of the solver.
 pub fn compute(name: &str, cells: usize, uniform: bool) -> Result<Comparison, BenchmarkError> {
     let case = Case::named(name).ok_or_else(|| unknown(name))?;
-    if !cells.is_multiple_of(8) || cells < 16 {
-        return Err(BenchmarkError::Cells { cells, bound: "a multiple of eight, at least 16" });
+    if !cells.is_multiple_of(8) || !(16..=MOST_CELLS).contains(&cells) {
+        let bound = "a multiple of eight from 16 to 4096";
+        return Err(BenchmarkError::Cells { cells, bound });
+    }
+    let needed = memory::of_solve(cells * cells);
+    if let Some(available) = memory::available().filter(|available| needed > *available) {
+        let [needed, available] = [needed, available].map(|bytes| bytes / 1e9);
+        return Err(BenchmarkError::Memory { cells, needed, available });
     }
     let problem = case.problem(cells, uniform)?;
     let mesh = problem.mesh();
@@ -205,9 +230,9 @@ fn table(c: &Comparison, uniform: bool, out: &mut dyn Write) -> std::io::Result<
     let [nx, ny] = c.mesh;
     writeln!(
         out,
-        "{}   {nx} x {ny} {grading} cells, {} iterations, {:.2} s{}",
+        "{}   {nx} x {ny} {grading} cells, {}, {:.2} s{}",
         c.case,
-        c.iterations,
+        counted(c.iterations, "iteration"),
         c.wall_seconds,
         if c.settled { "" } else { ", NOT SETTLED" }
     )?;
@@ -342,6 +367,6 @@ mod tests {
     #[test]
     fn cells_out_of_range_are_refused() {
         let error = compute("square-cavity-1e3", 30, false).unwrap_err();
-        assert_eq!(error.to_string(), "cells must be a multiple of eight, at least 16, not 30");
+        assert_eq!(error.to_string(), "cells must be a multiple of eight from 16 to 4096, not 30");
     }
 }

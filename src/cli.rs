@@ -9,6 +9,9 @@ use clap::{Args, Parser, Subcommand};
 use crate::benchmark;
 use crate::case::units::{self, Dimension};
 
+/// Most threads: beyond the cores of a machine they only wait for each other.
+const MOST_THREADS: i64 = 256;
+
 /// Will every part of a fanless, vented housing stay below its limit?
 #[derive(Debug, Parser)]
 #[command(
@@ -39,11 +42,13 @@ pub enum TypedCommand {
     )]
     Check(TypedCheck),
     /// Solve a case and write its results folder
-    #[command(
-        after_help = "Examples:\n  ventrise solve cases/wall-cabinet.toml\n  ventrise solve \
-                            radio.toml --out runs/radio --require-margin 5 --time-limit \"10 \
-                            min\""
-    )]
+    #[command(after_help = "Examples:
+  ventrise solve cases/wall-cabinet.toml
+  ventrise solve radio.toml --out runs/radio       results in a folder of your choice
+  ventrise solve radio.toml --quiet --require-margin 5 --time-limit \"10 min\"
+                                                   in a script: the exit code answers
+  ventrise solve cases/mast-radio.toml --revolve 36
+                                                   also the body, for a viewer")]
     Solve(TypedSolve),
     /// Make the pictures and the page of a results folder again
     #[command(after_help = "Example:\n  ventrise report cases/wall-cabinet.results")]
@@ -52,8 +57,11 @@ pub enum TypedCommand {
         folder: PathBuf,
     },
     /// Compute published cavity cases and set them beside their table values
-    #[command(after_help = "Examples:\n  ventrise benchmark\n  ventrise benchmark \
-                            square-cavity-1e6 --cells 128 --json")]
+    #[command(after_help = "Examples:
+  ventrise benchmark                               square cavity, Rayleigh 1e3 to 1e6
+  ventrise benchmark square-cavity-1e6 --cells 64  one case, coarser
+  ventrise benchmark lid-cavity --uniform          a group of cases, equal cells
+  ventrise benchmark annulus --json                for a script")]
     Benchmark(TypedBenchmark),
 }
 
@@ -87,9 +95,9 @@ pub struct TypedBenchmark {
     /// A JSON list instead of tables
     #[arg(long)]
     pub json: bool,
-    /// Threads to work with [default: all the machine offers]
-    #[arg(long, value_name = "N")]
-    pub threads: Option<NonZeroUsize>,
+    /// Threads to work with, at most 256 [default: all the machine offers]
+    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u16).range(1..=MOST_THREADS))]
+    pub threads: Option<u16>,
 }
 
 /// `solve` as typed.
@@ -100,9 +108,9 @@ pub struct TypedSolve {
     /// Results folder [default: NAME.results beside the case file]
     #[arg(long, value_name = "DIR")]
     pub out: Option<PathBuf>,
-    /// Threads to work with [default: all the machine offers]
-    #[arg(long, value_name = "N")]
-    pub threads: Option<NonZeroUsize>,
+    /// Threads to work with, at most 256 [default: all the machine offers]
+    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u16).range(1..=MOST_THREADS))]
+    pub threads: Option<u16>,
     /// Show nothing but errors
     #[arg(long, short)]
     pub quiet: bool,
@@ -196,8 +204,9 @@ impl Typed {
 }
 
 /// The threads asked for, or all that the machine offers.
-fn all_unless(asked: Option<NonZeroUsize>) -> usize {
-    asked.or(std::thread::available_parallelism().ok()).map_or(1, NonZeroUsize::get)
+fn all_unless(asked: Option<u16>) -> usize {
+    let offered = || std::thread::available_parallelism().map_or(1, NonZeroUsize::get);
+    asked.map_or_else(offered, usize::from)
 }
 
 /// A margin: a finite number of kelvin, with or without the unit.
@@ -277,6 +286,7 @@ mod tests {
         assert_eq!(s.time_limit, Some(Duration::from_secs(120)));
         for wrong in [
             ["--threads", "0"],
+            ["--threads", "257"],
             ["--revolve", "2"],
             ["--time-limit", "10"],
             ["--time-limit", "0 s"],

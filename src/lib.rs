@@ -3,6 +3,7 @@
 pub mod benchmark;
 pub mod case;
 pub mod cli;
+pub mod memory;
 pub mod output;
 pub mod progress;
 pub mod run;

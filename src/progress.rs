@@ -7,12 +7,19 @@ use std::time::{Duration, Instant};
 use indicatif::{ProgressBar, ProgressDrawTarget, ProgressStyle};
 use ventrise_solver::Progress;
 
+use crate::output::words::{counted, shortened, sized};
+
 /// Time between plain lines.
 const PLAIN_EVERY: Duration = Duration::from_secs(5);
 /// Time between drawings on a terminal.
 const DRAW_EVERY: Duration = Duration::from_millis(120);
 /// Iterations over which the fall of the residual is judged.
 const TREND: usize = 60;
+/// Share of a new estimate of the time left in what is shown, and most change at a time.
+const TRUST: f64 = 0.25;
+const JUMP: f64 = 1.5;
+/// Most columns of a part's name.
+const NAME: usize = 32;
 /// Seconds in an hour.
 const HOUR: f64 = 3600.0;
 
@@ -99,17 +106,19 @@ impl ProgressView {
         }
     }
 
-    fn line(&self, p: &Progress, now: Instant) -> String {
+    fn line(&mut self, p: &Progress, now: Instant) -> String {
         let mut line = format!(
-            "iteration {} on {} cells: residual {:.1e} of {:.0e}, heat balance {:.1e}",
+            "iteration {} on {}: residual {:.1e} of {:.0e}",
             p.iteration,
-            p.cells,
+            counted(p.cells, "cell"),
             p.residuals.largest(),
-            self.tolerance,
-            p.heat_error
+            self.tolerance
         );
+        if let Some(error) = heat_error(p) {
+            line += &format!(", heat balance {error:.1e}");
+        }
         if p.flow_in > 0.0 {
-            line += &format!(", vents {:.2} m3/h", HOUR * p.flow_in);
+            line += &format!(", slots {} m3/h", sized(HOUR * p.flow_in, 2, 0.0));
         }
         if let Some(hottest) = self.hottest(p) {
             line += &format!(", {hottest}");
@@ -117,22 +126,27 @@ impl ProgressView {
         line + &format!(", {}", self.times(now))
     }
 
-    fn lines(&self, p: &Progress, now: Instant) -> String {
+    fn lines(&mut self, p: &Progress, now: Instant) -> String {
         let r = &p.residuals;
         let mut text = format!(
-            "iteration {} on {} cells   {}\nresiduals   mass {:.1e}   momentum {:.1e} {:.1e}   \
-             energy {:.1e}   bound {:.0e}\nheat balance {:.1e}   vents {:.2} m3/h",
+            "iteration {} on {}   {}\nresiduals   mass {:.1e}   momentum {:.1e} {:.1e}   \
+             energy {:.1e}   bound {:.0e}",
             p.iteration,
-            p.cells,
+            counted(p.cells, "cell"),
             self.times(now),
             r.mass,
             r.momentum_x,
             r.momentum_y,
             r.energy,
-            self.tolerance,
-            p.heat_error,
-            HOUR * p.flow_in
+            self.tolerance
         );
+        let balance = heat_error(p).map(|error| format!("heat balance {error:.1e}"));
+        let flow =
+            (p.flow_in > 0.0).then(|| format!("slots {} m3/h", sized(HOUR * p.flow_in, 2, 0.0)));
+        let whole: Vec<String> = balance.into_iter().chain(flow).collect();
+        if !whole.is_empty() {
+            text += &format!("\n{}", whole.join("   "));
+        }
         if let Some(hottest) = self.hottest(p) {
             text += &format!("\n{hottest}");
         }
@@ -145,24 +159,30 @@ impl ProgressView {
         let watched = || self.parts.iter().zip(&p.part_max);
         let judged = watched().filter_map(|(part, rise)| Some((part, rise, margin(part, *rise)?)));
         // No change is known before a second look.
-        let moving = p.drift.is_finite();
+        let moving = p.drift.is_finite() && p.drift > 0.0;
         let drift =
             if moving { format!(", moving {:.0e} K an iteration", p.drift) } else { String::new() };
         if let Some((part, rise, margin)) = judged.min_by(|a, b| a.2.total_cmp(&b.2)) {
             let celsius = self.ambient + rise;
-            return Some(format!("{} {celsius:.1} degC, margin {margin:.1} K{drift}", part.name));
+            let name = shortened(&part.name, NAME);
+            return Some(format!("{name} {celsius:.1} degC, margin {margin:.1} K{drift}"));
         }
         let (part, rise) = watched().max_by(|a, b| a.1.total_cmp(b.1))?;
-        Some(format!("{} {:.1} degC{drift}", part.name, self.ambient + rise))
+        Some(format!("{} {:.1} degC{drift}", shortened(&part.name, NAME), self.ambient + rise))
     }
 
-    fn times(&self, now: Instant) -> String {
+    fn times(&mut self, now: Instant) -> String {
         let elapsed = duration((now - self.begun).as_secs_f64());
-        match self.trend.seconds_left(self.tolerance) {
+        match self.trend.steady_seconds_left(self.tolerance, now) {
             Some(left) => format!("{elapsed}, about {} left", duration(left)),
             None => elapsed,
         }
     }
+}
+
+/// How far the heat balance is off, once there is one: the start has none.
+fn heat_error(p: &Progress) -> Option<f64> {
+    Some(p.heat_error).filter(|error| error.is_finite() && *error != 0.0)
 }
 
 /// Writes a line to standard error; a closed stream is no reason to stop.
@@ -186,6 +206,8 @@ struct Trend {
     cells: usize,
     /// Logarithm of the largest residual and when it was reached.
     points: VecDeque<(f64, Instant)>,
+    /// Time left as shown last [s], and when.
+    shown: Option<(f64, Instant)>,
 }
 
 impl Trend {
@@ -193,6 +215,7 @@ impl Trend {
         if progress.cells != self.cells {
             self.cells = progress.cells;
             self.points.clear();
+            self.shown = None;
         }
         let residual = progress.residuals.largest();
         if residual > 0.0 && residual.is_finite() {
@@ -201,6 +224,22 @@ impl Trend {
             }
             self.points.push_back((residual.ln(), now));
         }
+    }
+
+    /// [`Trend::seconds_left`] as it is shown: what was shown last, less the time since, moved
+    /// towards the new estimate by [`TRUST`] of the difference and by no more than [`JUMP`] times.
+    fn steady_seconds_left(&mut self, tolerance: f64, now: Instant) -> Option<f64> {
+        let new = self.seconds_left(tolerance)?;
+        let left = match self.shown {
+            None => new,
+            Some((last, at)) => {
+                let expected = (last - (now - at).as_secs_f64()).max(0.1 * last).max(0.1);
+                let moved = expected + TRUST * (new - expected);
+                moved.clamp(expected / JUMP, expected * JUMP)
+            }
+        };
+        self.shown = Some((left, now));
+        Some(left)
     }
 
     /// Time until the bound is met on this mesh if the residual keeps falling as it did: a
@@ -260,6 +299,31 @@ mod tests {
             trend.note(&progress(100, 1e-3), begun + Duration::from_secs(n));
         }
         assert_eq!(trend.seconds_left(1e-6), None);
+    }
+
+    #[test]
+    fn the_time_left_does_not_leap_with_every_estimate() {
+        let (mut trend, begun) = (Trend::default(), Instant::now());
+        let mut shown = Vec::new();
+        for n in 0..40 {
+            // A fall that pauses now and then.
+            let residual = 10f64.powf(2.0 - 0.1 * f64::from(n - n % 8));
+            let now = begun + Duration::from_secs(n as u64);
+            trend.note(&progress(100, residual), now);
+            shown.extend(trend.steady_seconds_left(1e-6, now));
+        }
+        assert!(shown.len() > 20, "{shown:?}");
+        assert!(shown.windows(2).all(|w| w[1] < 1.6 * w[0] && w[1] > 0.4 * w[0]), "{shown:?}");
+    }
+
+    #[test]
+    fn a_heat_balance_is_shown_once_there_is_one() {
+        let mut view = ProgressView::new(Vec::new(), 40.0, 1e-6, true);
+        let none = view.line(&progress(1, 1e-3), Instant::now());
+        assert!(!none.contains("heat balance") && none.contains(" on 1 cell: "), "{none}");
+        let some = Progress { heat_error: 2e-3, flow_in: 1e-3, ..progress(9, 1e-3) };
+        let some = view.line(&some, Instant::now());
+        assert!(some.contains("heat balance 2.0e-3, slots 3.60 m3/h"), "{some}");
     }
 
     #[test]

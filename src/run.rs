@@ -15,6 +15,7 @@ use ventrise_solver::{Control, Problem, Solution, SolveError, StopReason, Verdic
 use crate::benchmark::{self, BenchmarkError};
 use crate::case::{Case, CaseErrors, setup};
 use crate::cli::{Command, Solve, Typed};
+use crate::memory;
 use crate::output::overview::Overview;
 use crate::output::readings::celsius;
 use crate::output::report::{self, ReportError};
@@ -79,9 +80,11 @@ impl Trouble {
             Trouble::Case(_) | Trouble::Mesh { .. } | Trouble::Revolve | Trouble::Results(_) => {
                 Ending::WrongInput
             }
-            Trouble::Benchmark(BenchmarkError::Name { .. } | BenchmarkError::Cells { .. }) => {
-                Ending::WrongInput
-            }
+            Trouble::Benchmark(
+                BenchmarkError::Name { .. }
+                | BenchmarkError::Cells { .. }
+                | BenchmarkError::Memory { .. },
+            ) => Ending::WrongInput,
             _ => Ending::Failure,
         }
     }
@@ -121,17 +124,26 @@ fn print(write: impl FnOnce(&mut dyn Write) -> io::Result<()>) {
 }
 
 fn mesh_of(case: &Case) -> Result<Generated, Trouble> {
-    let wrong = |error: ventrise_mesh::MeshError| Trouble::Mesh {
-        file: case.file().into(),
-        reason: error.to_string(),
-    };
-    setup::mesh(case).map_err(wrong)
+    setup::mesh(case).map_err(|error| case.refused_mesh(&error).into())
+}
+
+/// Refuses a mesh that there is no memory for.
+fn affordable(case: &Case, cells: usize) -> Result<(), Trouble> {
+    let needed = memory::of_solve(cells);
+    match memory::available() {
+        Some(available) if needed > available => {
+            Err(case.refused_memory(cells, needed, available).into())
+        }
+        _ => Ok(()),
+    }
 }
 
 fn check(path: &Path, drawing: Option<&Path>) -> Result<Ending, Trouble> {
     let case = Case::read(path)?;
     let generated = mesh_of(&case)?;
-    problem_of(&case, &generated)?;
+    if affordable(&case, generated.mesh.cell_count()).is_ok() {
+        problem_of(&case, &generated)?;
+    }
     let overview = Overview::of(&case, &generated)
         .map_err(|e| Trouble::Mesh { file: case.file().into(), reason: e.to_string() })?;
     print(|out| overview.write(out));
@@ -182,7 +194,11 @@ fn solve_case(asked: &Solve) -> Result<Ending, Trouble> {
     if asked.revolve.is_some() && case.section().geometry != Geometry::Axisymmetric {
         return Err(Trouble::Revolve);
     }
+    if let Some([nx, ny]) = case.mesh_choice().cells {
+        affordable(&case, nx * ny)?;
+    }
     let generated = mesh_of(&case)?;
+    affordable(&case, generated.mesh.cell_count())?;
     let problem = problem_of(&case, &generated)?;
     // Found out before the work, not after it: can the results be written?
     drop(Folder::begin(&asked.out)?);

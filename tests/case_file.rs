@@ -177,7 +177,7 @@ fn doubtful_but_possible_cases_are_accepted_with_warnings() {
         (
             "side = \"top\"\nfrom = \"10 mm\"\nto = \"30 mm\"",
             "side = \"bottom\"\nfrom = \"90 mm\"\nto = \"110 mm\"",
-            "all slots lie at one height",
+            "the heat has no steady way out: every opening lies in the floor",
         ),
         ("\"15 W\"", "\"9 kW\"", "by hand the surfaces get about"),
         (

@@ -210,7 +210,12 @@ fn tables_repeat_the_summary() {
 
 #[test]
 fn a_sway_is_told_with_its_bands_and_judged_by_the_upper_end() {
-    let verdict = Verdict::Swaying { period: Some(1.1), growth: None, band: vec![[30.0, 44.0]] };
+    let verdict = Verdict::Swaying {
+        period: Some(1.1),
+        growth: None,
+        band: vec![[30.0, 44.0]],
+        slot_band: Vec::new(),
+    };
     let (folder, ..) = written("sway.results", Some(verdict));
     let s = summary_of(&folder);
     assert_eq!(s["verdict"], "swaying");

@@ -70,14 +70,14 @@ pub fn generate(layout: &Layout, spacing: &Spacing) -> Result<Generated, MeshErr
             notes.extend(x.note.into_iter().chain(y.note));
             (x.lines, y.lines)
         }
-        Spacing::Graded { growth, multiple, .. } => {
+        Spacing::Graded { growth, .. } => {
             let spans = crossing::spans(layout, &outline)?;
             let x = graded_axis(layout, &outline, &spans, spacing, Axis::X)?;
             let y = graded_axis(layout, &outline, &spans, spacing, Axis::Y)?;
             within_limit(x.lines.len() - 1, y.lines.len() - 1)?;
             for (axis, edges, lines) in [(Axis::X, outline.x(), &x), (Axis::Y, outline.y(), &y)] {
                 notes.extend(sliver_note(axis, edges, lines));
-                notes.extend(multiple_note(axis, edges, lines, multiple));
+                notes.extend(multiple_note(axis, edges, lines));
                 notes.extend(growth_note(axis, &lines.lines, growth));
             }
             (x.lines, y.lines)
@@ -158,9 +158,25 @@ fn graded_axis(
     )
 }
 
-/// A position or length in mm.
-fn mm(metres: f64) -> String {
-    format!("{:.4}", metres * 1e3)
+/// A position in mm: nine digits, so that edges close together are told apart.
+pub(crate) fn mm(metres: f64) -> String {
+    significant(1e3 * metres, 9)
+}
+
+/// A size in mm: four digits.
+pub(crate) fn size_mm(metres: f64) -> String {
+    significant(1e3 * metres, 4)
+}
+
+/// A value rounded to so many significant digits, in its shortest text.
+fn significant(value: f64, digits: usize) -> String {
+    let text = format!("{value:.*e}", digits - 1);
+    match text.parse::<f64>() {
+        Ok(0.0) => "0".into(),
+        Ok(rounded) if rounded.abs() < 1e-4 => format!("{rounded:e}"),
+        Ok(rounded) => format!("{rounded}"),
+        Err(_) => text,
+    }
 }
 
 /// Lists the first few of many places.
@@ -177,7 +193,7 @@ fn segments(edges: &[f64], which: &[usize], lines: &Lines) -> Vec<String> {
         let (from, to) = (edges[*k], edges[*k + 1]);
         let cells = lines.lines.iter().filter(|l| **l > from && **l <= to).count();
         let cells = if cells == 1 { String::new() } else { format!(", {cells} cells") };
-        format!("{} to {} mm ({} mm wide{cells})", mm(from), mm(to), mm(to - from))
+        format!("{} to {} mm ({} mm wide{cells})", mm(from), mm(to), size_mm(to - from))
     };
     which.iter().map(place).collect()
 }
@@ -186,20 +202,20 @@ fn sliver_note(axis: Axis, edges: &[f64], lines: &Lines) -> Option<String> {
     let places = segments(edges, &lines.slivers, lines);
     (!places.is_empty()).then(|| {
         format!(
-            "edges close together along {}: a single cell between them, and the cells beside it \
-             grow from a larger size than its own: {}",
+            "edges close together along {}: a single cell between them, much smaller than the cells \
+             beside it: {}",
             axis.letter(),
             listed(&places)
         )
     })
 }
 
-fn multiple_note(axis: Axis, edges: &[f64], lines: &Lines, multiple: usize) -> Option<String> {
+fn multiple_note(axis: Axis, edges: &[f64], lines: &Lines) -> Option<String> {
     let places = segments(edges, &lines.unaligned, lines);
     (!places.is_empty()).then(|| {
         format!(
-            "edges close together along {}: the cells between them are no multiple of {multiple}, \
-             coarser meshes keep them longer: {}",
+            "edges close together along {}: few cells fit between them, and the solution may take \
+             longer: {}",
             axis.letter(),
             listed(&places)
         )
@@ -215,11 +231,11 @@ fn growth_note(axis: Axis, lines: &[f64], growth: f64) -> Option<String> {
     let over: Vec<(f64, f64)> = ratios.filter(|(r, _)| *r > growth * (1.0 + 1e-6)).collect();
     let (ratio, at) = over.iter().copied().max_by(|a, b| a.0.total_cmp(&b.0))?;
     Some(format!(
-        "neighbouring cells along {} differ by more than the growth {growth} at {} lines, by at \
-         most a factor of {ratio:.2} at {} mm",
+        "neighbouring cells along {} differ by more than the growth {growth} at {}, by at most a \
+         factor of {ratio:.2} at {} mm",
         axis.letter(),
-        over.len(),
-        mm(at)
+        if over.len() == 1 { "1 line".into() } else { format!("{} lines", over.len()) },
+        size_mm(at)
     ))
 }
 
@@ -237,7 +253,7 @@ fn fine_note(crossings: &[Crossing], wall: f64) -> Option<String> {
     let fine: Vec<String> = crossings
         .iter()
         .filter(|c| c.cells > 1 && c.size() < FINE * wall * c.cells as f64)
-        .map(|c| format!("{}: cells of {} mm", place(c), mm(c.size() / c.cells as f64)))
+        .map(|c| format!("{}: cells of {} mm", place(c), size_mm(c.size() / c.cells as f64)))
         .collect();
     (!fine.is_empty()).then(|| {
         format!(
@@ -255,6 +271,6 @@ fn place(crossing: &Crossing) -> String {
         mm(crossing.from),
         mm(crossing.to),
         crossing.axis.letter(),
-        mm(crossing.size())
+        size_mm(crossing.size())
     )
 }

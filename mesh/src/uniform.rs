@@ -7,6 +7,7 @@
 
 use crate::MeshError;
 use crate::crossing::Axis;
+use crate::generate::{mm, size_mm};
 
 /// How far an edge may lie from a uniform line, in cells, to count as lying on it.
 const ON_LINE_CELLS: f64 = 1e-6;
@@ -58,14 +59,14 @@ pub(crate) fn uniform_lines(axis: Axis, edges: &[f64], count: usize) -> Result<U
     lines.push(extent);
     let sizes = lengths.iter().zip(&counts).map(|(l, c)| l / *c as f64);
     let [low, high] = sizes.fold([f64::INFINITY, 0.0_f64], |[a, b], s| [a.min(s), b.max(s)]);
-    let places: Vec<String> = off.iter().take(6).map(|e| format!("{:.4}", e * 1e3)).collect();
+    let places: Vec<String> = off.iter().take(6).map(|e| mm(*e)).collect();
     let more = if off.len() > 6 { format!(" and {} more", off.len() - 6) } else { String::new() };
     let note = format!(
-        "the mesh along {} is not quite uniform, cells measure {:.4} to {:.4} mm: edges between \
+        "the mesh along {} is not quite uniform, cells measure {} to {} mm: edges between \
          the uniform lines at {} mm{more}",
         axis.letter(),
-        low * 1e3,
-        high * 1e3,
+        size_mm(low),
+        size_mm(high),
         places.join(", ")
     );
     Ok(Uniform { lines, note: Some(note) })
@@ -131,7 +132,7 @@ mod tests {
         assert_eq!(found.lines.len(), 11);
         assert_eq!(found.lines[3], 0.033);
         let note = found.note.unwrap();
-        assert!(note.contains("33.0000") && note.contains("9.5714 to 11.0000 mm"), "{note}");
+        assert!(note.contains("at 33 mm") && note.contains("9.571 to 11 mm"), "{note}");
     }
 
     #[test]

@@ -140,7 +140,7 @@ fn edges_a_fraction_of_a_millimetre_apart_hardly_cost_anything() {
         assert!(more <= 40, "{more} more rows for a step of {step} m");
     }
     let found = generate(&layout(1e-5), &spacing).unwrap();
-    let place = "100.0000 to 100.0100 mm (0.0100 mm wide)";
+    let place = "100 to 100.01 mm (0.01 mm wide)";
     assert!(found.notes.iter().any(|n| n.contains(place)), "{:?}", found.notes);
 }
 
@@ -152,10 +152,10 @@ fn a_drawing_mistake_is_no_gap_and_a_narrow_gap_is_named() {
         ..section(0.5, 0.5)
     };
     let mistake = generate(&layout(1e-6), &spacing).unwrap();
-    let told = "gap from 250.0000 to 250.0010 mm along x (0.0010 mm): 1 instead of 8";
+    let told = "gap from 250 to 250.001 mm along x (0.001 mm): 1 instead of 8";
     assert!(mistake.notes.iter().any(|n| n.contains(told)), "{:?}", mistake.notes);
     let narrow = generate(&layout(2e-5), &spacing).unwrap();
-    let told = "gap from 250.0000 to 250.0200 mm along x (0.0200 mm): cells of 0.0025 mm";
+    let told = "gap from 250 to 250.02 mm along x (0.02 mm): cells of 0.0025 mm";
     assert!(narrow.notes.iter().any(|n| n.contains(told)), "{:?}", narrow.notes);
 }
 

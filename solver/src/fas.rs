@@ -17,8 +17,12 @@ use crate::simplec::{self, Smoothing, Work, smooth};
 use crate::transfer::Transfer;
 use crate::{Air, Control, Convection, Problem, Residuals, SolveError, State};
 
-/// Coarsening stops at about this many cells, few enough for the direct solution.
-const COARSEST_CELLS: usize = 6000;
+/// Cycles go down to the first mesh of at most so many cells, few enough for the direct solution.
+/// Where that mesh proves too coarse for the flow, the second number is tried.
+pub(crate) const COARSEST_CELLS: [usize; 2] = [2000, 6000];
+/// The nested start begins on a mesh of about so many cells, where a direct solution costs nearly
+/// nothing and many of them do no harm.
+const STARTING_CELLS: usize = 700;
 /// Largest flow over conductance of a face on coarser meshes: found best of 2, 4 and none on
 /// housings whose cells are large for their speeds.
 const COARSE_PECLET: f64 = 4.0;
@@ -34,18 +38,27 @@ pub(crate) struct Stack {
     coarse_problems: Vec<Problem>,
     transfers: Vec<Transfer>,
     work: Vec<Work>,
-    newton: Newton,
+    /// The coarsest level of the cycles; those beyond it serve the nested start only.
+    bottom: usize,
+    /// Of the levels from `bottom` on.
+    newton: Vec<Newton>,
     pub smoothing: Smoothing,
 }
 
 impl Stack {
-    pub fn new(problem: &Problem, air: &Air, convection: Convection) -> Stack {
+    pub fn new(
+        problem: &Problem,
+        air: &Air,
+        convection: Convection,
+        coarsest_cells: usize,
+    ) -> Stack {
         let mut levels = vec![Level::new(problem, air, convection)];
         let mut transfers = Vec::new();
         let mut links = Vec::new();
         let mut coarse_problems = Vec::new();
         let mut mesh = problem.mesh().clone();
-        while mesh.cell_count() > COARSEST_CELLS {
+        let mut bottom = 0;
+        while mesh.cell_count() > STARTING_CELLS {
             let Some(coarsening) = mesh.coarsened(LEAST_ACROSS) else { break };
             if coarsening.mesh.cell_count() * 5 > mesh.cell_count() * 4 {
                 break;
@@ -53,9 +66,10 @@ impl Stack {
             transfers.push(Transfer::new(&mesh, &coarsening));
             links.push(Link::new(&mesh, &coarsening));
             let coarse = coarse_problems.last().unwrap_or(problem).coarsened(&coarsening);
+            bottom += usize::from(mesh.cell_count() > coarsest_cells);
             mesh = coarsening.mesh;
             let mut level = Level::new(&coarse, air, convection);
-            level.peclet_limit = COARSE_PECLET;
+            level.slack = 1.0 / COARSE_PECLET;
             levels.push(level);
             coarse_problems.push(coarse);
         }
@@ -65,23 +79,29 @@ impl Stack {
         }
         let work =
             levels.iter().enumerate().map(|(l, level)| Work::new(level, &links[l..])).collect();
-        let newton = Newton::new(&levels[levels.len() - 1]);
-        Stack { levels, coarse_problems, transfers, work, newton, smoothing: Smoothing::STANDARD }
+        let newton = levels[bottom..].iter().map(Newton::new).collect();
+        let smoothing = Smoothing::STANDARD;
+        Stack { levels, coarse_problems, transfers, work, bottom, newton, smoothing }
     }
 
     /// Takes other constants for the air on every mesh.
     pub fn set_air(&mut self, problem: &Problem, air: &Air) {
         for (l, level) in self.levels.iter_mut().enumerate() {
             let problem = if l == 0 { problem } else { &self.coarse_problems[l - 1] };
-            let limit = level.peclet_limit;
+            let slack = level.slack;
             *level = Level::new(problem, air, level.convection);
-            level.peclet_limit = limit;
+            level.slack = slack;
         }
     }
 
     /// Number of meshes.
     pub fn depth(&self) -> usize {
         self.levels.len()
+    }
+
+    /// The coarsest level of the cycles, solved directly.
+    pub fn bottom(&self) -> usize {
+        self.bottom
     }
 
     pub fn level(&self, l: usize) -> &Level {
@@ -111,22 +131,23 @@ impl Stack {
         self.work[l].rhs.clone_from(&self.levels[l].source);
     }
 
-    /// Solves the coarsest mesh's own problem, all its sources times `strength`, by Newton's
-    /// method; `each` is asked after every step. Returns the largest relative residual reached.
-    pub fn solve_coarsest(
+    /// Solves the own problem of level `l` (from `bottom` on), all its sources times `strength`, by
+    /// Newton's method; `each` is asked after every step. Returns the largest relative residual
+    /// reached.
+    pub fn solve_directly(
         &mut self,
+        l: usize,
         tolerance: f64,
         from_rest: bool,
         strength: f64,
         each: &mut dyn FnMut(Residuals) -> Control,
     ) -> Result<f64, SolveError> {
-        let l = self.levels.len() - 1;
         self.pose(l);
         let source = self.levels[l].source.clone();
         each_field(&mut self.work[l].rhs, &source, |rhs, source| *rhs = strength * source);
         let (level, work) = (&self.levels[l], &mut self.work[l]);
         let scales = residual::scales(level, &work.state);
-        self.newton.solve(
+        self.newton[l - self.bottom].solve(
             level,
             &mut work.state,
             &work.rhs,
@@ -138,8 +159,7 @@ impl Stack {
 
     /// Writes level `l`'s equations exactly (or with the coarser meshes' added diffusion again).
     pub fn set_exact(&mut self, l: usize, exact: bool) {
-        let limit = if exact || l == 0 { f64::INFINITY } else { COARSE_PECLET };
-        self.levels[l].peclet_limit = limit;
+        self.levels[l].slack = if exact || l == 0 { 0.0 } else { 1.0 / COARSE_PECLET };
     }
 
     /// The finest level of at most `cells` cells (else the coarsest), with the finest state
@@ -161,7 +181,7 @@ impl Stack {
 
     /// Restores the mass balance of level `l` to round-off.
     pub fn restore_mass(&mut self, l: usize) {
-        if l + 1 < self.levels.len() {
+        if l < self.bottom {
             simplec::restore_mass(&self.levels[l], &mut self.work[l]);
         }
     }
@@ -207,15 +227,31 @@ impl Stack {
         acceleration.step(&self.levels[l], state, rhs, residual, scales);
     }
 
+    /// Residuals of level `l`'s state.
+    pub fn evaluate(&mut self, l: usize) {
+        let Work { state, rhs, residual, .. } = &mut self.work[l];
+        residual::evaluate(&self.levels[l], state, rhs, residual);
+    }
+
+    /// One smoothing iteration on level `l`.
+    pub fn smooth(&mut self, l: usize) {
+        smooth(&self.levels[l], &mut self.work[l], &self.smoothing);
+    }
+
+    /// One pressure correction on level `l`, to the reduction the smoothing asks.
+    pub fn correct_pressure(&mut self, l: usize) {
+        simplec::correct_pressure(&self.levels[l], &mut self.work[l], &self.smoothing);
+    }
+
     /// One cycle from level `l` down to the coarsest and back.
     pub fn cycle(&mut self, l: usize) -> Result<(), SolveError> {
         let smoothing = self.smoothing;
-        if l + 1 == self.levels.len() {
+        if l == self.bottom {
             let (level, work) = (&self.levels[l], &mut self.work[l]);
             let scales = residual::scales(level, &work.state);
             residual::evaluate(level, &work.state, &work.rhs, &mut work.residual);
             let now = residual::relative(level, &work.residual, &scales).largest();
-            self.newton.solve(
+            self.newton[0].solve(
                 level,
                 &mut work.state,
                 &work.rhs,

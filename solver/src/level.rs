@@ -22,6 +22,8 @@ pub(crate) struct Opening {
     pub cell: usize,
     /// The face: index into `u` (left, right) or `v` (bottom, top).
     pub face: usize,
+    /// Its place along the side.
+    pub place: usize,
     /// +1 where the outward direction is that of the axis, else −1.
     pub outward: f64,
     /// Area [m²].
@@ -40,9 +42,9 @@ pub(crate) struct Level {
     pub air: Air,
     pub gravity: [f64; 2],
     pub convection: Convection,
-    /// Largest flow over conductance of a face [-]; beyond it diffusion is added. Infinite on the
-    /// finest mesh, whose equations are to be exact.
-    pub peclet_limit: f64,
+    /// Inverse of the largest flow over conductance of a face [-]; beyond that diffusion is added.
+    /// Zero on the finest mesh, whose equations are to be exact.
+    pub slack: f64,
     pub dx: Vec<f64>,
     pub dy: Vec<f64>,
     /// Area of x-faces per height [m²/m], nx + 1.
@@ -77,6 +79,8 @@ pub(crate) struct Level {
     /// Conductivities of the cells [W/(m·K)], for interpolation across interfaces.
     pub conductivity: Vec<[f32; 2]>,
     pub openings: [Vec<Opening>; 4],
+    /// Loss coefficient K of every boundary face by side, zero where it is closed.
+    pub loss: [Vec<f64>; 4],
     /// 0 on open sides, where air moves freely along the side; 1 elsewhere. By side.
     pub sticks: [f64; 4],
     /// Given forces [N], mass [kg/s] and heat [W] of this mesh's own problem.
@@ -94,6 +98,11 @@ impl Level {
         let (nx, ny) = (mesh.nx(), mesh.ny());
         let fluid: Vec<bool> = mesh.regions().iter().map(|r| *r == AIR).collect();
         let openings = Side::ALL.map(|side| openings(problem, side));
+        let loss = Side::ALL.map(|side| {
+            let mut loss = vec![0.0; mesh.slots(side).len()];
+            openings[side.index()].iter().for_each(|o| loss[o.place] = o.loss);
+            loss
+        });
         let (mut u_open, mut v_open) = (vec![0.0; (nx + 1) * ny], vec![0.0; nx * (ny + 1)]);
         for j in 0..ny {
             for i in 1..nx {
@@ -137,7 +146,7 @@ impl Level {
             air: *air,
             gravity: d.gravity,
             convection,
-            peclet_limit: f64::INFINITY,
+            slack: 0.0,
             dx: (0..nx).map(|i| mesh.dx(i)).collect(),
             dy: (0..ny).map(|j| mesh.dy(j)).collect(),
             x_area: (0..=nx).map(|i| mesh.x_area(i)).collect(),
@@ -162,6 +171,7 @@ impl Level {
                 .map(|n| crate::conduction::cell_conductivity(problem, air, n).map(|k| k as f32))
                 .collect(),
             openings,
+            loss,
             sticks: Side::ALL.map(|s| match d.sides[s.index()] {
                 SideCondition::Open => 0.0,
                 _ => 1.0,
@@ -415,7 +425,16 @@ fn openings(problem: &Problem, side: Side) -> Vec<Opening> {
             Side::Bottom => (n, -1.0),
             Side::Top => (n + ny * nx, 1.0),
         };
-        found.push(Opening { cell, face, outward, area: side_area(problem, side, n), loss, drive });
+        let place = n;
+        found.push(Opening {
+            cell,
+            face,
+            place,
+            outward,
+            area: side_area(problem, side, n),
+            loss,
+            drive,
+        });
     }
     found
 }

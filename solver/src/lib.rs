@@ -19,8 +19,10 @@ mod linear;
 mod newton;
 mod numbers;
 mod par;
+mod pieces;
 mod probe;
 mod problem;
+mod radiation;
 mod residual;
 pub mod samples;
 mod settings;
@@ -31,6 +33,7 @@ mod stability;
 mod state;
 mod sway;
 mod transfer;
+mod transient;
 
 pub use air::{Air, AirModel, standard_pressure};
 pub use balance::{Balance, OpeningFlow, REST_SPEED, SideFlow, balance, side_flows, slot_flows};
@@ -40,9 +43,14 @@ pub use numbers::{
     Numbers, PartTemperature, block_temperatures, cell_velocities, heat_fluxes, numbers,
     part_temperatures,
 };
+pub use pieces::Pieces;
 pub use probe::{Sample, Sampler};
 pub use problem::{Block, Description, Problem, Solid, Sources};
-pub use settings::{Convection, DRIFT_BOUND, HEAT_BOUND, MASS_BOUND, Settings};
+pub use radiation::{
+    Backing, Correction, Face, Owner, PATCH_COUNT, Patch, Radiation, RadiationError,
+    RadiationSource, STEFAN_BOLTZMANN, SideSurface, Surfaces,
+};
+pub use settings::{Convection, DRIFT_BOUND, HEAT_BOUND, MASS_BOUND, SOLVED, Settings};
 pub use solution::{Control, Progress, Residuals, Solution, StopReason, Verdict};
 pub use solve::solve;
 pub use state::State;

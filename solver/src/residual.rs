@@ -3,33 +3,21 @@
 use crate::equations::{energy, mass, momentum};
 use crate::level::Level;
 use crate::{Residuals, State, par};
-use ventrise_mesh::Side;
 
-/// All residuals of a state with the given right-hand sides, into `out` (mass in `p`).
+/// All residuals of a state with the given right-hand sides, into `out` (mass in `p`). One pass:
+/// what a row reads stays near for all four equations.
 pub(crate) fn evaluate(level: &Level, state: &State, rhs: &State, out: &mut State) {
-    let nx = level.nx;
-    par::each_row(&mut out.u, nx + 1, |j, row| {
-        momentum::x_row(level, state, &rhs.u, j, |i, r, _| row[i] = r);
+    let (nx, ny) = (level.nx, level.ny);
+    let State { u, v, p, t } = out;
+    let (v, v_last) = v.split_at_mut(nx * ny);
+    let arrays = [(&mut p[..], nx), (&mut t[..], nx), (v, nx), (&mut u[..], nx + 1)];
+    par::each_rows(arrays, |j, [p, t, v, u]| {
+        momentum::x_row(level, state, &rhs.u, j, |i, r, _| u[i] = r);
+        momentum::y_row(level, state, &rhs.v, j, |i, r, _| v[i] = r);
+        mass::row(level, state, &rhs.p, j, |i, r| p[i] = r);
+        energy::row(level, state, &rhs.t, j, |i, r, _| t[i] = r);
     });
-    par::each_row(&mut out.v, nx, |j, row| {
-        momentum::y_row(level, state, &rhs.v, j, |i, r, _| row[i] = r);
-    });
-    for side in Side::ALL {
-        let (speeds, forces) = match side {
-            Side::Left | Side::Right => (&state.u, &mut out.u),
-            Side::Bottom | Side::Top => (&state.v, &mut out.v),
-        };
-        for o in &level.openings[side.index()] {
-            let speed = speeds[o.face];
-            let [force, _] =
-                momentum::opening_force(level.air.density, o.area, o.loss, o.outward, speed);
-            forces[o.face] += force;
-        }
-    }
-    par::each_row(&mut out.p, nx, |j, row| mass::row(level, state, &rhs.p, j, row));
-    par::each_row(&mut out.t, nx, |j, row| {
-        energy::row(level, state, &rhs.t, j, |i, r, _| row[i] = r);
-    });
+    momentum::y_row(level, state, &rhs.v, ny, |i, r, _| v_last[i] = r);
 }
 
 /// What the residuals are compared with.
@@ -39,7 +27,7 @@ pub(crate) struct Scales {
     pub mass: f64,
     /// Sum of the sizes of buoyancy, pressure and opening forces over the control volumes [N].
     pub force: f64,
-    /// Heat put in by blocks and sides [W].
+    /// Heat put in by blocks and sides, or taken out by them, whichever is more [W].
     pub heat: f64,
 }
 
@@ -62,8 +50,8 @@ fn creep(level: &Level) -> f64 {
 pub(crate) fn scales(level: &Level, state: &State) -> Scales {
     let (nx, ny) = (level.nx, level.ny);
     let lift = level.gravity.map(|g| (level.air.density * level.air.expansion * g).abs());
-    let [force, heat, gross] = par::sum_rows(ny, nx, |j| {
-        let (mut force, mut heat, mut gross) = (0.0, 0.0, 0.0);
+    let [force, heat_in, heat_out, gross] = par::sum_rows(ny, nx, |j| {
+        let (mut force, mut heat_in, mut heat_out, mut gross) = (0.0, 0.0, 0.0, 0.0);
         for i in 0..nx {
             let n = i + j * nx;
             let (t, p) = (state.t[n], state.p[n]);
@@ -78,9 +66,11 @@ pub(crate) fn scales(level: &Level, state: &State) -> Scales {
                 }
             }
             gross += level.source.t[n].abs();
-            heat += (level.source.t[n] - level.side_conductance[n] * t).max(0.0);
+            let heat = level.source.t[n] - level.side_conductance[n] * t;
+            heat_in += heat.max(0.0);
+            heat_out += (-heat).max(0.0);
         }
-        [force, heat, gross]
+        [force, heat_in, heat_out, gross]
     });
     // Half of the flows' sizes across a line is what circulates through it in a closed cavity.
     let mut through = 0.0_f64;
@@ -99,7 +89,7 @@ pub(crate) fn scales(level: &Level, state: &State) -> Scales {
     Scales {
         mass: through.max(0.5 * across).max(level.air.density * creep),
         force: force.max(level.air.viscosity / level.extent() * creep),
-        heat: heat.max(LEAST_HEAT * gross),
+        heat: heat_in.max(heat_out).max(LEAST_HEAT * gross),
     }
 }
 

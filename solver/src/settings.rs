@@ -17,6 +17,9 @@ pub const MASS_BOUND: f64 = 1e-9;
 /// iteration, relative to the largest rise of any part.
 pub const DRIFT_BOUND: f64 = 1e-4;
 
+/// Largest relative residual with which a state may be read as a solution at all, settled or not.
+pub const SOLVED: f64 = 1e-2;
+
 /// Settings of a run.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Settings {

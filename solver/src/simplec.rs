@@ -8,14 +8,12 @@
 //! # Source
 //! van-doormaal-1984 (SIMPLEC), patankar-1980 (SIMPLE).
 
-use ventrise_mesh::Side;
-
 use crate::equations::{energy, mass, momentum};
 use crate::level::Level;
 use crate::linear::krylov::{self, KrylovWork};
 use crate::linear::multigrid::{Link, Multigrid};
 use crate::linear::relaxation::{self, LineWork};
-use crate::linear::stencil::Coefficients;
+use crate::linear::stencil::{Coefficients, Stencil};
 use crate::{State, par};
 
 /// How strongly an iteration is damped and how much it does.
@@ -51,10 +49,11 @@ pub(crate) struct Work {
     /// The state restricted from the finer mesh, then the change carried back to it.
     pub start: State,
     pub residual: State,
-    stencil: Vec<Coefficients>,
-    change: Vec<f64>,
-    x_response: Vec<f64>,
-    y_response: Vec<f64>,
+    stencil: Stencil,
+    right: Vec<f32>,
+    change: Vec<f32>,
+    x_response: Vec<f32>,
+    y_response: Vec<f32>,
     line: LineWork,
     multigrid: Multigrid,
     krylov: KrylovWork,
@@ -72,12 +71,13 @@ impl Work {
             rhs: fields(),
             start: fields(),
             residual: fields(),
-            stencil: vec![Coefficients::default(); most],
+            stencil: Stencil::new(level.nx, most),
+            right: vec![0.0; most],
             change: vec![0.0; most],
             x_response: vec![0.0; u],
             y_response: vec![0.0; v],
             line: LineWork::new(most),
-            multigrid: Multigrid::new(level.nx, cells, chain),
+            multigrid: Multigrid::new(cells, chain),
             krylov: KrylovWork::new(cells),
         }
     }
@@ -91,77 +91,64 @@ pub(crate) fn smooth(level: &Level, work: &mut Work, smoothing: &Smoothing) {
 }
 
 fn momentum_step(level: &Level, work: &mut Work, smoothing: &Smoothing) {
-    let Work { state, rhs, residual, stencil, change, x_response, y_response, line, .. } = work;
+    let Work { state, rhs, stencil, right, change, x_response, y_response, line, .. } = work;
     let nx = level.nx;
     let relaxation = smoothing.velocity;
-    {
-        let stencil = &mut stencil[..state.u.len()];
-        par::each_row2((stencil, nx + 1), (&mut residual.u, nx + 1), |j, stencil, row| {
-            momentum::x_row(level, state, &rhs.u, j, |i, r, c| (row[i], stencil[i]) = (r, c));
+    // A velocity's answer to a pressure difference: area over the diagonal less the neighbours.
+    let response = |area: f64, open: f64, c: &Coefficients| (area * open / c.rest) as f32;
+
+    stencil.shape(nx + 1, state.u.len());
+    let [rest, w, e, s, n] = stencil.arrays();
+    let right_u = &mut right[..state.u.len()];
+    let arrays = [rest, w, e, s, n, (&mut *right_u, nx + 1), (&mut x_response[..], nx + 1)];
+    par::each_rows(arrays, |j, [rest, w, e, s, n, right, answer]| {
+        let open = &level.u_open[j * (nx + 1)..(j + 1) * (nx + 1)];
+        momentum::x_row(level, state, &rhs.u, j, |i, r, c| {
+            let c = if open[i] > 0.0 { c.relaxed(relaxation) } else { c };
+            store(i, &c, [rest, w, e, s, n]);
+            right[i] = r as f32;
+            answer[i] = response(level.x_area[i] * level.dy[j], open[i], &c);
         });
-        open_faces(level, [Side::Left, Side::Right], &state.u, stencil, &mut residual.u);
-        par::each_row2((stencil, nx + 1), (x_response, nx + 1), |j, stencil, response| {
-            for (i, (c, d)) in stencil.iter_mut().zip(response).enumerate() {
-                let area = level.x_area[i] * level.dy[j] * level.u_open[i + j * (nx + 1)];
-                relax(c, relaxation);
-                *d = area / (c.p - c.neighbours());
-            }
+    });
+    solve(stencil, change, right_u, smoothing.sweeps, line);
+    par::add(&mut state.u, &change[..right_u.len()], nx + 1);
+
+    stencil.shape(nx, state.v.len());
+    let [rest, w, e, s, n] = stencil.arrays();
+    let right_v = &mut right[..state.v.len()];
+    let arrays = [rest, w, e, s, n, (&mut *right_v, nx), (&mut y_response[..], nx)];
+    par::each_rows(arrays, |j, [rest, w, e, s, n, right, answer]| {
+        let open = &level.v_open[j * nx..(j + 1) * nx];
+        momentum::y_row(level, state, &rhs.v, j, |i, r, c| {
+            let c = if open[i] > 0.0 { c.relaxed(relaxation) } else { c };
+            store(i, &c, [rest, w, e, s, n]);
+            right[i] = r as f32;
+            answer[i] = response(level.y_area[i], open[i], &c);
         });
-        let change = &mut change[..state.u.len()];
-        change.fill(0.0);
-        for _ in 0..smoothing.sweeps {
-            relaxation::sweep(stencil, change, &residual.u, nx + 1, line);
-        }
-        par::add_scaled(&mut state.u, 1.0, change, nx + 1);
-    }
-    let stencil = &mut stencil[..state.v.len()];
-    par::each_row2((stencil, nx), (&mut residual.v, nx), |j, stencil, row| {
-        momentum::y_row(level, state, &rhs.v, j, |i, r, c| (row[i], stencil[i]) = (r, c));
     });
-    open_faces(level, [Side::Bottom, Side::Top], &state.v, stencil, &mut residual.v);
-    par::each_row2((stencil, nx), (y_response, nx), |j, stencil, response| {
-        for (i, (c, d)) in stencil.iter_mut().zip(response).enumerate() {
-            let area = level.y_area[i] * level.v_open[i + j * nx];
-            relax(c, relaxation);
-            *d = area / (c.p - c.neighbours());
-        }
-    });
-    let change = &mut change[..state.v.len()];
+    solve(stencil, change, right_v, smoothing.sweeps, line);
+    par::add(&mut state.v, &change[..right_v.len()], nx);
+}
+
+/// Puts a row's coefficients into place i of the stencil's arrays.
+#[inline(always)]
+fn store(i: usize, c: &Coefficients, arrays: [&mut [f32]; 5]) {
+    let values = [c.rest, c.w, c.e, c.s, c.n];
+    arrays.into_iter().zip(values).for_each(|(array, value)| array[i] = value as f32);
+}
+
+/// The change that so many line sweeps find from zero.
+fn solve(a: &Stencil, change: &mut [f32], right: &[f32], sweeps: usize, line: &mut LineWork) {
+    let change = &mut change[..right.len()];
     change.fill(0.0);
-    for _ in 0..smoothing.sweeps {
-        relaxation::sweep(stencil, change, &residual.v, nx, line);
-    }
-    par::add_scaled(&mut state.v, 1.0, change, nx);
-}
-
-/// Divides the diagonal of an unknown by the under-relaxation.
-fn relax(c: &mut Coefficients, relaxation: f64) {
-    if *c != Coefficients::FIXED {
-        c.p /= relaxation;
+    for _ in 0..sweeps {
+        relaxation::sweep(a, change, right, line);
     }
 }
 
-/// Adds the openings' forces and their slopes.
-fn open_faces(
-    level: &Level,
-    sides: [Side; 2],
-    speeds: &[f64],
-    stencil: &mut [Coefficients],
-    residual: &mut [f64],
-) {
-    for side in sides {
-        for o in &level.openings[side.index()] {
-            let [force, slope] = momentum::opening_force(
-                level.air.density,
-                o.area,
-                o.loss,
-                o.outward,
-                speeds[o.face],
-            );
-            residual[o.face] += force;
-            stencil[o.face].p += slope;
-        }
-    }
+/// The pressure correction of one iteration alone.
+pub(crate) fn correct_pressure(level: &Level, work: &mut Work, smoothing: &Smoothing) {
+    pressure_step(level, work, smoothing.pressure);
 }
 
 /// Restores the mass balance of every cell to round-off, with the responses of the last iteration.
@@ -175,41 +162,52 @@ const MASS_RESTORED: (f64, usize) = (1e-6, 30);
 /// Corrects pressure and velocities so that every cell's mass balance is met to the reduction
 /// asked; returns the reduction reached.
 fn pressure_step(level: &Level, work: &mut Work, limits: (f64, usize)) -> f64 {
-    let Work { state, rhs, residual, stencil, change, x_response, y_response, .. } = work;
+    let Work { state, rhs, stencil, right, change, x_response, y_response, .. } = work;
     let (nx, ny) = (level.nx, level.ny);
     let cells = nx * ny;
-    let density = level.air.density;
-    let stencil = &mut stencil[..cells];
-    par::each_row2((stencil, nx), (&mut residual.p, nx), |j, stencil, row| {
-        mass::row(level, state, &rhs.p, j, row);
-        for (i, c) in stencil.iter_mut().enumerate() {
-            if !level.fluid[i + j * nx] {
-                *c = Coefficients::FIXED;
-                continue;
-            }
-            let f = i + j * (nx + 1);
-            let west = density * level.x_area[i] * level.dy[j] * x_response[f];
-            let east = density * level.x_area[i + 1] * level.dy[j] * x_response[f + 1];
-            let south = density * level.y_area[i] * y_response[i + j * nx];
-            let north = density * level.y_area[i] * y_response[i + (j + 1) * nx];
+    stencil.shape(nx, cells);
+    let right = &mut right[..cells];
+    let [rest, w, e, s, n] = stencil.arrays();
+    let arrays = [rest, w, e, s, n, (&mut *right, nx)];
+    par::each_rows(arrays, |j, [rest, w, e, s, n, right]| {
+        let fluid = &level.fluid[j * nx..(j + 1) * nx];
+        let x_answer = &x_response[j * (nx + 1)..(j + 1) * (nx + 1)];
+        let (low, high) = y_response[j * nx..(j + 2) * nx].split_at(nx);
+        let density = level.air.density as f32;
+        let height = density * level.dy[j] as f32;
+        let (at_bottom, at_top) = (j == 0, j + 1 == ny);
+        mass::row(level, state, &rhs.p, j, |i, r| {
+            right[i] = r as f32;
+            let flat = level.y_area[i] as f32 * density;
+            let links = [
+                height * level.x_area[i] as f32 * x_answer[i],
+                height * level.x_area[i + 1] as f32 * x_answer[i + 1],
+                flat * low[i],
+                flat * high[i],
+            ];
             // Outside the section the correction is zero.
-            *c = Coefficients {
-                p: (west + east + south + north).max(f64::MIN_POSITIVE),
-                w: if i > 0 { west } else { 0.0 },
-                e: if i + 1 < nx { east } else { 0.0 },
-                s: if j > 0 { south } else { 0.0 },
-                n: if j + 1 < ny { north } else { 0.0 },
-            };
-        }
+            let outside = [i == 0, i + 1 == nx, at_bottom, at_top];
+            let mut out = if fluid[i] { f32::MIN_POSITIVE } else { 1.0 };
+            let mut inside = [0.0; 4];
+            for k in 0..4 {
+                if outside[k] {
+                    out += links[k];
+                } else {
+                    inside[k] = links[k];
+                }
+            }
+            rest[i] = out;
+            [w[i], e[i], s[i], n[i]] = inside;
+        });
     });
     for region in &level.closed_regions {
-        balance(region, &mut residual.p);
+        balance(region, right);
     }
     let change = &mut change[..cells];
     let info = krylov::conjugate_gradients(
-        (stencil, nx),
+        stencil,
         change,
-        &residual.p,
+        right,
         limits,
         &mut work.multigrid,
         &mut work.krylov,
@@ -218,49 +216,58 @@ fn pressure_step(level: &Level, work: &mut Work, limits: (f64, usize)) -> f64 {
         balance(region, change);
     }
     let change = &*change;
-    par::add_scaled(&mut state.p, 1.0, change, nx);
+    par::add(&mut state.p, change, nx);
     par::each_row(&mut state.u, nx + 1, |j, row| {
-        for (i, u) in row.iter_mut().enumerate() {
-            let west = if i > 0 { change[i - 1 + j * nx] } else { 0.0 };
-            let east = if i < nx { change[i + j * nx] } else { 0.0 };
-            *u += x_response[i + j * (nx + 1)] * (west - east);
+        let change = &change[j * nx..(j + 1) * nx];
+        let answer = &x_response[j * (nx + 1)..(j + 1) * (nx + 1)];
+        row[0] -= f64::from(answer[0] * change[0]);
+        row[nx] += f64::from(answer[nx] * change[nx - 1]);
+        for i in 1..nx {
+            row[i] += f64::from(answer[i] * (change[i - 1] - change[i]));
         }
     });
     par::each_row(&mut state.v, nx, |j, row| {
-        for (i, v) in row.iter_mut().enumerate() {
-            let south = if j > 0 { change[i + (j - 1) * nx] } else { 0.0 };
-            let north = if j < ny { change[i + j * nx] } else { 0.0 };
-            *v += y_response[i + j * nx] * (south - north);
+        let answer = &y_response[j * nx..(j + 1) * nx];
+        if j > 0 {
+            let below = &change[(j - 1) * nx..j * nx];
+            row.iter_mut().zip(answer.iter().zip(below)).for_each(|(v, (d, p))| {
+                *v += f64::from(d * p);
+            });
+        }
+        if j < ny {
+            let above = &change[j * nx..(j + 1) * nx];
+            row.iter_mut().zip(answer.iter().zip(above)).for_each(|(v, (d, p))| {
+                *v -= f64::from(d * p);
+            });
         }
     });
     info.residual
 }
 
 /// Takes the mean out of the values in a closed region.
-fn balance(region: &[u32], values: &mut [f64]) {
-    let sum: f64 = region.iter().map(|n| values[*n as usize]).sum();
-    let mean = sum / region.len() as f64;
+fn balance(region: &[u32], values: &mut [f32]) {
+    let sum: f64 = region.iter().map(|n| f64::from(values[*n as usize])).sum();
+    let mean = (sum / region.len() as f64) as f32;
     region.iter().for_each(|n| values[*n as usize] -= mean);
 }
 
 fn energy_step(level: &Level, work: &mut Work, smoothing: &Smoothing) {
-    let Work { state, rhs, residual, stencil, change, line, .. } = work;
+    let Work { state, rhs, stencil, right, change, line, .. } = work;
     let nx = level.nx;
     let cells = state.t.len();
-    let stencil = &mut stencil[..cells];
-    par::each_row2((stencil, nx), (&mut residual.t, nx), |j, stencil, row| {
-        energy::row(level, state, &rhs.t, j, |i, r, mut c| {
+    stencil.shape(nx, cells);
+    let right = &mut right[..cells];
+    let [rest, w, e, s, n] = stencil.arrays();
+    let arrays = [rest, w, e, s, n, (&mut *right, nx)];
+    par::each_rows(arrays, |j, [rest, w, e, s, n, right]| {
+        let fluid = &level.fluid[j * nx..(j + 1) * nx];
+        energy::row(level, state, &rhs.t, j, |i, r, c| {
             // Blocks are never relaxed: their heat must find its way out at once.
-            if level.fluid[i + j * nx] {
-                c.p /= smoothing.temperature;
-            }
-            (row[i], stencil[i]) = (r, c);
+            let c = if fluid[i] { c.relaxed(smoothing.temperature) } else { c };
+            store(i, &c, [rest, w, e, s, n]);
+            right[i] = r as f32;
         });
     });
-    let change = &mut change[..cells];
-    change.fill(0.0);
-    for _ in 0..smoothing.sweeps {
-        relaxation::sweep(stencil, change, &residual.t, nx, line);
-    }
-    par::add_scaled(&mut state.t, 1.0, change, nx);
+    solve(stencil, change, right, smoothing.sweeps, line);
+    par::add(&mut state.t, &change[..cells], nx);
 }

@@ -78,6 +78,8 @@ pub enum Verdict {
         growth: Option<f64>,
         /// Lowest and highest `part_max` [K] of every part over the last oscillations.
         band: Vec<[f64; 2]>,
+        /// Lowest and highest net flow in through every slot [m³/s] over them.
+        slot_band: Vec<[f64; 2]>,
     },
     /// Temperatures still creep.
     Drifting,

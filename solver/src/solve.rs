@@ -2,11 +2,11 @@
 
 use crate::acceleration::Acceleration;
 use crate::balance::balance;
-use crate::fas::Stack;
+use crate::fas::{COARSEST_CELLS, Stack};
 use crate::film::film_rise;
 use crate::numbers::part_temperatures;
 use crate::residual::Scales;
-use crate::settings::{DRIFT_BOUND, HEAT_BOUND, MASS_BOUND};
+use crate::settings::{DRIFT_BOUND, HEAT_BOUND, MASS_BOUND, SOLVED};
 use crate::simplec::Smoothing;
 use crate::sway::{self, Finding};
 use crate::{
@@ -27,6 +27,12 @@ const BUILD_UP: [f64; 3] = [1.0 / 1024.0, 8.0, 1.05];
 const BUILD_UP_STEPS: usize = 30;
 /// The air's constants are renewed while the film temperature moves by more than this [K].
 const FILM_BOUND: f64 = 0.02;
+/// Residual at which the film temperature of the finest mesh is first taken, and the reduction
+/// after which it is taken again.
+const FIRST_FILM_CHECK: f64 = 3e-2;
+const FILM_CHECKS: f64 = 0.03;
+/// Residual over the tolerance from which on the mass balance is restored after every cycle.
+const NEARLY: f64 = 30.0;
 /// Cycles within which the residual must at least halve; else the smoothing is damped more.
 const PATIENCE: usize = 12;
 /// Growth of the residual over the best one that counts as divergence.
@@ -54,12 +60,16 @@ pub fn solve(
     start: Option<State>,
     watch: &mut dyn FnMut(&Progress) -> Control,
 ) -> Result<Solution, SolveError> {
-    let mut run = Run::new(problem, settings, watch);
-    let stop = match start {
-        Some(state) if state.fits(problem.mesh()) => run.resume(&state)?,
-        _ => run.start_from_rest()?,
+    let mut run = Run::new(problem, settings, watch, COARSEST_CELLS[0]);
+    let mut ended = match start {
+        Some(state) if state.fits(problem.mesh()) => run.resume(&state),
+        _ => run.start_from_rest(),
     };
-    let (stop, verdict) = run.judge(stop)?;
+    let failed = matches!(ended, Ok(StopReason::Stalled) | Err(SolveError::Broke { .. }));
+    if failed && run.go_down_less() {
+        ended = run.start_from_rest();
+    }
+    let (stop, verdict) = run.judge(ended?)?;
     Ok(run.solution(stop, verdict))
 }
 
@@ -88,23 +98,54 @@ impl<'a> Run<'a> {
         problem: &'a Problem,
         settings: &'a Settings,
         watch: &'a mut dyn FnMut(&Progress) -> Control,
+        coarsest_cells: usize,
     ) -> Self {
         let d = problem.description();
         let air = match d.air {
             AirModel::Given(air) => air,
             AirModel::Film { pressure } => Air::dry(d.ambient, pressure),
         };
-        let stack = Stack::new(problem, &air, settings.convection);
+        let stack = Stack::new(problem, &air, settings.convection, coarsest_cells);
         Run { problem, settings, watch, stack, history: Vec::new(), notes: Vec::new(), film: 0.0 }
+    }
+
+    /// Ends the cycles on a finer mesh than before, where there is one; all else begins anew.
+    fn go_down_less(&mut self) -> bool {
+        let air = self.stack.level(0).air;
+        let convection = self.settings.convection;
+        let stack = Stack::new(self.problem, &air, convection, COARSEST_CELLS[1]);
+        if stack.bottom() >= self.stack.bottom() {
+            return false;
+        }
+        self.stack = stack;
+        self.note("the coarsest mesh was too coarse for this flow: begun again on a finer".into());
+        true
     }
 
     /// Coarsest mesh first, each finer one from the next coarser.
     fn start_from_rest(&mut self) -> Result<StopReason, SolveError> {
-        let coarsest = self.stack.depth() - 1;
-        if let Some(stop) = self.start_coarsest(coarsest, true)? {
+        let bottom = self.stack.bottom();
+        let mut from_rest = true;
+        for l in (bottom + 1..self.stack.depth()).rev() {
+            if !from_rest {
+                self.stack.start_from_coarser(l);
+            }
+            let (end, stop) = self.newton(l, NESTED_TARGET, from_rest, 1.0)?;
+            if let Some(stop) = stop {
+                self.lift_to_finest(l);
+                return Ok(stop);
+            }
+            // What a coarser mesh could not solve is no start for a finer one.
+            from_rest = end > NESTED_TARGET;
+            self.renew_air(l);
+        }
+        if !from_rest {
+            self.stack.start_from_coarser(bottom);
+        }
+        if let Some(stop) = self.start_bottom(bottom, from_rest)? {
             return Ok(stop);
         }
-        self.climb(coarsest)
+        self.climb(bottom)
     }
 
     /// From the state of level `from` to the finest, each level from the next coarser.
@@ -142,8 +183,8 @@ impl<'a> Run<'a> {
     fn resume(&mut self, state: &State) -> Result<StopReason, SolveError> {
         self.stack.set_state(0, state);
         self.stack.pose(0);
-        if self.stack.depth() == 1 {
-            let ended = self.start_coarsest(0, false)?;
+        if self.stack.bottom() == 0 {
+            let ended = self.start_bottom(0, false)?;
             return Ok(ended.unwrap_or(StopReason::Converged));
         }
         self.renew_air(0);
@@ -164,28 +205,35 @@ impl<'a> Run<'a> {
         }
     }
 
-    /// Newton's method on the coarsest mesh, with the film temperature.
-    fn start_coarsest(
+    /// Newton's method on the coarsest mesh of the cycles, with the film temperature.
+    fn start_bottom(
         &mut self,
         l: usize,
         from_rest: bool,
     ) -> Result<Option<StopReason>, SolveError> {
         let finest = l == 0;
         let target = if finest { 1e-2 * self.settings.tolerance } else { COARSEST_TARGET };
-        let mut from_rest = from_rest;
+        let mut fresh = from_rest;
         let mut end = 0.0;
         let mut converged = false;
         for _ in 0..8 {
-            let mut stopped;
-            (end, stopped) = self.newton(l, target, from_rest, 1.0)?;
-            if from_rest && end > NESTED_TARGET && !stopped {
-                (end, stopped) = self.build_up(l, target)?;
+            let mut stop;
+            (end, stop) = self.newton(l, target, fresh, 1.0)?;
+            if !fresh && end > NESTED_TARGET && stop.is_none() {
+                let mesh = self.stack.problem(l).unwrap_or(self.problem).mesh();
+                let rest = State::rest(mesh);
+                self.stack.set_state(l, &rest);
+                (end, stop) = self.newton(l, target, true, 1.0)?;
+                fresh = true;
             }
-            if stopped {
+            if fresh && end > NESTED_TARGET && stop.is_none() {
+                (end, stop) = self.build_up(l, target)?;
+            }
+            if stop.is_some() {
                 self.lift_to_finest(l);
-                return Ok(Some(StopReason::Asked));
+                return Ok(stop);
             }
-            from_rest = false;
+            fresh = false;
             converged = end <= self.settings.tolerance.max(target);
             if !self.renew_air(l) {
                 break;
@@ -206,33 +254,37 @@ impl<'a> Run<'a> {
         Ok(None)
     }
 
-    /// Newton's method on the coarsest level `l`; the residual reached and whether the caller
-    /// stopped it.
+    /// Newton's method on level `l`; the residual reached and why it was stopped, if it was.
     fn newton(
         &mut self,
         l: usize,
         target: f64,
         from_rest: bool,
         strength: f64,
-    ) -> Result<(f64, bool), SolveError> {
-        let (mut rows, mut stop) = (Vec::new(), Control::Continue);
-        let (iteration, cells) = (self.history.len(), self.stack.cells(l));
+    ) -> Result<(f64, Option<StopReason>), SolveError> {
+        let (mut rows, mut stop) = (Vec::new(), None);
+        let (before, cells) = (self.history.len(), self.stack.cells(l));
+        let limit = self.settings.max_iterations;
         let watch = &mut self.watch;
         let mut each = |residuals: Residuals| {
-            let iteration = iteration + rows.len() + 1;
+            let iteration = before + rows.len() + 1;
             let row = Progress { iteration, cells, residuals, ..Progress::default() };
-            stop = watch(&row);
+            if watch(&row) == Control::Stop {
+                stop = Some(StopReason::Asked);
+            } else if iteration >= limit {
+                stop = Some(StopReason::IterationLimit);
+            }
             rows.push(row);
-            stop
+            if stop.is_some() { Control::Stop } else { Control::Continue }
         };
-        let end = self.stack.solve_coarsest(target, from_rest, strength, &mut each)?;
+        let end = self.stack.solve_directly(l, target, from_rest, strength, &mut each)?;
         self.history.append(&mut rows);
-        Ok((end, stop == Control::Stop))
+        Ok((end, stop))
     }
 
     /// Where Newton's method does not get there from rest at once: all sources grow from a small
     /// share of theirs to the whole, each solution being the start of the next.
-    fn build_up(&mut self, l: usize, target: f64) -> Result<(f64, bool), SolveError> {
+    fn build_up(&mut self, l: usize, target: f64) -> Result<(f64, Option<StopReason>), SolveError> {
         let mut good = State::rest(self.stack.problem(l).unwrap_or(self.problem).mesh());
         let (mut reached, mut factor) = (0.0, BUILD_UP[1]);
         let mut end = f64::INFINITY;
@@ -245,15 +297,15 @@ impl<'a> Run<'a> {
             }
             self.stack.set_state(l, &start);
             let goal = if strength < 1.0 { NESTED_TARGET * strength } else { target };
-            let (residual, stopped) = self.newton(l, goal, first, strength)?;
+            let (residual, stop) = self.newton(l, goal, first, strength)?;
             end = residual;
-            if stopped {
-                return Ok((end, true));
+            if stop.is_some() {
+                return Ok((end, stop));
             }
             if residual <= NESTED_TARGET * strength {
                 if strength == 1.0 {
                     self.note("the sources were built up step by step to get started".into());
-                    return Ok((end, false));
+                    return Ok((end, None));
                 }
                 good = self.stack.state(l).clone();
                 reached = strength;
@@ -270,7 +322,7 @@ impl<'a> Run<'a> {
         // The nearest solution known, for the finer meshes to go on from.
         good.t.iter_mut().for_each(|t| *t /= f64::max(reached, BUILD_UP[0]));
         self.stack.set_state(l, &good);
-        Ok((end, false))
+        Ok((end, None))
     }
 
     /// Cycles on level `l` until its target, the limit, a stall or a breakdown.
@@ -281,12 +333,15 @@ impl<'a> Run<'a> {
         let (mut mark, mut since, mut rung) = (f64::INFINITY, 0, 0);
         let mut parts = None;
         let mut acceleration = Acceleration::new();
+        // The film temperature follows early: late news would undo most of the work.
+        let mut film_check = FIRST_FILM_CHECK;
         for _ in 0..limit {
             if self.history.len() >= self.settings.max_iterations {
                 return Ok(Cycles::Limit);
             }
             self.stack.cycle(l)?;
-            if finest {
+            // Round-off in the mass balance is asked of the last states only.
+            if finest && best < NEARLY * self.settings.tolerance {
                 self.stack.restore_mass(l);
             }
             if let Some((field, cell)) = self.stack.broken(l) {
@@ -298,6 +353,13 @@ impl<'a> Run<'a> {
             let done = if finest { self.within_bounds(&row) } else { largest < NESTED_TARGET };
             let control = (self.watch)(&row);
             self.history.push(row);
+            if finest && !done && largest < film_check {
+                film_check = FILM_CHECKS * largest;
+                if self.renew_air(l) {
+                    acceleration = Acceleration::new();
+                    continue;
+                }
+            }
             if done {
                 if !(finest && self.renew_air(l)) {
                     return Ok(Cycles::Reached);
@@ -404,7 +466,9 @@ impl<'a> Run<'a> {
                 StopReason::Stalled => Verdict::Drifting,
                 StopReason::IterationLimit | StopReason::Asked => Verdict::StoppedEarly,
             };
-            let ended = verdict == Verdict::StoppedEarly;
+            // Only a solution has a stability.
+            let unsolved = self.history.last().is_none_or(|row| row.residuals.largest() > SOLVED);
+            let ended = verdict == Verdict::StoppedEarly || unsolved;
             if ended || !self.settings.assess_stability {
                 return Ok((stop, verdict));
             }
@@ -422,16 +486,16 @@ impl<'a> Run<'a> {
         }
         self.note("no stable steady flow was found".into());
         let band = highest(self.problem, self.stack.state(0)).iter().map(|t| [*t, *t]).collect();
-        Ok((stop, Verdict::Swaying { period: None, growth: None, band }))
+        Ok((stop, Verdict::Swaying { period: None, growth: None, band, slot_band: Vec::new() }))
     }
 
     /// Solves again, from a state on level `l`.
     fn go_on_from(&mut self, l: usize, state: &State) -> Result<StopReason, SolveError> {
         self.stack.set_state(l, state);
         self.stack.pose(l);
-        let coarsest = self.stack.depth() - 1;
+        let coarsest = self.stack.bottom();
         if l == coarsest {
-            if let Some(stop) = self.start_coarsest(l, false)? {
+            if let Some(stop) = self.start_bottom(l, false)? {
                 return Ok(stop);
             }
         } else if l > 0 {

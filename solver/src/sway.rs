@@ -9,10 +9,11 @@ use crate::level::Level;
 use crate::newton::Newton;
 use crate::solve::highest;
 use crate::stability::{Mode, leading_mode};
-use crate::{Control, Problem, SolveError, State, Verdict, residual};
+use crate::transient::Transient;
+use crate::{Air, Control, Convection, Problem, SolveError, State, Verdict, residual, slot_flows};
 
 /// Meshes up to this size are analysed [cells].
-const CELLS: usize = 12_000;
+const CELLS: usize = 8_000;
 /// Time steps per period of the leading mode, and most periods followed.
 const STEPS_PER_PERIOD: usize = 20;
 const MOST_PERIODS: usize = 6;
@@ -25,11 +26,8 @@ const LEAVING_STEPS: usize = 14;
 /// Below this Rayleigh number (on the whole section) air at rest is stable: a layer heated from
 /// below needs 1708 on its height.
 const LEAST_RAYLEIGH: f64 = 500.0;
-/// Chord iterations of a time step at the most, and the change that ends them (share of the
-/// largest speed and rise). A step that is not ended by then renews the factors and may take
-/// as many again.
-const CHORD_STEPS: usize = 5;
-const CHORD_BOUND: f64 = 1e-3;
+/// Speeds and rises beyond so many times those of the steady flow are no sway.
+const RUNAWAY: f64 = 4.0;
 
 /// What the analysis says about a steady solution.
 pub(crate) enum Finding {
@@ -85,22 +83,37 @@ pub(crate) fn assess(
         return Ok(Finding::Leaves(l, state));
     }
     let period = std::f64::consts::TAU / mode.frequency;
-    let swings = follow(level, coarse, &state, &mut newton, &mode, going_on)?;
-    let steady = highest(coarse, &state);
-    let fine = highest(problem, stack.state(0));
-    let band = fine
-        .iter()
-        .zip(&steady)
-        .zip(&swings)
-        .map(|((fine, steady), [low, high])| [fine + low - steady, fine + high - steady])
-        .collect();
+    let mut shape = state.clone();
+    shape.clear();
+    newton.numbers().add(&mode.shape, 1.0, &mut shape);
+    let scheme = (air, level.convection);
+    let swing = follow(coarse, scheme, &state, &shape, period, going_on);
+    // On the finest mesh: its own steady values, moved by as much; they belong to the band.
+    let moved = |fine: f64, steady: f64, [low, high]: [f64; 2]| {
+        [fine + (low - steady).min(0.0), fine + (high - steady).max(0.0)]
+    };
+    let (steady, fine) = (highest(coarse, &state), highest(problem, stack.state(0)));
+    let net = |problem: &Problem, state: &State| -> Vec<f64> {
+        slot_flows(problem, air, state).iter().map(|s| s.inflow - s.outflow).collect()
+    };
+    let (steady_flow, fine_flow) = (net(coarse, &state), net(problem, stack.state(0)));
+    let all = |fine: &[f64], steady: &[f64], swing: &[[f64; 2]]| -> Vec<[f64; 2]> {
+        let values = fine.iter().zip(steady).zip(swing);
+        values.map(|((fine, steady), swing)| moved(*fine, *steady, *swing)).collect()
+    };
+    let (band, slot_band) = match &swing {
+        Some(swing) => {
+            (all(&fine, &steady, &swing.parts), all(&fine_flow, &steady_flow, &swing.slots))
+        }
+        None => (Vec::new(), Vec::new()),
+    };
     notes.push(format!(
         "the steady flow is unstable: disturbances grow by {:.2} per second and sway with a period \
          of {period:.2} s (found on a mesh of {} x {} cells)",
         mode.growth, level.nx, level.ny
     ));
     let growth = Some(mode.growth);
-    Ok(Finding::Swaying(Verdict::Swaying { period: Some(period), growth, band }))
+    Ok(Finding::Swaying(Verdict::Swaying { period: Some(period), growth, band, slot_band }))
 }
 
 /// Follows a growing disturbance in time (backward Euler, one factorisation a step) until it is no
@@ -136,82 +149,55 @@ fn leave(
     Ok(now)
 }
 
-/// Lowest and highest `part_max` over the last two periods of a run from the disturbed state;
-/// nothing when the run was ended before.
+/// What a run in time from the disturbed state shows over its last two periods.
+struct Swing {
+    /// Lowest and highest temperature of every part [K].
+    parts: Vec<[f64; 2]>,
+    /// Lowest and highest flow into the section through every slot [m³/s].
+    slots: Vec<[f64; 2]>,
+}
+
+/// Follows the disturbed flow until it keeps its size; nothing when the run was ended before.
 fn follow(
-    level: &Level,
     problem: &Problem,
+    (air, scheme): (&Air, Convection),
     steady: &State,
-    newton: &mut Newton,
-    mode: &Mode,
+    shape: &State,
+    period: f64,
     going_on: &mut dyn FnMut() -> Control,
-) -> Result<Vec<[f64; 2]>, SolveError> {
-    let period = std::f64::consts::TAU / mode.frequency;
-    let step = period / STEPS_PER_PERIOD as f64;
-    let (mut factors, masses) = newton.shifted(level, steady, &level.source, 1.5 / step)?;
-    let numbers = newton.numbers();
-    let speeds = |shape: &[f64]| {
-        let mut moved = steady.clone();
-        moved.clear();
-        numbers.add(shape, 1.0, &mut moved);
-        largest(&moved.u).max(largest(&moved.v))
-    };
+) -> Option<Swing> {
     let speed = largest(&steady.u).max(largest(&steady.v));
-    let rise = largest(&steady.t).max(1e-9);
-    let mut now = steady.clone();
-    numbers.add(&mode.shape, DISTURBANCE * speed / speeds(&mode.shape), &mut now);
-    let mut before = now.clone();
-    let mut residual = steady.clone();
-    let gather = |newton: &Newton, state: &State| {
-        let mut values = vec![0.0; masses.len()];
-        newton.numbers().gather(state, &mut values);
-        values
-    };
+    let size = DISTURBANCE * speed / largest(&shape.u).max(largest(&shape.v));
+    let mut start = steady.clone();
+    for (to, from) in [(&mut start.u, &shape.u), (&mut start.v, &shape.v), (&mut start.t, &shape.t)]
+    {
+        to.iter_mut().zip(from).for_each(|(t, f)| *t += size * f);
+    }
+    let step = period / STEPS_PER_PERIOD as f64;
+    let mut run = Transient::new(problem, air, scheme, &start, step);
     let mut bands: Vec<Vec<[f64; 2]>> = Vec::new();
     let mut sizes: Vec<f64> = Vec::new();
-
     for _ in 0..MOST_PERIODS {
-        let mut band = vec![[f64::INFINITY, f64::NEG_INFINITY]; problem.description().parts.len()];
+        let mut band = Vec::new();
         let mut size = 0.0_f64;
         for _ in 0..STEPS_PER_PERIOD {
-            let (x1, x0) = (gather(newton, &now), gather(newton, &before));
-            // Extrapolated start of the step.
-            let mut next = now.clone();
-            let change: Vec<f64> = x1.iter().zip(&x0).map(|(a, b)| a - b).collect();
-            newton.numbers().add(&change, 1.0, &mut next);
-            for k in 0..2 * CHORD_STEPS {
-                residual::evaluate(level, &next, &level.source, &mut residual);
-                let mut right = gather(newton, &residual);
-                let x = gather(newton, &next);
-                for (n, r) in right.iter_mut().enumerate() {
-                    *r -= masses[n] * (1.5 * x[n] - 2.0 * x1[n] + 0.5 * x0[n]) / step;
-                }
-                newton.drop_pinned(level, &mut right);
-                factors.solve(&mut right);
-                newton.numbers().add(&right, 1.0, &mut next);
-                let mut moved = steady.clone();
-                moved.clear();
-                newton.numbers().add(&right, 1.0, &mut moved);
-                let size = (largest(&moved.u).max(largest(&moved.v)) / speed)
-                    .max(largest(&moved.t) / rise);
-                if size < CHORD_BOUND {
-                    break;
-                }
-                if k + 1 == CHORD_STEPS {
-                    factors = newton.shifted(level, &next, &level.source, 1.5 / step)?.0;
-                }
+            run.step();
+            let now = run.state();
+            // Bounded: a run that leaves all measure is no finding about the flow.
+            let fastest = largest(&now.u).max(largest(&now.v));
+            let kept = fastest <= RUNAWAY * speed
+                && largest(&now.t) <= RUNAWAY * largest(&steady.t).max(1e-9);
+            if going_on() == Control::Stop || !kept {
+                return None;
             }
-            before = std::mem::replace(&mut now, next);
-            if going_on() == Control::Stop || !(largest(&now.v) + largest(&now.t)).is_finite() {
-                return Ok(Vec::new());
+            let mut values = highest(problem, now);
+            values.extend(slot_flows(problem, air, now).iter().map(|s| s.inflow - s.outflow));
+            band.resize(values.len(), [f64::INFINITY, f64::NEG_INFINITY]);
+            for (b, value) in band.iter_mut().zip(values) {
+                *b = [b[0].min(value), b[1].max(value)];
             }
-            for (b, t) in band.iter_mut().zip(highest(problem, &now)) {
-                *b = [b[0].min(t), b[1].max(t)];
-            }
-            let away = |a: &[f64], b: &[f64]| {
-                a.iter().zip(b).map(|(a, b)| (a - b).powi(2)).sum::<f64>().sqrt()
-            };
-            size = size.max(away(&now.v, &steady.v));
+            let away = now.v.iter().zip(&steady.v).map(|(a, b)| (a - b).powi(2)).sum::<f64>();
+            size = size.max(away.sqrt());
         }
         bands.push(band);
         sizes.push(size);
@@ -226,7 +212,9 @@ fn follow(
     }
     let n = bands.len();
     let widest = |(a, b): (&[f64; 2], &[f64; 2])| [a[0].min(b[0]), a[1].max(b[1])];
-    Ok(bands[n - 1].iter().zip(&bands[n.saturating_sub(2)]).map(widest).collect())
+    let mut parts: Vec<_> = bands[n - 1].iter().zip(&bands[n - 2]).map(widest).collect();
+    let slots = parts.split_off(problem.description().parts.len());
+    Some(Swing { parts, slots })
 }
 
 fn largest(values: &[f64]) -> f64 {

@@ -70,8 +70,8 @@ fn read_block(reader: &mut Reader, mut scope: Scope) -> Draft {
     }
     let heat = reader.quantity(&scope, "heat", Dimension::Power);
     if let Some(heat) = &heat {
-        let good = heat.value.abs() <= 1e6;
-        reader.within(&scope, "heat", heat, good, "at most 1000 kW");
+        let good = heat.value == 0.0 || (1e-9..=1e6).contains(&heat.value.abs());
+        reader.within(&scope, "heat", heat, good, "0 W, or from 1e-9 W to 1000 kW in size");
         if heat.value < 0.0 {
             reader.warn(&scope, heat.span.clone(), "heat below zero: the block is cooled");
         }

@@ -8,14 +8,17 @@ use ventrise_solver::SideCondition;
 use super::blocks::Draft;
 use super::edge::{ProbeDraft, Sides, SlotDraft};
 use super::error::{CaseError, Cause, nearest};
-use super::estimate::Estimate;
 use super::materials;
 use super::model::{Block, Case, Material, Part, ProbeShape, Section, Slot, side_name};
+use super::overlap;
 use super::parse::{Located, Reader, Scope};
 use super::units::rounded;
 
 /// Lengths closer than this share of the section's extent are the same.
-const SAME: f64 = 1e-9;
+pub(super) const SAME: f64 = 1e-9;
+
+/// Least extent of a block or slot as a share of the section's: 0.1 µm in a metre.
+const THINNEST: f64 = 1e-7;
 
 /// Most blocks of a case, copies counted.
 const MOST_BLOCKS: usize = 5000;
@@ -26,6 +29,8 @@ pub(super) struct Placed {
     pub block: Block,
     /// How messages call it.
     pub place: String,
+    /// Index of its table among the drafts.
+    pub draft: usize,
 }
 
 /// Materials, blocks and parts that fit together.
@@ -48,7 +53,7 @@ pub(super) fn assemble(
     names(reader, drafts);
     let limits = limits(reader, drafts);
     let mut parts: HashMap<String, usize> = HashMap::new();
-    for draft in drafts {
+    for (index, draft) in drafts.iter().enumerate() {
         let material = material(reader, &mut bodies.materials, draft);
         let part_name = draft.part.as_ref().or(draft.name.as_ref()).map(|n| n.value.clone());
         let part = part_name.map(|name| {
@@ -92,6 +97,7 @@ pub(super) fn assemble(
                     heat: draft.heat,
                 },
                 place,
+                draft: index,
             });
             if !inside {
                 break; // one message for a pattern that runs out of the section
@@ -99,7 +105,7 @@ pub(super) fn assemble(
         }
     }
     if let Some(section) = section {
-        overlaps(reader, section, drafts, &bodies.blocks);
+        overlap::report(reader, section, drafts, &bodies.blocks);
     }
     bodies
 }
@@ -216,7 +222,9 @@ fn inside(
         [("x", rectangle.x, section.width, &draft.x), ("y", rectangle.y, section.height, &draft.y)];
     for (key, [low, high], extent, typed) in axes {
         let slack = SAME * extent;
-        let over = if low < -slack {
+        let over = if high - low < THINNEST * extent {
+            "is thinner than a ten-millionth of the section; leave it out or make it thicker".into()
+        } else if low < -slack {
             format!("begins {} before the section", millimetres(-low))
         } else if high > extent + slack {
             format!(
@@ -243,48 +251,6 @@ fn inside(
         reader.report(CaseError::new(Cause::Shape, place, message).at(span));
     }
     good
-}
-
-/// Reports overlapping blocks, each pair of tables once.
-fn overlaps(reader: &mut Reader, section: &Section, drafts: &[Draft], blocks: &[Placed]) {
-    let slack = SAME * section.width.max(section.height);
-    let shared = |a: [f64; 2], b: [f64; 2]| a[1].min(b[1]) - a[0].max(b[0]);
-    let mut told: Vec<(&str, &str)> = Vec::new();
-    let table = |place: &str| {
-        drafts.iter().find(|d| {
-            place
-                .strip_prefix(d.place.as_str())
-                .is_some_and(|r| r.is_empty() || r.starts_with(", copy"))
-        })
-    };
-    for (n, b) in blocks.iter().enumerate() {
-        for a in &blocks[..n] {
-            let (ra, rb) = (&a.block.rectangle, &b.block.rectangle);
-            let common = [shared(ra.x, rb.x), shared(ra.y, rb.y)];
-            if common.iter().any(|c| *c <= slack) {
-                continue;
-            }
-            let (Some(ta), Some(tb)) = (table(&a.place), table(&b.place)) else { continue };
-            let pair = (ta.place.as_str(), tb.place.as_str());
-            if told.contains(&pair) {
-                continue;
-            }
-            told.push(pair);
-            let message = format!(
-                "overlaps {} over {} by {}",
-                a.place,
-                millimetres(common[0]),
-                millimetres(common[1])
-            );
-            let span = match (&tb.repeat, &tb.x) {
-                (Some(repeat), _) => repeat.span.clone(),
-                (None, Some(x)) => x.span.clone(),
-                (None, None) => tb.span.clone(),
-            };
-            let error = CaseError::new(Cause::Shape, &b.place, message).at(span);
-            reader.report(error.hint("blocks may touch but not overlap"));
-        }
-    }
 }
 
 /// Reports slots off the edge, on the axis, over blocks, over each other, in open sides.
@@ -335,6 +301,15 @@ pub(super) fn slots(
             reader.report(error.at(to.span.clone()));
         }
         let span = [from.value, to.value];
+        if span[1] - span[0] < THINNEST * extent {
+            let typed = reader.typed(&to.span);
+            let message = format!(
+                "to = {typed} makes the slot narrower than a ten-millionth of the {} side",
+                side_name(side.value)
+            );
+            let error = CaseError::new(Cause::Shape, &slot.place, message);
+            reader.report(error.at(to.span.clone()));
+        }
         for block in blocks {
             if let Some([low, high]) = contact(section, side.value, &block.block.rectangle)
                 && span[1].min(high) - span[0].max(low) > slack
@@ -458,7 +433,7 @@ fn side_length(section: &Section, side: Side) -> f64 {
 }
 
 /// A length in millimetres, as messages show it.
-fn millimetres(length: f64) -> String {
+pub(super) fn millimetres(length: f64) -> String {
     format!("{} mm", rounded(length * 1e3, 6))
 }
 
@@ -494,54 +469,4 @@ pub(super) fn join_edges(case: &mut Case) {
             }
         }
     }
-}
-
-/// What is allowed but looks doubtful about a whole case.
-pub(super) fn doubts(case: &Case) -> Vec<String> {
-    let mut doubts = Vec::new();
-    for part in &case.parts {
-        if part.limit.is_none() && part.heat > 0.0 {
-            doubts.push(format!("part \"{}\" has heat but no limit to be judged by", part.name));
-        }
-        if let Some(limit) = part.limit
-            && limit <= case.ambient.temperature
-        {
-            doubts.push(format!("the limit of part \"{}\" is not above ambient", part.name));
-        }
-    }
-    let ambient = case.ambient.temperature;
-    let fluxes = case.sides.iter().any(|s| matches!(s, SideCondition::Flux(q) if *q != 0.0));
-    let driven =
-        case.sides.iter().any(|s| matches!(s, SideCondition::Temperature(t) if *t != ambient));
-    if case.blocks.iter().all(|b| b.heat == 0.0) && !fluxes && !driven {
-        doubts.push("there is no heat at all: the air will stay at rest".to_string());
-    }
-    for side in Side::ALL {
-        match case.sides[side.index()] {
-            SideCondition::Flux(q) if q < 0.0 => doubts.push(format!(
-                "the flux of the {} side is below zero: heat leaves the section there",
-                side_name(side)
-            )),
-            SideCondition::Temperature(t) if (t - ambient).abs() > 150.0 => doubts.push(format!(
-                "the {} side is {:.0} K from ambient; constant air properties are doubtful there",
-                side_name(side),
-                (t - ambient).abs()
-            )),
-            _ => {}
-        }
-    }
-    let open = case.sides.contains(&SideCondition::Open);
-    if !open && !case.slots.is_empty() {
-        let heights: Vec<f64> = case.slots.iter().map(|s| case.slot_height(s)).collect();
-        let low = heights.iter().copied().fold(f64::INFINITY, f64::min);
-        let high = heights.iter().copied().fold(f64::NEG_INFINITY, f64::max);
-        if case.slots.len() > 1 && high - low < 1e-3 * case.section.height {
-            doubts.push("all slots lie at one height, so the draught has no chimney".to_string());
-        }
-        if case.slots.len() == 1 {
-            doubts.push("there is one slot only; it must breathe in and out at once".to_string());
-        }
-    }
-    doubts.extend(Estimate::of(case).doubts());
-    doubts
 }

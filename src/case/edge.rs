@@ -214,14 +214,15 @@ fn read_side(
     }
     let temperature = reader.temperature(&inner, "temperature");
     let flux = reader.quantity(&inner, "flux", Dimension::Flux);
-    let film = reader.positive(&inner, "film", Dimension::Film);
+    let bound = (1e-3..=1e6, "from 0.001 W/(m2 K) to 1e6 W/(m2 K)");
+    let film = reader.bounded(&inner, "film", Dimension::Film, bound);
     if let Some(temperature) = &temperature {
         let good = temperature.value <= 2273.15;
         reader.within(&inner, "temperature", temperature, good, "at most 2000 degC");
     }
     if let Some(flux) = &flux {
-        let good = flux.value.abs() <= 1e7;
-        reader.within(&inner, "flux", flux, good, "at most 1e7 W/m2");
+        let good = flux.value == 0.0 || (1e-6..=1e7).contains(&flux.value.abs());
+        reader.within(&inner, "flux", flux, good, "0 W/m2, or from 1e-6 W/m2 to 1e7 W/m2 in size");
     }
     match (temperature, flux, film) {
         (Some(t), None, None) => Some(SideCondition::Temperature(t.value)),

@@ -1,7 +1,18 @@
 //! Mistakes in a case file, each with its place, and how they are shown.
 
+use std::collections::HashMap;
 use std::fmt::{self, Write as _};
 use std::ops::Range;
+
+use unicode_width::UnicodeWidthStr;
+
+use super::parse::is_unprintable;
+
+/// Mistakes of one cause that are shown; the others are counted.
+const TOLD: usize = 20;
+
+/// Most characters of a line that are drawn.
+const LINE: usize = 160;
 
 /// The cause of a mistake.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
@@ -95,9 +106,9 @@ impl CaseError {
 
     fn draw_into(&self, out: &mut String, file: &str, text: &str) -> fmt::Result {
         match self.span.as_ref().map(|s| Spot::find(text, s)) {
-            None => writeln!(out, "{file}: {}", self.message())?,
+            None => writeln!(out, "{file}: {}", visible(&self.message()))?,
             Some(spot) => {
-                writeln!(out, "{file}:{}: {}", spot.line, self.message())?;
+                writeln!(out, "{file}:{}: {}", spot.line, visible(&self.message()))?;
                 let label = spot.line.to_string();
                 writeln!(out, "  {label} | {}", spot.text)?;
                 let blank = " ".repeat(label.len());
@@ -105,10 +116,15 @@ impl CaseError {
             }
         }
         if let Some(hint) = &self.hint {
-            writeln!(out, "  {hint}")?;
+            writeln!(out, "  {}", visible(hint))?;
         }
         Ok(())
     }
+}
+
+/// A text from the file that cannot move the cursor: control characters are replaced.
+fn visible(text: &str) -> String {
+    text.chars().map(|c| if is_unprintable(c) { '\u{FFFD}' } else { c }).collect()
 }
 
 /// Where a byte range lies on the screen.
@@ -132,10 +148,23 @@ impl Spot {
         let line_start = text[..start].rfind('\n').map_or(0, |n| n + 1);
         let line_end = text[start..].find('\n').map_or(text.len(), |n| start + n);
         let line = text[..start].matches('\n').count() + 1;
-        let shown = |part: &str| part.trim_end_matches('\r').replace('\t', "    ");
-        let before = shown(&text[line_start..start]).chars().count();
-        let marked = shown(&text[start..end.min(line_end).max(start)]).chars().count();
-        Spot { line, text: shown(&text[line_start..line_end]), before, width: marked.max(1) }
+        let shown = |part: &str| visible(&part.trim_end_matches('\r').replace('\t', "    "));
+        // Of a very long line, what stands around the place.
+        let head: Vec<char> = shown(&text[line_start..start]).chars().collect();
+        let cut = if head.len() > LINE / 2 { head.len() - LINE / 4 } else { 0 };
+        let whole = shown(&text[line_start..line_end]);
+        let mut drawn: String = whole.chars().skip(cut).take(LINE).collect();
+        let mut before = head[cut..].iter().collect::<String>().width();
+        let room = drawn.width().saturating_sub(before);
+        if cut > 0 {
+            drawn.insert(0, '…');
+            before += 1;
+        }
+        if whole.chars().count() > cut + LINE {
+            drawn.push('…');
+        }
+        let marked = shown(&text[start..end.min(line_end).max(start)]).width();
+        Spot { line, text: drawn, before, width: marked.min(room).max(1) }
     }
 }
 
@@ -162,8 +191,17 @@ impl CaseErrors {
 
 impl fmt::Display for CaseErrors {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        let mut told: HashMap<Cause, usize> = HashMap::new();
         for error in &self.errors {
-            writeln!(f, "{}", error.draw(&self.file, &self.text))?;
+            let count = told.entry(error.cause).or_default();
+            *count += 1;
+            if *count <= TOLD {
+                writeln!(f, "{}", error.draw(&self.file, &self.text))?;
+            }
+        }
+        match told.values().map(|count| count.saturating_sub(TOLD)).sum() {
+            0_usize => {}
+            more => writeln!(f, "and {more} more of the same kinds\n")?,
         }
         match self.errors.len() {
             1 => write!(f, "1 mistake in {}; nothing was written", self.file),

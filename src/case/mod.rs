@@ -5,15 +5,19 @@
 
 mod blocks;
 mod check;
+mod doubts;
 mod edge;
 mod error;
 mod estimate;
 pub mod materials;
+mod meshing;
 mod model;
+mod overlap;
 mod parse;
 mod read;
 mod resolved;
 pub mod setup;
+mod surfaces;
 mod tables;
 pub mod units;
 

@@ -1,5 +1,7 @@
 //! The checked case, in SI.
 
+use std::ops::Range;
+
 use ventrise_mesh::{Geometry, Rectangle, Side};
 use ventrise_solver::{Air, Settings, SideCondition};
 
@@ -184,6 +186,8 @@ pub(super) struct Origin {
     pub text: String,
     pub sha256: String,
     pub warnings: Vec<CaseError>,
+    /// Keys of `[mesh]` and the byte ranges of their values.
+    pub mesh_keys: Vec<(&'static str, Range<usize>)>,
 }
 
 impl Case {

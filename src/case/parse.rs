@@ -1,12 +1,15 @@
 //! Reading values out of TOML tables, with their places; mistakes are collected on the way.
 
-use std::ops::Range;
+use std::ops::{Range, RangeInclusive};
 
 use toml::Spanned;
 use toml::de::{DeTable, DeValue};
 
 use super::error::{CaseError, Cause, nearest, one_of};
 use super::units::{self, Dimension, UnitError};
+
+/// Highest temperature that a case may name, 3000 °C [K]: a slip of the unit, or no housing.
+const HOTTEST: f64 = 3273.15;
 
 /// A value and its byte range in the text.
 #[derive(Debug, Clone, PartialEq)]
@@ -36,6 +39,15 @@ impl<'d> Scope<'d> {
 
     pub fn has(&self, key: &str) -> bool {
         self.get(key).is_some()
+    }
+
+    /// A table within the table, as it was named in messages.
+    pub fn table(&self, key: &str) -> Option<Scope<'d>> {
+        let value = self.get(key)?;
+        match value.get_ref() {
+            DeValue::Table(table) => Some(Scope::new(table, value.span(), key)),
+            _ => None,
+        }
     }
 
     /// Byte range of a key's value, or of the table when the key is absent.
@@ -159,7 +171,18 @@ impl<'t> Reader<'t> {
                 None
             }
             DeValue::String(text) => {
-                Some(Located { value: text.trim().to_string(), span: value.span() })
+                let text = text.trim();
+                if let Some(sign) = text.chars().find(|c| is_unprintable(*c)) {
+                    let message = format!(
+                        "{key} holds the control character U+{:04X}, which no screen or table can \
+                         show",
+                        u32::from(sign)
+                    );
+                    let error = CaseError::new(Cause::Kind, &scope.place, message);
+                    self.report(error.at(value.span()).hint("write it without"));
+                    return None;
+                }
+                Some(Located { value: text.to_string(), span: value.span() })
             }
             _ => {
                 self.wrong_kind(scope, key, value, "a text in quotes belongs here");
@@ -240,7 +263,7 @@ impl<'t> Reader<'t> {
         &mut self,
         scope: &Scope,
         key: &str,
-        range: std::ops::RangeInclusive<usize>,
+        range: RangeInclusive<usize>,
     ) -> Option<Located<usize>> {
         let number = self.number(scope, key)?;
         let bound = format!("a whole number from {} to {}", range.start(), range.end());
@@ -286,11 +309,25 @@ impl<'t> Reader<'t> {
         self.within(scope, key, &value, value.value > 0.0, "more than 0").then_some(value)
     }
 
-    /// A temperature above absolute zero [K].
+    /// A quantity in a range, in SI; `bound` says the range in the user's units.
+    pub fn bounded(
+        &mut self,
+        scope: &Scope,
+        key: &str,
+        dimension: Dimension,
+        (range, bound): (RangeInclusive<f64>, &str),
+    ) -> Option<Located<f64>> {
+        let value = self.quantity(scope, key, dimension)?;
+        self.within(scope, key, &value, range.contains(&value.value), bound).then_some(value)
+    }
+
+    /// A temperature above absolute zero and below the boiling point of most metals [K].
     pub fn temperature(&mut self, scope: &Scope, key: &str) -> Option<Located<f64>> {
         let value = self.quantity(scope, key, Dimension::Temperature)?;
-        let bound = "above absolute zero, -273.15 degC";
-        self.within(scope, key, &value, value.value > 0.0, bound).then_some(value)
+        let above = value.value > 0.0;
+        let bound = if above { "at most 3000 degC" } else { "above absolute zero, -273.15 degC" };
+        let good = above && value.value <= HOTTEST;
+        self.within(scope, key, &value, good, bound).then_some(value)
     }
 
     /// Two lengths in brackets, such as an extent or a point [m].
@@ -341,24 +378,29 @@ impl<'t> Reader<'t> {
         dimension: Dimension,
     ) -> Option<Located<f64>> {
         let span = value.span();
-        let unit = dimension.usual_unit();
         let a_name = dimension.a_name();
         let typed = self.typed(&span);
         let (cause, message, hint) = match value.get_ref() {
             DeValue::String(text) => match units::parse(text, dimension) {
                 Ok(si) => return Some(Located { value: si, span }),
-                Err(error) => unit_message(&format!("{key} = {typed}"), &error, dimension),
+                Err(error) => unit_message(key, &typed, &error, dimension),
             },
-            DeValue::Integer(_) | DeValue::Float(_) => (
-                Cause::Unit,
-                format!("{key} = {typed} has no unit; write it as \"{typed} {unit}\""),
-                Some(units_hint(dimension)),
-            ),
+            DeValue::Integer(_) | DeValue::Float(_) => {
+                let example = example(key, Some(&typed), dimension);
+                let written = if example.starts_with(&format!("\"{typed} ")) {
+                    format!("write it as {example}")
+                } else {
+                    format!("{a_name} belongs here, such as {example}")
+                };
+                let message = format!("{key} = {typed} has no unit; {written}");
+                (Cause::Unit, message, Some(units_hint(dimension)))
+            }
             other => (
                 Cause::Kind,
                 format!(
-                    "{key} = {typed} is {}; {a_name} belongs here, such as \"1 {unit}\"",
-                    kind_name(other)
+                    "{key} = {typed} is {}; {a_name} belongs here, such as {}",
+                    kind_name(other),
+                    example(key, None, dimension)
                 ),
                 None,
             ),
@@ -416,6 +458,12 @@ impl<'t> Reader<'t> {
     }
 }
 
+/// Characters that move the cursor, end lines or turn the writing direction.
+pub(super) fn is_unprintable(sign: char) -> bool {
+    sign.is_control()
+        || matches!(sign, '\u{2028}' | '\u{2029}' | '\u{202A}'..='\u{202E}' | '\u{2066}'..='\u{2069}')
+}
+
 /// Value of a TOML integer.
 fn integer(i: &toml::de::DeInteger) -> Option<i64> {
     i64::from_str_radix(i.as_str(), i.radix()).ok()
@@ -440,18 +488,40 @@ fn units_hint(dimension: Dimension) -> String {
     }
 }
 
+/// Whether a key's quantity may be zero or less.
+fn may_be_zero(key: &str, dimension: Dimension) -> bool {
+    match dimension {
+        Dimension::Length => !matches!(key, "width" | "height" | "depth" | "cell" | "wall"),
+        Dimension::Power | Dimension::Temperature | Dimension::Angle | Dimension::Flux => true,
+        _ => false,
+    }
+}
+
+/// A value in quotes that could stand at a key: the number as typed where it is possible.
+fn example(key: &str, number: Option<&str>, dimension: Dimension) -> String {
+    let unit = if key == "altitude" { "m" } else { dimension.usual_unit() };
+    let usable = |text: &&str| match text.replace('_', "").parse::<f64>() {
+        Ok(value) => value.is_finite() && (value > 0.0 || may_be_zero(key, dimension)),
+        Err(_) => false,
+    };
+    format!("\"{} {unit}\"", number.filter(usable).unwrap_or("1"))
+}
+
 fn unit_message(
-    typed: &str,
+    key: &str,
+    text: &str,
     error: &UnitError,
     dimension: Dimension,
 ) -> (Cause, String, Option<String>) {
-    let unit = dimension.usual_unit();
     let a_name = dimension.a_name();
+    let typed = format!("{key} = {text}");
+    let example = |number: Option<&str>| example(key, number, dimension);
     match error {
         UnitError::NoNumber => (
             Cause::Unit,
             format!(
-                "{typed} does not begin with a number; {a_name} belongs here, such as \"1 {unit}\""
+                "{typed} does not begin with a number; {a_name} belongs here, such as {}",
+                example(None)
             ),
             None,
         ),
@@ -463,7 +533,10 @@ fn unit_message(
         UnitError::NotFinite => (Cause::Range, format!("{typed} must be a finite number"), None),
         UnitError::NoUnit { number } => (
             Cause::Unit,
-            format!("{typed} has no unit; {a_name} belongs here, such as \"{number} {unit}\""),
+            format!(
+                "{typed} has no unit; {a_name} belongs here, such as {}",
+                example(Some(number))
+            ),
             Some(units_hint(dimension)),
         ),
         UnitError::UnknownUnit { number, unit: symbol, nearest } => (
@@ -475,7 +548,8 @@ fn unit_message(
                     )
                 }
                 None => format!(
-                    "{typed}: there is no unit {symbol}; {a_name} belongs here, such as \"{number} {unit}\""
+                    "{typed}: there is no unit {symbol}; {a_name} belongs here, such as {}",
+                    example(Some(number))
                 ),
             },
             Some(units_hint(dimension)),
@@ -483,8 +557,9 @@ fn unit_message(
         UnitError::WrongDimension { number, is } => (
             Cause::Dimension,
             format!(
-                "{typed} is {}; {a_name} belongs here, such as \"{number} {unit}\"",
-                is.a_name()
+                "{typed} is {}; {a_name} belongs here, such as {}",
+                is.a_name(),
+                example(Some(number))
             ),
             None,
         ),

@@ -1,17 +1,23 @@
 //! From text to a checked case.
 
+use std::io::Read;
 use std::path::Path;
 
 use sha2::{Digest, Sha256};
 use toml::de::DeTable;
 
 use super::blocks::read_blocks;
-use super::check;
 use super::edge::{read_probes, read_sides, read_slots};
 use super::error::{CaseError, CaseErrors, Cause};
 use super::model::{Case, Origin};
 use super::parse::{Keys, Reader, Scope};
-use super::tables::{read_air, read_ambient, read_materials, read_mesh, read_section, read_solve};
+use super::tables::{
+    mesh_keys, read_air, read_ambient, read_materials, read_mesh, read_section, read_solve,
+};
+use super::{check, doubts};
+
+/// Most bytes of a case file: ten times what the largest number of blocks takes.
+const LARGEST_FILE: usize = 10_000_000;
 
 const TOP: Keys = Keys {
     what: "the case file",
@@ -33,8 +39,12 @@ impl Case {
             let error = CaseError::new(Cause::File, "", message);
             Err(CaseErrors::new(&file, "", vec![error]))
         };
-        match std::fs::read(path) {
+        match read_at_most(path, LARGEST_FILE + 1) {
             Err(error) => failed(format!("the file cannot be read ({error})")),
+            Ok(bytes) if bytes.len() > LARGEST_FILE => failed(format!(
+                "the file is larger than {} MB, the most a case file may have",
+                LARGEST_FILE / 1_000_000
+            )),
             Ok(bytes) => match String::from_utf8(bytes) {
                 Ok(text) => Case::parse(&text, &file),
                 Err(error) => {
@@ -94,9 +104,16 @@ impl Case {
                 None => w.message(),
             })
             .collect();
-        warnings.extend(check::doubts(self));
+        warnings.extend(doubts::doubts(self));
         warnings
     }
+}
+
+/// Reads a file, or its beginning when it is longer.
+fn read_at_most(path: &Path, most: usize) -> std::io::Result<Vec<u8>> {
+    let mut bytes = Vec::new();
+    std::fs::File::open(path)?.take(most as u64).read_to_end(&mut bytes)?;
+    Ok(bytes)
 }
 
 fn read_case(reader: &mut Reader, top: &Scope, text: &str, file: &str) -> Option<Case> {
@@ -139,6 +156,7 @@ fn read_case(reader: &mut Reader, top: &Scope, text: &str, file: &str) -> Option
             text: text.to_string(),
             sha256: hexadecimal(&Sha256::digest(text.as_bytes())),
             warnings: Vec::new(),
+            mesh_keys: mesh_keys(top),
         },
     };
     if reader.errors.is_empty() {

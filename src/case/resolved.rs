@@ -72,6 +72,8 @@ impl Case {
         lines.header("[ambient]");
         lines.quantity("temperature", self.ambient.temperature, Dimension::Temperature);
         match self.ambient.altitude {
+            // Given properties do not depend on it; written, it would be warned of.
+            Some(0.0) if matches!(self.air, AirChoice::Given { .. }) => {}
             Some(altitude) => lines.line(&format!("altitude = {}", quoted(&write(altitude, "m")))),
             None => lines.quantity("pressure", self.ambient.pressure, Dimension::Pressure),
         }

@@ -1,6 +1,8 @@
 //! The tables that occur once ([section], [ambient], [air], [mesh], [solve]) and [[material]].
 
-use ventrise_mesh::Geometry;
+use std::ops::{Range, RangeInclusive};
+
+use ventrise_mesh::{CELL_LIMIT, Geometry};
 use ventrise_solver::{Air, standard_pressure};
 
 use super::error::{CaseError, Cause};
@@ -14,8 +16,8 @@ const SECTION: Keys = Keys {
     later: &[],
 };
 
-/// Largest extent of a section [m]; anything beyond is a slip of the unit.
-const LARGEST: f64 = 100.0;
+/// Extent of a section along any direction [m]; anything beyond is a slip of the unit.
+const EXTENT: (RangeInclusive<f64>, &str) = (1e-6..=100.0, "from 0.001 mm to 100 m");
 
 /// Reads `[section]`.
 pub(super) fn read_section(reader: &mut Reader, top: &Scope) -> Option<Section> {
@@ -31,9 +33,8 @@ pub(super) fn read_section(reader: &mut Reader, top: &Scope) -> Option<Section> 
     let geometry = reader.word(&scope, "geometry", &["planar", "axisymmetric"], &[]);
     let mut extent = |key: &str| {
         let length = reader.required(&scope, key, Dimension::Length, "100 mm")?;
-        let good = length.value > 0.0 && length.value <= LARGEST;
-        reader.within(&scope, key, &length, good, "more than 0 and at most 100 m");
-        good.then_some(length.value)
+        let good = EXTENT.0.contains(&length.value);
+        reader.within(&scope, key, &length, good, EXTENT.1).then_some(length.value)
     };
     let (width, height) = (extent("width"), extent("height"));
     if let Some(tilt) = reader.quantity(&scope, "tilt", Dimension::Angle)
@@ -44,11 +45,7 @@ pub(super) fn read_section(reader: &mut Reader, top: &Scope) -> Option<Section> 
         let error = CaseError::new(Cause::NotYet, &scope.place, message).at(tilt.span);
         reader.report(error.hint("leave tilt out, or write tilt = \"0 deg\""));
     }
-    let depth = reader.quantity(&scope, "depth", Dimension::Length);
-    if let Some(depth) = &depth {
-        let good = depth.value > 0.0 && depth.value <= LARGEST;
-        reader.within(&scope, "depth", depth, good, "more than 0 and at most 100 m");
-    }
+    let depth = reader.bounded(&scope, "depth", Dimension::Length, EXTENT);
     let geometry = match geometry?.value {
         "planar" => {
             if !scope.has("depth") {
@@ -111,12 +108,30 @@ pub(super) fn read_ambient(reader: &mut Reader, top: &Scope) -> Option<Ambient> 
     })
 }
 
-const AIR_NUMBERS: [(&str, Dimension, &str); 5] = [
-    ("density", Dimension::Density, "1.1 kg/m3"),
-    ("viscosity", Dimension::Viscosity, "1.95e-5 Pa s"),
-    ("conductivity", Dimension::Conductivity, "0.0275 W/(m K)"),
-    ("specific-heat", Dimension::SpecificHeat, "1007 J/(kg K)"),
-    ("expansion", Dimension::Expansion, "0.0032 1/K"),
+/// Key, dimension, example and range of the given air's numbers: from a thin gas to oil and
+/// liquid metal, with room on both sides.
+type AirNumber = (&'static str, Dimension, &'static str, (RangeInclusive<f64>, &'static str));
+const AIR_NUMBERS: [AirNumber; 5] = [
+    ("density", Dimension::Density, "1.1 kg/m3", (1e-4..=1e5, "from 1e-4 kg/m3 to 1e5 kg/m3")),
+    (
+        "viscosity",
+        Dimension::Viscosity,
+        "1.95e-5 Pa s",
+        (1e-8..=1e3, "from 1e-8 Pa s to 1000 Pa s"),
+    ),
+    (
+        "conductivity",
+        Dimension::Conductivity,
+        "0.0275 W/(m K)",
+        (1e-5..=1e4, "from 1e-5 W/(m K) to 1e4 W/(m K)"),
+    ),
+    (
+        "specific-heat",
+        Dimension::SpecificHeat,
+        "1007 J/(kg K)",
+        (1.0..=1e6, "from 1 J/(kg K) to 1e6 J/(kg K)"),
+    ),
+    ("expansion", Dimension::Expansion, "0.0032 1/K", (0.0..=1.0, "from 0 1/K to 1 1/K")),
 ];
 
 const AIR: Keys = Keys {
@@ -163,15 +178,22 @@ pub(super) fn read_air(
         }
         return Some(AirChoice::Film);
     }
-    let numbers = AIR_NUMBERS.map(|(key, dimension, example)| {
+    let numbers = AIR_NUMBERS.map(|(key, dimension, example, (range, bound))| {
         let number = reader.required(&scope, key, dimension, example)?;
-        let (good, bound) = if key == "expansion" {
-            (number.value >= 0.0, "0 or more")
-        } else {
-            (number.value > 0.0, "more than 0")
-        };
+        let good = range.contains(&number.value);
         reader.within(&scope, key, &number, good, bound).then_some(number.value)
     });
+    if let Some(ambient) = top.table("ambient") {
+        for key in ["altitude", "pressure"].into_iter().filter(|key| ambient.has(key)) {
+            let span = ambient.span_of(key);
+            let message = format!(
+                "{key} = {} has no effect: the air's properties are given, and nothing else \
+                 depends on the pressure",
+                reader.typed(&span)
+            );
+            reader.warn(&ambient, span, message);
+        }
+    }
     let reference = reader.temperature(&scope, "reference-temperature");
     let [density, viscosity, conductivity, specific_heat, expansion] = numbers;
     let air = Air {
@@ -211,6 +233,11 @@ const MATERIAL: Keys = Keys {
     later: &["emissivity"],
 };
 
+/// Ranges of solids, from an evacuated panel to a heat pipe taken as a solid.
+const CONDUCTIVITY: (RangeInclusive<f64>, &str) = (1e-4..=1e6, "from 1e-4 W/(m K) to 1e6 W/(m K)");
+const DENSITY: (RangeInclusive<f64>, &str) = (1e-2..=1e5, "from 0.01 kg/m3 to 1e5 kg/m3");
+const SPECIFIC_HEAT: (RangeInclusive<f64>, &str) = (1.0..=1e6, "from 1 J/(kg K) to 1e6 J/(kg K)");
+
 /// Reads the `[[material]]` tables.
 pub(super) fn read_materials(reader: &mut Reader, top: &Scope) -> Vec<Located<Material>> {
     let mut materials: Vec<Located<Material>> = Vec::new();
@@ -223,11 +250,13 @@ pub(super) fn read_materials(reader: &mut Reader, top: &Scope) -> Vec<Located<Ma
             scope.place = format!("material \"{}\"", name.value);
         }
         reader.check_keys(&scope, &MATERIAL);
-        let both = reader.positive(&scope, "conductivity", Dimension::Conductivity);
-        let x = reader.positive(&scope, "conductivity-x", Dimension::Conductivity);
-        let y = reader.positive(&scope, "conductivity-y", Dimension::Conductivity);
-        let density = reader.positive(&scope, "density", Dimension::Density);
-        let specific_heat = reader.positive(&scope, "specific-heat", Dimension::SpecificHeat);
+        let mut conductivity =
+            |key: &str| reader.bounded(&scope, key, Dimension::Conductivity, CONDUCTIVITY);
+        let both = conductivity("conductivity");
+        let (x, y) = (conductivity("conductivity-x"), conductivity("conductivity-y"));
+        let density = reader.bounded(&scope, "density", Dimension::Density, DENSITY);
+        let specific_heat =
+            reader.bounded(&scope, "specific-heat", Dimension::SpecificHeat, SPECIFIC_HEAT);
         let has = ["conductivity", "conductivity-x", "conductivity-y"].map(|k| scope.has(k));
         match has {
             [true, false, false] | [false, true, true] => {}
@@ -306,9 +335,12 @@ pub(super) fn read_mesh(
     }
     if let Some(cells) = &cells {
         let good = cells.value.iter().all(|n| (1..=20_000).contains(n))
-            && cells.value[0] * cells.value[1] <= 100_000_000;
-        let bound = "from 1 to 20000 along each direction and 100 million in all";
-        reader.within(&scope, "cells", cells, good, bound);
+            && cells.value[0] * cells.value[1] <= CELL_LIMIT;
+        let bound = format!(
+            "from 1 to 20000 along each direction and {} million in all",
+            CELL_LIMIT / 1_000_000
+        );
+        reader.within(&scope, "cells", cells, good, &bound);
         for key in ["cell", "wall", "growth", "across"] {
             if scope.has(key) {
                 let message = format!("{key} has no meaning beside cells, a plain uniform mesh");
@@ -339,6 +371,13 @@ pub(super) fn read_mesh(
         growth: growth.map_or(defaults.growth, |g| g.value),
         across: across.map_or(defaults.across, |a| a.value),
     })
+}
+
+/// The keys of `[mesh]` that are given, and where their values are written.
+pub(super) fn mesh_keys(top: &Scope) -> Vec<(&'static str, Range<usize>)> {
+    let Some(scope) = top.table("mesh") else { return Vec::new() };
+    let given = MESH.known.iter().filter(|key| scope.has(key));
+    given.map(|key| (*key, scope.span_of(key))).collect()
 }
 
 const SOLVE: Keys = Keys { what: "[solve]", known: &["tolerance", "max-iterations"], later: &[] };

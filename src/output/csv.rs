@@ -1,4 +1,7 @@
 //! Tables for spreadsheets: comma separated, one header row with units, names quoted where needed.
+//!
+//! A name that a spreadsheet would take for a formula, because it begins with `=`, `+`, `-` or `@`,
+//! gets an apostrophe in front: spreadsheets then read a text.
 
 use ventrise_mesh::AIR;
 use ventrise_solver::{Progress, Sample};
@@ -25,12 +28,14 @@ impl Table {
     }
 }
 
-/// A text cell; quoted when it holds a comma, a quote or a line break.
+/// A text cell; quoted when it holds a comma, a quote or a line break, never a formula.
 fn quoted(text: &str) -> String {
+    let guard = if text.starts_with(['=', '+', '-', '@']) { "'" } else { "" };
+    let text = format!("{guard}{text}");
     if text.contains([',', '"', '\n', '\r']) {
         format!("\"{}\"", text.replace('"', "\"\""))
     } else {
-        text.to_string()
+        text
     }
 }
 
@@ -128,11 +133,19 @@ pub fn slots(summary: &Summary) -> String {
 
 /// `sides.csv`.
 pub fn sides(summary: &Summary) -> String {
-    let mut table =
-        Table::new(&["side", "heat_w", "conduction_w", "convection_w", "in_m3_s", "out_m3_s"]);
+    let mut table = Table::new(&[
+        "side",
+        "heat_w",
+        "conduction_w",
+        "convection_w",
+        "in_m3_s",
+        "out_m3_s",
+        "out_mean_c",
+    ]);
     for s in &summary.sides {
         let values = [s.heat_w, s.conduction_w, s.convection_w, s.in_m3_s, s.out_m3_s];
-        table.row(std::iter::once(s.name.to_string()).chain(values.map(number)));
+        let name = std::iter::once(s.name.to_string());
+        table.row(name.chain(values.map(number)).chain([perhaps(s.out_mean_c)]));
     }
     table.0
 }
@@ -190,6 +203,8 @@ mod tests {
             (quoted("core"), quoted("a, \"b\"")),
             ("core".into(), "\"a, \"\"b\"\"\"".into())
         );
+        let formulas = ["=1+1", "+x", "-x", "@x", "=a,b"].map(quoted);
+        assert_eq!(formulas, ["'=1+1", "'+x", "'-x", "'@x", "\"'=a,b\""]);
         let shown = [0.0, 70.5, -1.5e-9, f64::INFINITY, f64::NAN].map(number);
         assert_eq!(shown, ["0", "70.5", "-1.5e-9", "", ""]);
     }

@@ -2,8 +2,6 @@
 
 use std::io;
 
-use ventrise_mesh::Side;
-
 pub mod csv;
 pub mod folder;
 pub mod overview;
@@ -17,21 +15,13 @@ pub mod table;
 pub mod told;
 pub mod vtk;
 mod vtr;
+pub mod words;
 
+pub use crate::case::side_name;
 pub use folder::{Folder, FolderError, write_whole};
 pub use readings::{Interruption, Readings, Run};
 pub use results::{Results, ResultsError};
 pub use summary::Summary;
-
-/// Name of a side in files and on screen.
-pub fn side_name(side: Side) -> &'static str {
-    match side {
-        Side::Left => "left",
-        Side::Right => "right",
-        Side::Bottom => "bottom",
-        Side::Top => "top",
-    }
-}
 
 /// Writes all files of a run into its folder; returns their names. `revolve` is the number of
 /// sectors of the revolved fields, if they are wanted.

@@ -2,19 +2,19 @@
 
 use std::io::{self, Write};
 
-use ventrise_mesh::{Crossed, Crossing, GapEnd, Generated, Geometry, Mesh, MeshError, Side};
+use ventrise_mesh::{Crossed, Crossing, GapEnd, Generated, Geometry, MeshError, Side};
 use ventrise_solver::SideCondition;
 
 use crate::case::setup::layout;
 use crate::case::{AirChoice, Case, Estimate, ProbeShape};
+use crate::memory;
 
 use super::readings::celsius;
-use super::screen::{fixed, grouped};
 use super::side_name;
+use super::words::{counted, fixed, grouped, mm, shortened, sized};
 
-/// Memory of a solve [bytes per cell] and what it takes before the first cell, the factors of the
-/// coarsest mesh included: measured 101 MB on 12 000 cells, 141 MB on 28 000, 745 MB on a million.
-const MEMORY: [f64; 2] = [700.0, 100e6];
+/// Most columns of a name.
+const NAME: usize = 40;
 /// Most blocks and crossings listed one by one.
 const LISTED: usize = 40;
 
@@ -87,7 +87,7 @@ impl<'a> Overview<'a> {
             "Blocks    {} in {}, {} W in all",
             case.blocks().len(),
             counted(case.parts().len(), "part"),
-            fixed(case.heat(), 3)
+            sized(case.heat(), 3, 0.0)
         )?;
         for block in case.blocks().iter().take(LISTED) {
             let material = &case.materials()[block.material];
@@ -95,7 +95,7 @@ impl<'a> Overview<'a> {
             writeln!(
                 out,
                 "  {}: {}, x {} to {} mm, y {} to {} mm{}",
-                block.name.as_deref().unwrap_or("(no name)"),
+                block.name.as_deref().map_or("(no name)".into(), |name| shortened(name, NAME)),
                 material.name,
                 mm(x[0]),
                 mm(x[1]),
@@ -113,7 +113,7 @@ impl<'a> Overview<'a> {
             writeln!(
                 out,
                 "  part {}: {}, {} W, {limit}",
-                part.name,
+                shortened(&part.name, NAME),
                 counted(part.blocks.len(), "block"),
                 part.heat
             )?;
@@ -127,7 +127,7 @@ impl<'a> Overview<'a> {
             writeln!(
                 out,
                 "  {}: {}, {} to {} mm, {} cm2, loss {}",
-                slot.name,
+                shortened(&slot.name, NAME),
                 side_name(slot.side),
                 mm(slot.span[0]),
                 mm(slot.span[1]),
@@ -150,10 +150,11 @@ impl<'a> Overview<'a> {
         }
         for probe in self.case.probes() {
             let place = |at: [f64; 2]| format!("({}, {}) mm", mm(at[0]), mm(at[1]));
+            let name = shortened(&probe.name, NAME);
             match probe.shape {
-                ProbeShape::Point(at) => writeln!(out, "  {}: {}", probe.name, place(at))?,
+                ProbeShape::Point(at) => writeln!(out, "  {name}: {}", place(at))?,
                 ProbeShape::Line { from, to } => {
-                    writeln!(out, "  {}: {} to {}", probe.name, place(from), place(to))?;
+                    writeln!(out, "  {name}: {} to {}", place(from), place(to))?;
                 }
             }
         }
@@ -165,14 +166,15 @@ impl<'a> Overview<'a> {
         let [smallest, largest] = mesh.cell_sizes();
         writeln!(
             out,
-            "Mesh      {} x {} = {} cells, {} to {} mm",
+            "Mesh      {} x {} = {}, {} to {} mm",
             mesh.nx(),
             mesh.ny(),
-            grouped(mesh.cell_count()),
+            counted(mesh.cell_count(), "cell"),
             mm(smallest),
             mm(largest)
         )?;
-        writeln!(out, "  a solve takes about {} MB of memory", fixed(megabytes(mesh), 0))?;
+        let needed = memory::of_solve(mesh.cell_count());
+        writeln!(out, "  a solve takes up to {} MB of memory", grouped((needed / 1e6) as usize))?;
         let mut crossings: Vec<&Crossing> = self.crossings.iter().collect();
         let wanted = |c: &Crossing| c.crossed.wanted(self.case.mesh_choice().across);
         crossings.sort_by_key(|c| (c.cells >= wanted(c), matches!(c.crossed, Crossed::Block(_))));
@@ -184,8 +186,9 @@ impl<'a> Overview<'a> {
             };
             writeln!(
                 out,
-                "  {:>4} cells along {} across {}, {} mm{few}",
+                "  {:>4} {} along {} across {}, {} mm{few}",
                 crossing.cells,
+                if crossing.cells == 1 { "cell" } else { "cells" },
                 crossing.axis.letter(),
                 self.crossed(crossing.crossed),
                 mm(crossing.size())
@@ -196,8 +199,8 @@ impl<'a> Overview<'a> {
 
     fn crossed(&self, crossed: Crossed) -> String {
         let block = |b: usize| {
-            let name = self.case.blocks().get(b).and_then(|b| b.name.clone());
-            name.unwrap_or_else(|| format!("block {}", b + 1))
+            let name = self.case.blocks().get(b).and_then(|b| b.name.as_deref());
+            name.map_or_else(|| format!("block {}", b + 1), |name| shortened(name, NAME))
         };
         let end = |end: GapEnd| match end {
             GapEnd::Block(b) => block(b),
@@ -207,7 +210,7 @@ impl<'a> Overview<'a> {
             Crossed::Block(b) => block(b),
             Crossed::Slot(s) => {
                 let name = self.case.slots().get(s).map(|s| s.name.as_str());
-                format!("slot {}", name.unwrap_or_default())
+                format!("slot {}", shortened(name.unwrap_or_default(), NAME))
             }
             Crossed::Gap([a, b]) | Crossed::HalfGap([a, b]) => {
                 format!("the {} between {} and {}", crossed.word(), end(a), end(b))
@@ -227,7 +230,14 @@ impl<'a> Overview<'a> {
     }
 
     fn doubts(&self, out: &mut dyn Write) -> io::Result<()> {
-        let warnings = self.case.warnings();
+        let mut warnings = self.case.warnings();
+        let needed = memory::of_solve(self.generated.mesh.cell_count());
+        if let Some(available) = memory::available().filter(|available| needed > *available) {
+            warnings.push(format!(
+                "a solve on this mesh takes more memory than this machine has left, {} MB",
+                grouped((available / 1e6) as usize)
+            ));
+        }
         if warnings.is_empty() && self.generated.notes.is_empty() {
             return writeln!(out, "\nThe case is in order.");
         }
@@ -241,21 +251,6 @@ impl<'a> Overview<'a> {
 
 fn more(out: &mut dyn Write, count: usize) -> io::Result<()> {
     if count > LISTED { writeln!(out, "  and {} more", count - LISTED) } else { Ok(()) }
-}
-
-/// A count with its noun.
-fn counted(count: usize, noun: &str) -> String {
-    if count == 1 { format!("1 {noun}") } else { format!("{count} {noun}s") }
-}
-
-/// Millimetres with what digits it takes, four significant at most after the point.
-fn mm(metres: f64) -> String {
-    let text = format!("{:.4}", 1e3 * metres);
-    text.trim_end_matches('0').trim_end_matches('.').to_string()
-}
-
-fn megabytes(mesh: &Mesh) -> f64 {
-    (MEMORY[0] * mesh.cell_count() as f64 + MEMORY[1]) / 1e6
 }
 
 fn condition(condition: &SideCondition) -> String {

@@ -61,6 +61,8 @@ pub struct Readings {
     pub balance: Balance,
     /// Numbers.
     pub numbers: Numbers,
+    /// Lowest temperature rise of the air in a cell [K]; `None` without air.
+    pub min_air_rise: Option<f64>,
     /// Samples of every probe, in the case's order; one for a point.
     pub probes: Vec<Vec<Sample>>,
 }
@@ -87,6 +89,10 @@ impl Run<'_> {
             sides: side_flows(problem, air, state),
             balance: balance(problem, air, state),
             numbers: numbers(problem, air, state),
+            min_air_rise: (problem.mesh().regions().iter().zip(&state.t))
+                .filter(|(region, _)| **region == AIR)
+                .map(|(_, rise)| *rise)
+                .min_by(f64::total_cmp),
             probes: self.case.probes().iter().map(|p| sample(&p.shape)).collect(),
         }
     }

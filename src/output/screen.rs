@@ -3,15 +3,21 @@
 use std::io::{self, Write};
 use std::path::Path;
 
+use unicode_width::UnicodeWidthStr;
+
 use super::readings::Readings;
 use super::summary::{Part, Summary};
+pub(super) use super::words::fixed;
+use super::words::{counted, in_column, shortened, sized};
 
 /// Seconds in an hour: flows are shown per hour.
 const HOUR: f64 = 3600.0;
+/// Temperatures below ambient by more than this get a place of their own [K].
+const SHOWN_COLD: f64 = 0.05;
 /// Limits beyond which a table's name column is not widened [characters].
 const NAME_WIDTH: std::ops::RangeInclusive<usize> = 12..=32;
 
-/// Writes the end of a run: parts against limits, vents, heat, balances, verdict, warnings, files.
+/// Writes the end of a run: parts against limits, slots, heat, balances, verdict, warnings, files.
 ///
 /// # Errors
 /// What the stream reports.
@@ -24,8 +30,8 @@ pub fn report(
 ) -> io::Result<()> {
     writeln!(out, "{}", summary.case.title)?;
     writeln!(out)?;
-    parts(out, summary)?;
-    vents(out, summary)?;
+    parts(out, summary, readings)?;
+    slots(out, summary)?;
     heat(out, summary)?;
     balances(out, summary, readings)?;
     writeln!(out, "Verdict: {}", verdict(summary))?;
@@ -45,7 +51,7 @@ pub fn report(
 }
 
 fn name_width<'a>(names: impl Iterator<Item = &'a str>) -> usize {
-    let longest = names.map(|n| n.chars().count()).max().unwrap_or(0);
+    let longest = names.map(|name| name.width()).max().unwrap_or(0);
     longest.clamp(*NAME_WIDTH.start(), *NAME_WIDTH.end())
 }
 
@@ -54,14 +60,21 @@ fn shown(value: Option<f64>, decimals: usize) -> String {
     value.map_or_else(|| "-".into(), |v| fixed(v, decimals))
 }
 
-/// Fixed decimals without a negative zero.
-pub(super) fn fixed(value: f64, decimals: usize) -> String {
-    let text = format!("{value:.decimals$}");
-    let is_zero = text.starts_with('-') && !text.contains(|c: char| ('1'..='9').contains(&c));
-    if is_zero { text[1..].into() } else { text }
+fn columns(cells: &[String]) -> String {
+    cells.iter().map(|c| format!("{c:>12}")).collect()
 }
 
-fn parts(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
+/// The largest heat that enters or leaves: what is round-off beside it is shown as zero.
+fn heat_scale(summary: &Summary) -> f64 {
+    summary.balance.heat_in_w.abs().max(summary.balance.heat_out_w.abs())
+}
+
+/// Whether a temperature is so far below ambient that it must be seen.
+fn is_cold(celsius: Option<f64>, readings: &Readings) -> bool {
+    celsius.is_some_and(|c| c < readings.ambient - SHOWN_COLD)
+}
+
+fn parts(out: &mut dyn Write, summary: &Summary, readings: &Readings) -> io::Result<()> {
     if summary.parts.is_empty() {
         return Ok(());
     }
@@ -69,26 +82,28 @@ fn parts(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
     let key = |p: &Part| p.margin_k.unwrap_or(f64::INFINITY);
     parts.sort_by(|a, b| key(a).total_cmp(&key(b)));
     let w = name_width(parts.iter().map(|p| p.name.as_str()));
-    let header = ["heat W", "max degC", "limit degC", "margin K"];
-    writeln!(out, "{:w$}{}", "Part", header.map(|h| format!("{h:>12}")).concat())?;
+    let cold = parts.iter().any(|p| is_cold(p.min_c, readings));
+    let row = |heat: String, min: String, rest: [String; 3]| {
+        let min = cold.then_some(min);
+        columns(&std::iter::once(heat).chain(min).chain(rest).collect::<Vec<_>>())
+    };
+    let rest = ["max degC", "limit degC", "margin K"].map(String::from);
+    writeln!(out, "{:w$}{}", "Part", row("heat W".into(), "min degC".into(), rest))?;
+    let scale = parts.iter().fold(0.0_f64, |scale, p| scale.max(p.heat_w.abs()));
     for part in parts {
-        let cells = [
-            fixed(part.heat_w, 2),
-            shown(part.max_c, 1),
-            shown(part.limit_c, 1),
-            shown(part.margin_k, 1),
-        ];
+        let rest = [part.max_c, part.limit_c, part.margin_k].map(|value| shown(value, 1));
+        let cells = row(sized(part.heat_w, 2, scale), shown(part.min_c, 1), rest);
         let over = if part.margin_k.is_some_and(|m| m < 0.0) { "  over its limit" } else { "" };
         let band = part.band_c.map_or_else(String::new, |b| {
             format!("  sways from {} to {}", fixed(b[0], 1), fixed(b[1], 1))
         });
-        let cells = cells.map(|c| format!("{c:>12}")).concat();
-        writeln!(out, "{:w$}{cells}{over}{band}", part.name)?;
+        writeln!(out, "{}{cells}{over}{band}", in_column(&part.name, w))?;
     }
     writeln!(out)
 }
 
-fn vents(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
+/// Slots, and sides that are open.
+fn slots(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
     let open = summary.sides.iter().filter(|s| s.in_m3_s + s.out_m3_s > 0.0);
     let open: Vec<(String, _)> = open.map(|s| (format!("{} side", s.name), s)).collect();
     if summary.slots.is_empty() && open.is_empty() {
@@ -96,32 +111,39 @@ fn vents(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
     }
     let names = summary.slots.iter().map(|s| s.name.as_str());
     let w = name_width(names.chain(open.iter().map(|(name, _)| name.as_str())));
-    let header = ["in m3/h", "out m3/h", "out degC", "heat out W"];
-    writeln!(out, "{:w$}{}", "Vent", header.map(|h| format!("{h:>12}")).concat())?;
+    let header = ["in m3/h", "out m3/h", "out degC", "heat out W"].map(String::from);
+    writeln!(out, "{:w$}{}", "Slot", columns(&header))?;
+    let flows = summary.slots.iter().map(|s| s.in_m3_s + s.out_m3_s);
+    let flow_scale = flows
+        .chain(open.iter().map(|(_, s)| s.in_m3_s + s.out_m3_s))
+        .fold(0.0_f64, |scale, flow| scale.max(HOUR * flow));
+    let heat_scale = heat_scale(summary);
     let mut row = |name: &str, flows: [f64; 2], mean: Option<f64>, heat: f64| {
-        let [inflow, outflow] = flows.map(|f| fixed(HOUR * f, 2));
-        let cells = [inflow, outflow, shown(mean, 1), fixed(heat, 2)];
-        writeln!(out, "{name:w$}{}", cells.map(|c| format!("{c:>12}")).concat())
+        let [inflow, outflow] = flows.map(|f| sized(HOUR * f, 2, flow_scale));
+        let cells = [inflow, outflow, shown(mean, 1), sized(heat, 2, heat_scale)];
+        writeln!(out, "{}{}", in_column(name, w), columns(&cells))
     };
     for slot in &summary.slots {
         row(&slot.name, [slot.in_m3_s, slot.out_m3_s], slot.out_mean_c, slot.heat_w)?;
     }
     for (name, side) in &open {
-        row(name, [side.in_m3_s, side.out_m3_s], None, side.convection_w)?;
+        row(name, [side.in_m3_s, side.out_m3_s], side.out_mean_c, side.convection_w)?;
     }
     writeln!(out)
 }
 
 fn heat(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
     writeln!(out, "Heat leaves (W; below zero it enters)")?;
+    let scale = heat_scale(summary);
     if !summary.slots.is_empty() {
-        writeln!(out, "  {:22}{:>10}", "with air, slots", fixed(summary.heat_paths_w.slots, 2))?;
+        let slots = sized(summary.heat_paths_w.slots, 2, scale);
+        writeln!(out, "  {:22}{slots:>10}", "with air, slots")?;
     }
     for side in &summary.sides {
         for (what, heat) in [("through", side.conduction_w), ("with air,", side.convection_w)] {
             if heat != 0.0 {
                 let path = format!("{what} {} side", side.name);
-                writeln!(out, "  {path:22}{:>10}", fixed(heat, 2))?;
+                writeln!(out, "  {path:22}{:>10}", sized(heat, 2, scale))?;
             }
         }
     }
@@ -133,50 +155,55 @@ fn balances(out: &mut dyn Write, summary: &Summary, readings: &Readings) -> io::
     writeln!(
         out,
         "Heat balance   in {} W, out {} W, off by {:.1e}",
-        fixed(b.heat_in_w, 3),
-        fixed(b.heat_out_w, 3),
+        sized(b.heat_in_w, 3, 0.0),
+        sized(b.heat_out_w, 3, 0.0),
         b.heat_error
     )?;
     if b.mass_in_kg_s > 0.0 {
         let flow = HOUR * b.mass_in_kg_s / air.density;
-        writeln!(out, "Air balance    in {} m3/h, off by {:.1e}", fixed(flow, 3), b.mass_error)?;
-    }
-    if let Some(warmest) = air.max_temperature_c {
         writeln!(
             out,
-            "Air            ambient {} degC, warmest {} degC, fastest {} m/s, column {} Pa",
+            "Air balance    in {} m3/h, off by {:.1e}",
+            sized(flow, 3, 0.0),
+            b.mass_error
+        )?;
+    }
+    if let Some(warmest) = air.max_temperature_c {
+        let coldest = air.min_temperature_c.filter(|c| is_cold(Some(*c), readings));
+        let coldest = coldest.map(|c| format!("coldest {} degC, ", fixed(c, 1)));
+        writeln!(
+            out,
+            "Air            ambient {} degC, {}warmest {} degC, fastest {} m/s, column {} Pa",
             fixed(readings.ambient, 1),
+            coldest.unwrap_or_default(),
             fixed(warmest, 1),
-            fixed(air.max_speed_m_s, 3),
-            fixed(air.stack_pressure_pa, 3)
+            sized(air.max_speed_m_s, 3, 0.0),
+            sized(air.stack_pressure_pa, 3, 0.0)
         )?;
     }
     writeln!(
         out,
-        "Work           {} cells, {} iterations, {} s ({} s of processor time)",
-        grouped(mesh.cells),
-        grouped(summary.iterations),
+        "Work           {}, {}, {} s ({} s of processor time)",
+        counted(mesh.cells, "cell"),
+        counted(summary.iterations, "iteration"),
         fixed(summary.wall_seconds, 1),
         fixed(summary.cpu_seconds, 1)
     )?;
     writeln!(out)
 }
 
-/// A count with its digits in groups of three.
-pub(super) fn grouped(count: usize) -> String {
-    let digits = count.to_string();
-    let mut text = String::new();
-    for (n, digit) in digits.chars().enumerate() {
-        if n > 0 && (digits.len() - n).is_multiple_of(3) {
-            text.push(' ');
-        }
-        text.push(digit);
-    }
-    text
-}
-
 /// The verdict in a sentence.
 fn verdict(summary: &Summary) -> String {
+    if !summary.solved {
+        let r = &summary.residuals;
+        let worst = r.mass.max(r.momentum_x).max(r.momentum_y).max(r.energy);
+        return format!(
+            "{}. No solution was found: the equations are off by {worst:.0e} of their scale. The \
+             numbers above are the last attempt, no basis for a decision. Try a finer mesh, and \
+             see whether the heat has a way out.",
+            summary.verdict
+        );
+    }
     let sentence = match (summary.verdict, summary.stopped_by) {
         ("settled", _) => "settled. Every bound is met and the temperatures stand still".into(),
         ("swaying", _) => match summary.sway.as_ref().and_then(|s| s.period_s) {
@@ -186,6 +213,10 @@ fn verdict(summary: &Summary) -> String {
             ),
             None => "swaying. The flow keeps moving in a bounded way; read the bands".into(),
         },
+        ("drifting", Some("stalled")) => {
+            "drifting. The residuals no longer fell before every bound was met; see the balances"
+                .into()
+        }
         ("drifting", _) => "drifting. Temperatures still creep; the numbers are not final".into(),
         (_, Some("stalled")) => {
             "stopped early. The residuals no longer fell; the numbers are not final".into()
@@ -203,27 +234,16 @@ fn verdict(summary: &Summary) -> String {
 fn hottest(summary: &Summary) -> Option<String> {
     let judged = summary.parts.iter().filter_map(|p| Some((p, p.margin_k?)));
     let (part, margin) = judged.min_by(|a, b| a.1.total_cmp(&b.1))?;
+    let name = |part: &Part| shortened(&part.name, *NAME_WIDTH.end());
     Some(if margin < 0.0 {
-        format!("\"{}\" is {} K over its limit", part.name, fixed(-margin, 1))
+        format!("\"{}\" is {} K over its limit", name(part), fixed(-margin, 1))
     } else {
         let final_numbers = matches!(summary.verdict, "settled" | "swaying");
         format!(
             "{} limits are kept; \"{}\" has the least margin, {} K",
             if final_numbers { "All" } else { "So far all" },
-            part.name,
+            name(part),
             fixed(margin, 1)
         )
     })
-}
-
-#[cfg(test)]
-mod tests {
-    use super::*;
-
-    #[test]
-    fn numbers_are_shown_without_negative_zeros_and_in_groups() {
-        assert_eq!((fixed(-0.04, 1), fixed(-0.06, 1)), ("0.0".into(), "-0.1".into()));
-        assert_eq!((grouped(999), grouped(1000)), ("999".into(), "1 000".into()));
-        assert_eq!(grouped(1_234_567), "1 234 567");
-    }
 }

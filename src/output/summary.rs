@@ -5,7 +5,7 @@
 
 use serde::Serialize;
 use ventrise_mesh::{AIR, Side};
-use ventrise_solver::{Sample, StopReason, Verdict};
+use ventrise_solver::{SOLVED, Sample, Solution, StopReason, Verdict};
 
 use crate::case::{Case, ProbeShape};
 
@@ -25,6 +25,9 @@ pub struct Summary {
     pub ventrise: &'static str,
     /// Which case.
     pub case: CaseName,
+    /// Whether the equations are met well enough for the numbers to mean anything; if not, they are
+    /// the last attempt and no margin is given.
+    pub solved: bool,
     /// `settled`, `swaying`, `drifting` or `stopped early`.
     pub verdict: &'static str,
     /// What ended the iteration early: `signal`, `time limit`, `iteration limit` or `stalled`
@@ -118,6 +121,8 @@ pub struct AirNumbers {
     pub max_speed_m_s: f64,
     /// Highest temperature of the air [°C].
     pub max_temperature_c: Option<f64>,
+    /// Lowest temperature of the air [°C].
+    pub min_temperature_c: Option<f64>,
     /// Pressure of the warm column between lowest and highest opening [Pa].
     pub stack_pressure_pa: f64,
 }
@@ -217,6 +222,8 @@ pub struct Slot {
     pub heat_w: f64,
     /// Free area [m²].
     pub area_m2: f64,
+    /// Lowest and highest net flow in while the flow sways [m³/s].
+    pub net_in_band_m3_s: Option<[f64; 2]>,
 }
 
 /// A side.
@@ -234,6 +241,8 @@ pub struct SideHeat {
     pub in_m3_s: f64,
     /// Air that leaves where the side is open [m³/s].
     pub out_m3_s: f64,
+    /// Mean temperature of the air that leaves, when the side is open [°C].
+    pub out_mean_c: Option<f64>,
 }
 
 /// A probe: a point, or a line with its extremes.
@@ -292,6 +301,7 @@ impl Summary {
         Summary {
             ventrise: env!("CARGO_PKG_VERSION"),
             case: CaseName { title: case.title().into(), sha256: case.sha256().into() },
+            solved: solved(solution),
             verdict: verdict_word(&solution.verdict),
             stopped_by: stopped_by(run),
             sway: match solution.verdict {
@@ -315,6 +325,7 @@ impl Summary {
                 expansion: air.expansion,
                 max_speed_m_s: numbers.max_speed,
                 max_temperature_c: numbers.max_air_rise.map(celsius),
+                min_temperature_c: readings.min_air_rise.map(celsius),
                 stack_pressure_pa: numbers.stack_pressure,
             },
             numbers: Dimensionless {
@@ -344,8 +355,8 @@ impl Summary {
                 sides: readings.sides.iter().map(heat_of).sum(),
                 radiation: 0.0,
             },
-            parts: parts(case, readings, &solution.verdict),
-            slots: slots(case, readings),
+            parts: parts(case, readings, solution),
+            slots: slots(case, readings, &solution.verdict),
             sides: sides(readings),
             probes: probes(case, readings),
             blocks: blocks(case, readings),
@@ -381,6 +392,10 @@ pub fn verdict_word(verdict: &Verdict) -> &'static str {
     }
 }
 
+fn solved(solution: &Solution) -> bool {
+    solution.history.last().is_some_and(|row| row.residuals.largest() <= SOLVED)
+}
+
 fn stopped_by(run: &Run) -> Option<&'static str> {
     match (run.interruption, run.solution.stop) {
         (Some(Interruption::Signal), _) => Some("signal"),
@@ -391,7 +406,8 @@ fn stopped_by(run: &Run) -> Option<&'static str> {
     }
 }
 
-fn parts(case: &Case, readings: &Readings, verdict: &Verdict) -> Vec<Part> {
+fn parts(case: &Case, readings: &Readings, solution: &Solution) -> Vec<Part> {
+    let (verdict, solved) = (&solution.verdict, solved(solution));
     let band = |n: usize| match verdict {
         Verdict::Swaying { band, .. } => band.get(n).map(|b| b.map(|r| readings.ambient + r)),
         _ => None,
@@ -410,25 +426,34 @@ fn parts(case: &Case, readings: &Readings, verdict: &Verdict) -> Vec<Part> {
             max_c,
             band_c: band(n),
             limit_c,
-            margin_k: limit_c.zip(hottest).map(|(limit, hottest)| limit - hottest),
+            margin_k: limit_c
+                .zip(hottest)
+                .filter(|_| solved)
+                .map(|(limit, hottest)| limit - hottest),
             resistance_k_w: found.filter(|_| part.heat > 0.0).map(|f| f.max / part.heat),
         }
     };
     case.parts().iter().enumerate().map(part).collect()
 }
 
-fn slots(case: &Case, readings: &Readings) -> Vec<Slot> {
-    let slot = |(slot, flow): (&crate::case::Slot, &ventrise_solver::OpeningFlow)| Slot {
-        name: slot.name.clone(),
-        side: side_name(slot.side),
-        in_m3_s: flow.inflow,
-        out_m3_s: flow.outflow,
-        out_mean_c: flow.out_mean_rise.map(|rise| readings.ambient + rise),
-        mean_pressure_pa: flow.mean_pressure,
-        heat_w: flow.heat,
-        area_m2: flow.area,
+fn slots(case: &Case, readings: &Readings, verdict: &Verdict) -> Vec<Slot> {
+    let band = |n: usize| match verdict {
+        Verdict::Swaying { slot_band, .. } => slot_band.get(n).copied(),
+        _ => None,
     };
-    case.slots().iter().zip(&readings.slots).map(slot).collect()
+    let slot =
+        |(n, (slot, flow)): (usize, (&crate::case::Slot, &ventrise_solver::OpeningFlow))| Slot {
+            name: slot.name.clone(),
+            side: side_name(slot.side),
+            in_m3_s: flow.inflow,
+            out_m3_s: flow.outflow,
+            out_mean_c: flow.out_mean_rise.map(|rise| readings.ambient + rise),
+            mean_pressure_pa: flow.mean_pressure,
+            heat_w: flow.heat,
+            area_m2: flow.area,
+            net_in_band_m3_s: band(n),
+        };
+    case.slots().iter().zip(&readings.slots).enumerate().map(slot).collect()
 }
 
 fn sides(readings: &Readings) -> Vec<SideHeat> {
@@ -441,6 +466,7 @@ fn sides(readings: &Readings) -> Vec<SideHeat> {
             convection_w: flow.open.heat,
             in_m3_s: flow.open.inflow,
             out_m3_s: flow.open.outflow,
+            out_mean_c: flow.open.out_mean_rise.map(|rise| readings.ambient + rise),
         }
     };
     Side::ALL.map(side).to_vec()

@@ -14,6 +14,9 @@ pub struct Told {
     pub ventrise: String,
     /// Which case.
     pub case: ToldCase,
+    /// Whether the equations are met well enough for the numbers to mean anything.
+    #[serde(default = "yes")]
+    pub solved: bool,
     /// `settled`, `swaying`, `drifting` or `stopped early`.
     pub verdict: String,
     /// What ended it early.
@@ -67,6 +70,11 @@ pub struct Told {
     pub warnings: Vec<String>,
 }
 
+/// Older summaries tell of solutions only.
+fn yes() -> bool {
+    true
+}
+
 /// Title and fingerprint.
 #[derive(Debug, Clone, Deserialize)]
 pub struct ToldCase {
@@ -116,6 +124,9 @@ pub struct ToldAir {
     /// Highest temperature [°C].
     #[serde(default)]
     pub max_temperature_c: Option<f64>,
+    /// Lowest temperature [°C].
+    #[serde(default)]
+    pub min_temperature_c: Option<f64>,
     /// Pressure of the warm column [Pa].
     #[serde(default)]
     pub stack_pressure_pa: Option<f64>,
@@ -226,6 +237,9 @@ pub struct ToldSide {
     /// Air out [m³/s].
     #[serde(default)]
     pub out_m3_s: f64,
+    /// Mean temperature of the leaving air [°C].
+    #[serde(default)]
+    pub out_mean_c: Option<f64>,
 }
 
 /// A probe.

@@ -14,55 +14,139 @@ pub(crate) fn row(
     state: &State,
     rhs: &[f64],
     j: usize,
-    mut emit: impl FnMut(usize, f64, Coefficients),
+    emit: impl FnMut(usize, f64, Coefficients),
 ) {
-    let (nx, ny) = (level.nx, level.ny);
-    let (u, v, t) = (&state.u[..], &state.v[..], &state.t[..]);
-    let heat = level.air.specific_heat;
-    let scheme = (level.convection, level.peclet_limit);
-    for i in 0..nx {
-        let n = i + j * nx;
-        let here = t[n];
-        let mut c = Coefficients::default();
-        let mut r = rhs[n];
-        let mut diagonal = level.side_conductance[n];
-        let west = -heat * level.x_flow(u, i, j);
-        if i > 0 {
-            let conductance = level.x_conductance[i + j * (nx + 1)];
-            let [exact, implicit] = link(scheme, conductance, west, 1.0 - level.x_weight[i]);
-            r += exact * (t[n - 1] - here);
+    let row = Row::new(level, state, rhs, j);
+    with_constants!(level.convection, j > 0, j + 1 < level.ny, row.run(emit));
+}
+
+/// A row's data; where there is no row below (above), this one stands for it, unused.
+struct Row<'a> {
+    nx: usize,
+    slack: f64,
+    /// Heat capacity flow per area and speed, ρ₀·c_p [J/(m³·K)]; times the row's height.
+    capacity: f64,
+    tall: f64,
+    weights: [f64; 2],
+    x_area: &'a [f64],
+    y_area: &'a [f64],
+    x_weight: &'a [f64],
+    u: &'a [f64],
+    v_low: &'a [f64],
+    v_high: &'a [f64],
+    t: &'a [f64],
+    t_low: &'a [f64],
+    t_high: &'a [f64],
+    conductance: &'a [f64],
+    conductance_low: &'a [f64],
+    conductance_high: &'a [f64],
+    side: &'a [f64],
+    rhs: &'a [f64],
+}
+
+impl<'a> Row<'a> {
+    #[inline(always)]
+    fn new(level: &'a Level, state: &'a State, rhs: &'a [f64], j: usize) -> Row<'a> {
+        let (nx, ny) = (level.nx, level.ny);
+        let span = |j: usize, width: usize| j * width..(j + 1) * width;
+        let cells = span(j, nx);
+        let (below, above) = (span(j.saturating_sub(1), nx), span((j + 1).min(ny - 1), nx));
+        let capacity = level.air.density * level.air.specific_heat;
+        Row {
+            nx,
+            slack: level.slack,
+            capacity,
+            tall: capacity * level.dy[j],
+            weights: [1.0 - level.y_weight[j], level.y_weight[j + 1]],
+            x_area: &level.x_area[..nx + 1],
+            y_area: &level.y_area[..nx],
+            x_weight: &level.x_weight[..nx + 1],
+            u: &state.u[span(j, nx + 1)],
+            v_low: &state.v[cells.clone()],
+            v_high: &state.v[span(j + 1, nx)],
+            t: &state.t[cells.clone()],
+            t_low: &state.t[below],
+            t_high: &state.t[above],
+            conductance: &level.x_conductance[span(j, nx + 1)],
+            conductance_low: &level.y_conductance[cells.clone()],
+            conductance_high: &level.y_conductance[span(j + 1, nx)],
+            side: &level.side_conductance[cells.clone()],
+            rhs: &rhs[cells],
+        }
+    }
+
+    #[inline(always)]
+    fn run<const CENTRAL: bool, const LOW: bool, const HIGH: bool>(
+        &self,
+        mut emit: impl FnMut(usize, f64, Coefficients),
+    ) {
+        let last = self.nx - 1;
+        if last == 0 {
+            let (r, c) = self.cell::<CENTRAL, LOW, HIGH, false, false>(0);
+            emit(0, r, c);
+            return;
+        }
+        let (r, c) = self.cell::<CENTRAL, LOW, HIGH, false, true>(0);
+        emit(0, r, c);
+        for i in 1..last {
+            let (r, c) = self.cell::<CENTRAL, LOW, HIGH, true, true>(i);
+            emit(i, r, c);
+        }
+        let (r, c) = self.cell::<CENTRAL, LOW, HIGH, true, false>(last);
+        emit(last, r, c);
+    }
+
+    #[inline(always)]
+    fn cell<
+        const CENTRAL: bool,
+        const LOW: bool,
+        const HIGH: bool,
+        const LEFT: bool,
+        const RIGHT: bool,
+    >(
+        &self,
+        i: usize,
+    ) -> (f64, Coefficients) {
+        let here = self.t[i];
+        let mut c = Coefficients { rest: self.side[i], ..Coefficients::default() };
+        let mut r = self.rhs[i];
+        let west = -self.tall * self.x_area[i] * self.u[i];
+        if LEFT {
+            let [exact, implicit] =
+                link::<CENTRAL>(self.slack, self.conductance[i], west, 1.0 - self.x_weight[i]);
+            r += exact * (self.t[i - 1] - here);
             c.w = implicit;
         } else {
-            diagonal += (-west).max(0.0);
+            c.rest += (-west).max(0.0);
         }
-        let east = heat * level.x_flow(u, i + 1, j);
-        if i + 1 < nx {
-            let conductance = level.x_conductance[i + 1 + j * (nx + 1)];
-            let [exact, implicit] = link(scheme, conductance, east, level.x_weight[i + 1]);
-            r += exact * (t[n + 1] - here);
+        let east = self.tall * self.x_area[i + 1] * self.u[i + 1];
+        if RIGHT {
+            let [exact, implicit] =
+                link::<CENTRAL>(self.slack, self.conductance[i + 1], east, self.x_weight[i + 1]);
+            r += exact * (self.t[i + 1] - here);
             c.e = implicit;
         } else {
-            diagonal += (-east).max(0.0);
+            c.rest += (-east).max(0.0);
         }
-        let south = -heat * level.y_flow(v, i, j);
-        if j > 0 {
+        let area = self.capacity * self.y_area[i];
+        let south = -area * self.v_low[i];
+        if LOW {
             let [exact, implicit] =
-                link(scheme, level.y_conductance[n], south, 1.0 - level.y_weight[j]);
-            r += exact * (t[n - nx] - here);
+                link::<CENTRAL>(self.slack, self.conductance_low[i], south, self.weights[0]);
+            r += exact * (self.t_low[i] - here);
             c.s = implicit;
         } else {
-            diagonal += (-south).max(0.0);
+            c.rest += (-south).max(0.0);
         }
-        let north = heat * level.y_flow(v, i, j + 1);
-        if j + 1 < ny {
+        let north = area * self.v_high[i];
+        if HIGH {
             let [exact, implicit] =
-                link(scheme, level.y_conductance[n + nx], north, level.y_weight[j + 1]);
-            r += exact * (t[n + nx] - here);
+                link::<CENTRAL>(self.slack, self.conductance_high[i], north, self.weights[1]);
+            r += exact * (self.t_high[i] - here);
             c.n = implicit;
         } else {
-            diagonal += (-north).max(0.0);
+            c.rest += (-north).max(0.0);
         }
-        c.p = c.neighbours() + diagonal;
-        emit(i, r - diagonal * here, c);
+        (r - c.rest * here, c)
     }
 }

@@ -3,32 +3,48 @@
 //! Convection is written as Σ F·(φ_face − φ_P), F outward [kg/s]: the flux form less φ_P times the
 //! cell's mass imbalance. Both agree once mass is conserved, and this form keeps temperatures
 //! between their neighbours before.
+//!
+//! What lies where is known before a row begins: whether there are rows below and above it, and
+//! columns beside it, are constants of the routines, so that no question is asked per cell.
 
+/// Calls a routine with the constants that fit: the scheme, rows below, rows above.
+macro_rules! with_constants {
+    ($convection:expr, $low:expr, $high:expr, $row:ident.$run:ident($emit:expr)) => {
+        match ($convection, $low, $high) {
+            ($crate::Convection::Central, false, false) => $row.$run::<true, false, false>($emit),
+            ($crate::Convection::Central, false, true) => $row.$run::<true, false, true>($emit),
+            ($crate::Convection::Central, true, false) => $row.$run::<true, true, false>($emit),
+            ($crate::Convection::Central, true, true) => $row.$run::<true, true, true>($emit),
+            ($crate::Convection::Upwind, false, false) => $row.$run::<false, false, false>($emit),
+            ($crate::Convection::Upwind, false, true) => $row.$run::<false, false, true>($emit),
+            ($crate::Convection::Upwind, true, false) => $row.$run::<false, true, false>($emit),
+            ($crate::Convection::Upwind, true, true) => $row.$run::<false, true, true>($emit),
+        }
+    };
+}
 pub(crate) mod energy;
 pub(crate) mod mass;
 pub(crate) mod momentum;
-
-use crate::Convection;
 
 /// One neighbour's share: [exact, implicit] coefficients of (φ_nb − φ_P).
 ///
 /// Exact: D − F·w with w the neighbour's weight in the face value. Implicit: the same while
 /// positive, else upwind, so that relaxation stays stable. On coarser meshes D is raised until
-/// |F|/D is within `peclet_limit`: central differences there would show waves, not the flow. `conductance` D, outward `flow` F.
+/// |F|/D is within a limit, `slack` being its inverse: central differences there would show waves,
+/// not the flow. `conductance` D, outward `flow` F.
 #[inline(always)]
-pub(crate) fn link(
-    (scheme, peclet_limit): (Convection, f64),
+pub(crate) fn link<const CENTRAL: bool>(
+    slack: f64,
     conductance: f64,
     flow: f64,
     weight: f64,
 ) -> [f64; 2] {
-    let conductance = conductance.max(flow.abs() / peclet_limit);
-    let upwind = conductance + (-flow).max(0.0);
-    match scheme {
-        Convection::Central => {
-            let central = conductance - flow * weight;
-            [central, central.max((-flow).max(0.0))]
-        }
-        Convection::Upwind => [upwind, upwind],
+    let conductance = conductance.max(flow.abs() * slack);
+    let inward = (-flow).max(0.0);
+    if CENTRAL {
+        let central = conductance - flow * weight;
+        [central, central.max(inward)]
+    } else {
+        [conductance + inward; 2]
     }
 }

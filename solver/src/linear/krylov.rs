@@ -1,7 +1,7 @@
 //! Conjugate gradients preconditioned by multigrid.
 
 use super::multigrid::Multigrid;
-use super::stencil::{self, Coefficients};
+use super::stencil::{self, Stencil};
 use crate::par;
 
 /// What a linear solution cost and reached.
@@ -16,7 +16,7 @@ pub(crate) struct Info {
 /// Work arrays of the method.
 #[derive(Debug)]
 pub(crate) struct KrylovWork {
-    arrays: [Vec<f64>; 5],
+    arrays: [Vec<f32>; 4],
 }
 
 impl KrylovWork {
@@ -29,14 +29,15 @@ impl KrylovWork {
 /// Conjugate gradients with a flexible (Polak–Ribière) update, since a multigrid cycle is not
 /// exactly symmetric. Starts from x = 0. Stops when ‖r‖₂ ≤ tolerance·‖b‖₂ or after `limit` steps.
 pub(crate) fn conjugate_gradients(
-    (a, nx): (&[Coefficients], usize),
-    x: &mut [f64],
-    b: &[f64],
+    a: &Stencil,
+    x: &mut [f32],
+    b: &[f32],
     (tolerance, limit): (f64, usize),
     multigrid: &mut Multigrid,
     work: &mut KrylovWork,
 ) -> Info {
-    let [r, z, p, q, r_old] = &mut work.arrays;
+    let nx = a.nx;
+    let [r, z, p, q] = &mut work.arrays;
     x.fill(0.0);
     r.copy_from_slice(b);
     let b_norm = par::dot(b, b, nx).sqrt();
@@ -49,27 +50,25 @@ pub(crate) fn conjugate_gradients(
     p.copy_from_slice(z);
     let mut rz = par::dot(r, z, nx);
     for _ in 0..limit {
-        stencil::apply(a, p, q, nx);
-        let pq = par::dot(p, q, nx);
+        let pq = stencil::apply(a, p, q);
         if pq <= 0.0 || !pq.is_finite() {
             break;
         }
         let step = rz / pq;
-        par::add_scaled(x, step, p, nx);
-        r_old.copy_from_slice(r);
-        par::add_scaled(r, -step, q, nx);
+        par::add_scaled(x, step as f32, p, nx);
+        par::add_scaled(r, -step as f32, q, nx);
         info.iterations += 1;
         info.residual = par::dot(r, r, nx).sqrt() / b_norm;
         if info.residual <= tolerance || info.iterations == limit {
             break;
         }
         multigrid.cycle(a, z, r);
-        let rz_new = par::dot(r, z, nx);
-        let beta = ((rz_new - par::dot(r_old, z, nx)) / rz).max(0.0);
-        rz = rz_new;
+        // (r_new − r_old)·z = −step·q·z
+        let beta = (-step * par::dot(q, z, nx) / rz).max(0.0);
+        rz = par::dot(r, z, nx);
         par::each_row(p, nx, |j, row| {
             let z = &z[j * nx..(j + 1) * nx];
-            row.iter_mut().zip(z).for_each(|(p, z)| *p = z + beta * *p);
+            row.iter_mut().zip(z).for_each(|(p, z)| *p = z + beta as f32 * *p);
         });
     }
     info

@@ -3,8 +3,10 @@
 use ventrise_mesh::{Geometry, Side};
 use ventrise_solver::SideCondition;
 
+use crate::case::units::rounded;
 use crate::case::{Case, ProbeShape, Slot, side_name};
 use crate::output::readings::celsius;
+use crate::output::words::mm;
 
 use super::colour::{AIR_MARK, COOLED, FAINT, HEATED, INK, MESH, PAPER, SOLID};
 use super::frame::{Frame, SMALL, WIDTH, side_line};
@@ -114,10 +116,13 @@ fn named(frame: &Frame, case: &Case) -> Vec<Named> {
     by_name(case).into_iter().map(named).collect()
 }
 
-/// Up to four decimals, no more than it takes.
+/// Up to six significant digits, no more than it takes.
 fn number(value: f64) -> String {
-    let text = format!("{value:.4}");
-    text.trim_end_matches('0').trim_end_matches('.').replace('-', "−")
+    rounded(value, 6).replace('-', "−")
+}
+
+fn millimetres(metres: f64) -> String {
+    mm(metres).replace('-', "−")
 }
 
 /// Letter of a slot: A to Z, then A2 to Z2 and so on.
@@ -212,15 +217,15 @@ fn key(svg: &mut Svg, case: &Case, top: f64) -> f64 {
             "{}: {}, {} to {} mm, {} cm², loss {}",
             slot.name,
             side_name(slot.side),
-            number(1e3 * slot.span[0]),
-            number(1e3 * slot.span[1]),
+            millimetres(slot.span[0]),
+            millimetres(slot.span[1]),
             significant(1e4 * case.slot_area(slot)),
             number(slot.loss)
         );
         row(svg, &text, &|svg, y| badge(svg, [22.0, y - 4.5], &letter(n)));
     }
     for (n, probe) in case.probes().iter().enumerate().take(LISTED) {
-        let place = |p: [f64; 2]| format!("({}, {})", number(1e3 * p[0]), number(1e3 * p[1]));
+        let place = |p: [f64; 2]| format!("({}, {})", millimetres(p[0]), millimetres(p[1]));
         let text = match probe.shape {
             ProbeShape::Point(at) => format!("{}: at {} mm", probe.name, place(at)),
             ProbeShape::Line { from, to } => {

@@ -83,7 +83,10 @@ fn row(svg: &mut Svg, part: &ToldPart, ambient: f64, top: f64, at: &dyn Fn(f64) 
             let (what, colour) = if over { ("over", ALARM) } else { ("below", INK) };
             (format!("{hottest} °C, {by} K {what} its limit of {limit}"), colour)
         }
-        _ => (format!("{hottest} °C, no limit"), FAINT),
+        (None, Some(limit)) => {
+            (format!("{hottest} °C, limit {}, not judged", decimal(limit, 1)), FAINT)
+        }
+        (_, None) => (format!("{hottest} °C, no limit"), FAINT),
     };
     let end = WIDTH - 8.0;
     let set = Type { bold: over, ..Type::new(SMALL) };

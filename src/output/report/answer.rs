@@ -3,8 +3,8 @@
 use serde::Serialize;
 
 use crate::output::results::Results;
-use crate::output::screen::fixed;
 use crate::output::told::ToldPart;
+use crate::output::words::fixed;
 
 use super::rows::number;
 
@@ -35,6 +35,9 @@ pub fn question(results: &Results) -> String {
 /// The answer.
 pub fn answer(results: &Results) -> Answer {
     let told = &results.told;
+    if !told.solved {
+        return unsolved(results);
+    }
     let is_final = matches!(told.verdict.as_str(), "settled" | "swaying");
     let judged = told.parts.iter().filter_map(|p| Some((p, p.margin_k?, p.limit_c?)));
     let Some((part, margin, limit)) = judged.clone().min_by(|a, b| a.1.total_cmp(&b.1)) else {
@@ -66,6 +69,16 @@ pub fn answer(results: &Results) -> Answer {
     };
     let (tone, word) = if margin < 0.0 { ("over", "No") } else { ("kept", "Yes") };
     Answer { tone, word, sentence: format!("{sentence}{sways}.") }
+}
+
+/// The answer when the equations are not met.
+fn unsolved(results: &Results) -> Answer {
+    let worst = results.told.residuals.values().flatten().fold(0.0_f64, |a, b| a.max(*b));
+    let sentence = format!(
+        "No solution was found: the equations are off by {worst:.0e} of their scale. Everything \
+         below is the last attempt, no basis for a decision."
+    );
+    Answer { tone: "open", word: "Undecided", sentence }
 }
 
 /// The answer when no part has a limit.

@@ -3,8 +3,7 @@
 use ventrise_mesh::Geometry;
 
 use crate::output::results::Results;
-
-use super::rows::number;
+use crate::output::words::{mm, sized};
 
 /// The cautions that apply, each with its heading.
 pub fn cautions(results: &Results) -> Vec<[String; 2]> {
@@ -17,7 +16,7 @@ pub fn cautions(results: &Results) -> Vec<[String; 2]> {
             Geometry::Planar { depth } => format!(
                 "The section is taken to be the same over a depth of {} mm, and nothing happens at \
              its two ends: end walls, cables and whatever varies along the depth are not in it.",
-                number(1e3 * depth)
+                mm(depth)
             ),
             Geometry::Axisymmetric => {
                 "Everything is taken to be round about the axis: feet, brackets, \
@@ -40,7 +39,7 @@ pub fn cautions(results: &Results) -> Vec<[String; 2]> {
             "Radiation is computed between grey, diffuse surfaces and carries {} W here. \
              Emissivities are assumptions: a surface that ages, gets dirty or is painted changes \
              them. Sunshine counts only as far as the case gives it as heat.",
-            number((1e3 * heat).round() / 1e3)
+            sized(heat, 3, 0.0)
         ),
         _ => "Heat by radiation is not counted. Painted, anodised and plastic surfaces often give \
               off as much heat by radiation as to the air; such parts get less warm than told \

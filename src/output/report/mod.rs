@@ -15,8 +15,8 @@ use super::csv;
 use super::pictures::{Picture, pictures};
 use super::readings::{Readings, Run};
 use super::results::{Results, ResultsError, Texts};
-use super::screen::fixed;
 use super::summary::Summary;
+use super::words::{fixed, mm};
 
 /// The picture that stands beside the margins.
 const FIRST: &str = "margins.svg";
@@ -97,7 +97,7 @@ fn page(results: &Results, pictures: &[Picture]) -> Result<String, minijinja::Er
         pictures => pictures.iter().filter(|p| p.file != FIRST).map(shown).collect::<Vec<_>>(),
         paths => rows::paths(results),
         paths_note => rows::paths_note(results),
-        vents => rows::vents(results),
+        slots => rows::slots(results),
         probes => rows::probes(results),
         state => rows::state(results),
         validity => rows::validity(results),
@@ -113,7 +113,6 @@ fn page(results: &Results, pictures: &[Picture]) -> Result<String, minijinja::Er
 fn facts(results: &Results) -> Vec<[String; 2]> {
     let (case, told) = (&results.case, &results.told);
     let section = case.section();
-    let mm = |metres: f64| rows::number(1e3 * metres);
     let size = match section.geometry {
         ventrise_mesh::Geometry::Planar { depth } => {
             let [w, h, d] = [section.width, section.height, depth].map(mm);

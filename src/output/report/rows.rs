@@ -3,13 +3,18 @@
 use serde::Serialize;
 use ventrise_solver::{HEAT_BOUND, MASS_BOUND};
 
+use crate::case::units::rounded;
 use crate::output::results::Results;
-use crate::output::screen::{fixed, grouped};
 use crate::output::summary::{BOUSSINESQ_SPREAD, TURBULENT_REYNOLDS};
 use crate::output::told::ToldPart;
+use crate::output::words::{fixed, grouped, mm, sized};
 
 /// Seconds in an hour: flows are shown per hour.
 const HOUR: f64 = 3600.0;
+/// Air below ambient by more than this gets a row of its own [K].
+const SHOWN_COLD: f64 = 0.05;
+/// Smaller shares of all heat are round-off.
+const ROUND_OFF: f64 = 1e-6;
 /// Rayleigh number beyond which layers on upright surfaces turn turbulent (common handbook value).
 const TURBULENT_RAYLEIGH: f64 = 1e9;
 
@@ -37,14 +42,17 @@ pub struct Path {
     pub bar: String,
 }
 
-/// Up to four decimals, no more than it takes.
+/// Up to six significant digits, no more than it takes.
 pub fn number(value: f64) -> String {
-    let text = fixed(value, 4);
-    text.trim_end_matches('0').trim_end_matches('.').to_string()
+    rounded(value, 6)
 }
 
 fn perhaps(value: Option<f64>, decimals: usize) -> String {
     value.map_or_else(|| "–".into(), |v| fixed(v, decimals))
+}
+
+fn of_size(value: Option<f64>, decimals: usize) -> String {
+    value.map_or_else(|| "–".into(), |v| sized(v, decimals, 0.0))
 }
 
 fn scientific(value: Option<f64>) -> String {
@@ -57,13 +65,17 @@ pub fn margins(results: &Results) -> Table {
     let key = |p: &ToldPart| p.margin_k.unwrap_or(f64::INFINITY);
     parts.sort_by(|a, b| key(a).total_cmp(&key(b)));
     let row = |p: &&ToldPart| {
-        let judged = match p.margin_k {
-            Some(margin) if margin < 0.0 => "over",
-            Some(_) => "kept",
-            None => "no limit",
+        let judged = match (p.margin_k, p.limit_c) {
+            (Some(margin), _) if margin < 0.0 => "over",
+            (Some(_), _) => "kept",
+            (None, Some(_)) => "not judged",
+            (None, None) => "none",
         };
         let max = match p.band_c {
-            Some([low, high]) => format!("{} to {}", fixed(low, 1), fixed(high, 1)),
+            Some([low, high]) if high - low >= 0.05 => {
+                format!("{} to {}", fixed(low, 1), fixed(high, 1))
+            }
+            Some([_, high]) => fixed(high, 1),
             None => perhaps(p.max_c, 1),
         };
         let numbers = [
@@ -96,12 +108,14 @@ pub fn paths(results: &Results) -> Vec<Path> {
     // Slots and sides are told one by one; what else there is has its own name.
     let others = told.heat_paths_w.iter().filter(|(k, _)| !matches!(k.as_str(), "slots" | "sides"));
     found.extend(others.filter_map(|(name, heat)| Some((name.replace('_', " "), (*heat)?))));
-    found.retain(|(_, heat)| heat.abs() >= 5e-4);
+    let b = &told.balance;
+    let scale = b.heat_in_w.unwrap_or(0.0).abs().max(b.heat_out_w.unwrap_or(0.0).abs());
+    found.retain(|(_, heat)| heat.abs() > ROUND_OFF * scale);
     found.sort_by(|a, b| b.1.total_cmp(&a.1));
     let out: f64 = found.iter().map(|f| f.1.max(0.0)).sum();
     let path = |(name, heat): (String, f64)| Path {
         name,
-        heat: fixed(heat, 3),
+        heat: sized(heat, 3, scale),
         share: if heat > 0.0 { format!("{} %", fixed(100.0 * heat / out, 1)) } else { "in".into() },
         bar: fixed((100.0 * heat / out).clamp(0.0, 100.0), 1),
     };
@@ -112,27 +126,33 @@ pub fn paths(results: &Results) -> Vec<Path> {
 pub fn paths_note(results: &Results) -> String {
     let b = &results.told.balance;
     format!(
-        "In all {} W go in and {} W come out; paths below 1 mW are left out, and what is below \
-         zero comes in.",
-        perhaps(b.heat_in_w, 3),
-        perhaps(b.heat_out_w, 3)
+        "In all {} W go in and {} W come out; what is below zero comes in.",
+        of_size(b.heat_in_w, 3),
+        of_size(b.heat_out_w, 3)
     )
 }
 
 /// Slots and open sides.
-pub fn vents(results: &Results) -> Table {
+pub fn slots(results: &Results) -> Table {
     let told = &results.told;
+    let b = &told.balance;
+    let all_heat = b.heat_in_w.unwrap_or(0.0).abs().max(b.heat_out_w.unwrap_or(0.0).abs());
+    let flows = told.slots.iter().map(|s| s.in_m3_s + s.out_m3_s);
+    let flows = flows.chain(told.sides.iter().map(|s| s.in_m3_s + s.out_m3_s));
+    let most = flows.fold(0.0_f64, |most, flow| most.max(HOUR * flow));
+    let flow = |per_second: f64| sized(HOUR * per_second, 3, most);
+    let heat = |watts: f64| sized(watts, 3, all_heat);
     let mut rows: Vec<Vec<String>> = Vec::new();
     for s in &told.slots {
         rows.push(vec![
             s.name.clone(),
             s.side.clone().unwrap_or_default(),
             perhaps(s.area_m2.map(|a| 1e4 * a), 1),
-            fixed(HOUR * s.in_m3_s, 3),
-            fixed(HOUR * s.out_m3_s, 3),
+            flow(s.in_m3_s),
+            flow(s.out_m3_s),
             perhaps(s.out_mean_c, 1),
-            perhaps(s.mean_pressure_pa, 4),
-            fixed(s.heat_w, 3),
+            of_size(s.mean_pressure_pa, 3),
+            heat(s.heat_w),
         ]);
     }
     for s in told.sides.iter().filter(|s| s.in_m3_s + s.out_m3_s > 0.0) {
@@ -141,16 +161,16 @@ pub fn vents(results: &Results) -> Table {
             "open side".into(),
             s.name.clone(),
             dash(),
-            fixed(HOUR * s.in_m3_s, 3),
-            fixed(HOUR * s.out_m3_s, 3),
+            flow(s.in_m3_s),
+            flow(s.out_m3_s),
+            perhaps(s.out_mean_c, 1),
             dash(),
-            dash(),
-            fixed(s.convection_w, 3),
+            heat(s.convection_w),
         ]);
     }
     Table {
         header: vec![
-            "Vent",
+            "Slot",
             "Side",
             "Area, cm²",
             "In, m³/h",
@@ -160,7 +180,7 @@ pub fn vents(results: &Results) -> Table {
             "Heat, W",
         ],
         rows,
-        note: "Pressure: mean behind the vent, against still outside air at its height.".into(),
+        note: "Pressure: mean behind the slot, against still outside air at its height.".into(),
     }
 }
 
@@ -194,7 +214,7 @@ pub fn state(results: &Results) -> Table {
     let none = || "–".to_string();
     let cells = format!("{} × {} = {}", mesh.nx, mesh.ny, grouped(mesh.cells));
     row("cells", cells, none(), "");
-    let sizes = format!("{} to {} mm", number(1e3 * mesh.smallest_m), number(1e3 * mesh.largest_m));
+    let sizes = format!("{} to {} mm", mm(mesh.smallest_m), mm(mesh.largest_m));
     row("cell sizes", sizes, none(), "");
     row("iterations", grouped(told.iterations), none(), "");
     let bound = |b: f64| format!("{b:.0e}");
@@ -224,9 +244,12 @@ pub fn state(results: &Results) -> Table {
     row("its viscosity", format!("{:.3e} Pa s", air.viscosity), none(), "");
     row("its conductivity", format!("{} W/(m K)", fixed(air.conductivity, 5)), none(), "");
     row("its specific heat", format!("{} J/(kg K)", fixed(air.specific_heat, 1)), none(), "");
-    row("fastest air", format!("{} m/s", perhaps(air.max_speed_m_s, 3)), none(), "");
+    row("fastest air", format!("{} m/s", of_size(air.max_speed_m_s, 3)), none(), "");
     row("warmest air", format!("{} °C", perhaps(air.max_temperature_c, 1)), none(), "");
-    let stack = format!("{} Pa", perhaps(air.stack_pressure_pa, 4));
+    if let Some(coldest) = air.min_temperature_c.filter(|c| *c < results.ambient() - SHOWN_COLD) {
+        row("coldest air", format!("{} °C", fixed(coldest, 1)), none(), "");
+    }
+    let stack = format!("{} Pa", of_size(air.stack_pressure_pa, 3));
     row("pressure of the warm column", stack, none(), "");
     let time =
         format!("{} s, processors {} s", fixed(told.wall_seconds, 1), fixed(told.cpu_seconds, 1));
