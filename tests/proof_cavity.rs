@@ -193,6 +193,7 @@ fn equal_rayleigh_and_prandtl_give_equal_nusselt_at_any_size() {
         ],
         parts: vec![],
         sources: None,
+        radiation: None,
     })
     .unwrap();
     let solution = solved(&problem, 1e-9);

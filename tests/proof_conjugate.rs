@@ -116,6 +116,7 @@ fn two_closed_cavities_share_a_metal_partition() {
         ],
         parts: vec![vec![0]],
         sources: None,
+        radiation: None,
     })
     .unwrap();
     let solution = solved(&problem, 1e-8);

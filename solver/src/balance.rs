@@ -8,7 +8,7 @@
 use ventrise_mesh::{AIR, Side};
 
 use crate::conduction::{side_area, side_cell, side_exchange};
-use crate::{Air, Problem, SideCondition, State};
+use crate::{Air, Problem, SideCondition, State, radiant_heat};
 
 /// Speed below which air counts as being at rest [m/s].
 pub const REST_SPEED: f64 = 1e-12;
@@ -124,8 +124,10 @@ pub fn slot_flows(problem: &Problem, air: &Air, state: &State) -> Vec<OpeningFlo
     flows
 }
 
-/// Conduction and open flow through every side outside its slots, by [`Side::index`].
+/// Conduction (with what a wall takes up by radiation) and open flow through every side outside its
+/// slots, by [`Side::index`].
 pub fn side_flows(problem: &Problem, air: &Air, state: &State) -> [SideFlow; 4] {
+    let radiant = radiant_heat(problem, air, &state.t).unwrap_or_default();
     Side::ALL.map(|side| {
         let slots = problem.mesh().slots(side);
         let is_open = problem.description().sides[side.index()] == SideCondition::Open;
@@ -138,7 +140,8 @@ pub fn side_flows(problem: &Problem, air: &Air, state: &State) -> [SideFlow; 4] 
             OpeningFlow::default()
         };
         let conduction = (0..slots.len()).map(|n| side_face_heat(problem, air, state, side, n));
-        SideFlow { conduction: conduction.sum(), open }
+        let conduction = conduction.sum::<f64>() + radiant.sides[side.index()];
+        SideFlow { conduction, open }
     })
 }
 
@@ -172,6 +175,7 @@ pub fn balance(problem: &Problem, air: &Air, state: &State) -> Balance {
         count_out(-sources.heat.iter().sum::<f64>());
     }
     sides.iter().for_each(|side| count_out(side.conduction));
+    count_out(radiant_heat(problem, air, &state.t).map_or(0.0, |r| r.openings));
     let openings = || slots.iter().chain(sides.iter().map(|side| &side.open));
     openings().for_each(|opening| count_out(opening.heat));
     let volume_in: f64 = openings().map(|o| o.inflow).sum();

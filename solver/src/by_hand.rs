@@ -30,6 +30,7 @@ pub(crate) fn bare(mesh: Mesh) -> Description {
         sides: [SideCondition::Adiabatic; 4],
         parts: Vec::new(),
         sources: None,
+        radiation: None,
     }
 }
 

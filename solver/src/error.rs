@@ -26,6 +26,9 @@ pub enum ProblemError {
     /// Heat is put in but cannot leave.
     #[error("the section has no way out for its heat")]
     NoWayOut,
+    /// Radiation could not be set up.
+    #[error("radiation: {0}")]
+    Radiation(#[from] crate::RadiationError),
 }
 
 /// Why no solution was reached at all.

@@ -13,6 +13,7 @@
 use ventrise_mesh::{AIR, Geometry, Side};
 
 use crate::conduction::{side_area, side_cell, side_exchange, x_conductance, y_conductance};
+use crate::radiant::Radiant;
 use crate::{Air, Convection, Problem, SideCondition, State};
 
 /// A boundary face through which the section breathes.
@@ -89,6 +90,8 @@ pub(crate) struct Level {
     pub closed_regions: Vec<Vec<u32>>,
     /// Heat put in by blocks and sides [W].
     pub heat_in: f64,
+    /// Radiation between surfaces, where it is modelled.
+    pub radiant: Option<Radiant>,
 }
 
 impl Level {
@@ -179,6 +182,7 @@ impl Level {
             source: State::rest(mesh),
             closed_regions: Vec::new(),
             heat_in: 0.0,
+            radiant: Radiant::new(problem, air),
             fluid,
         };
         level.set_viscous(problem);

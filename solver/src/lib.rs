@@ -22,6 +22,7 @@ mod par;
 mod pieces;
 mod probe;
 mod problem;
+mod radiant;
 mod radiation;
 mod residual;
 pub mod samples;
@@ -46,6 +47,7 @@ pub use numbers::{
 pub use pieces::Pieces;
 pub use probe::{Sample, Sampler};
 pub use problem::{Block, Description, Problem, Solid, Sources};
+pub use radiant::{RadiantHeat, radiant_heat};
 pub use radiation::{
     Backing, Correction, Face, Owner, PATCH_COUNT, Patch, Radiation, RadiationError,
     RadiationSource, STEFAN_BOLTZMANN, SideSurface, Surfaces,

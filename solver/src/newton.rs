@@ -245,14 +245,15 @@ impl Newton {
         masses
     }
 
-    /// J = −∂r/∂x, at the state that `self.residual` belongs to. Its pattern never depends on the
-    /// values.
+    /// J = −∂r/∂x at a state. Its pattern never depends on the values.
     fn jacobian(&self, level: &Level, state: &State, rhs: &State) -> TriMat<f64> {
         let (nx, ny) = (level.nx, level.ny);
         let numbers = &self.numbers;
         let n = numbers.count;
         let mut matrix = TriMat::with_capacity((n, n), 30 * n);
         let (mut moved, mut changed) = (state.clone(), rest(level));
+        let mut here = rest(level);
+        residual::evaluate_local(level, state, rhs, &mut here);
         let largest = |f: &[f64]| f.iter().fold(0.0_f64, |a, b| a.max(b.abs()));
         let speed = largest(&state.u).max(largest(&state.v)).max(1e-3 * reference_speed(level));
         // Pressure and temperature stand linearly in every equation: large steps lose nothing.
@@ -276,7 +277,7 @@ impl Newton {
                 for (i, j) in places() {
                     field_of(&mut moved, field)[i + j * width] += step;
                 }
-                residual::evaluate(level, &moved, rhs, &mut changed);
+                residual::evaluate_local(level, &moved, rhs, &mut changed);
                 for (i, j) in places() {
                     let value = field_ref(state, field)[i + j * width];
                     field_of(&mut moved, field)[i + j * width] = value;
@@ -295,7 +296,7 @@ impl Newton {
                                 if row_field == 2 && pinned.contains(&row) {
                                     continue;
                                 }
-                                let slope = (field_ref(&self.residual, row_field)[place]
+                                let slope = (field_ref(&here, row_field)[place]
                                     - field_ref(&changed, row_field)[place])
                                     / step;
                                 matrix.add_triplet(row as usize, column as usize, slope);
@@ -304,6 +305,20 @@ impl Newton {
                     }
                 }
             }
+        }
+        // Radiation: every surface's own film; what it receives is left to the iteration.
+        if let Some(radiant) = &level.radiant {
+            radiant.films(&state.t, |air, solid, share, film| {
+                let cells = [solid.map(|n| (n, share)), Some((air, 1.0 - share))];
+                for (row, a) in cells.into_iter().flatten() {
+                    for (column, b) in cells.into_iter().flatten() {
+                        let at = |n: usize| numbers.t[n].map(|n| n as usize);
+                        if let (Some(row), Some(column)) = (at(row), at(column)) {
+                            matrix.add_triplet(row, column, a * b * film);
+                        }
+                    }
+                }
+            });
         }
         // One pressure of every closed region keeps its value.
         for row in pinned {

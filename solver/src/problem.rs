@@ -2,7 +2,8 @@
 
 use ventrise_mesh::{AIR, Coarsening, Geometry, Mesh, Side};
 
-use crate::{AirModel, ProblemError, SideCondition, Slot};
+use crate::radiant::RadiantMap;
+use crate::{AirModel, PATCH_COUNT, ProblemError, Radiation, SideCondition, Slot, Surfaces};
 
 /// A solid material.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -109,25 +110,35 @@ pub struct Description {
     pub parts: Vec<Vec<usize>>,
     /// Extra sources, for manufactured solutions.
     pub sources: Option<Sources>,
+    /// How the surfaces radiate; nothing: radiation is not modelled.
+    pub radiation: Option<Surfaces>,
 }
 
 /// A checked description.
 #[derive(Debug, Clone)]
 pub struct Problem {
     description: Description,
+    radiant: Option<RadiantMap>,
 }
 
 impl Problem {
     /// Checks a description.
     ///
     /// # Errors
-    /// Numbers out of range, indices that point nowhere, heat without a way out.
+    /// Numbers out of range, indices that point nowhere, heat without a way out, emissivities that
+    /// are missing.
     pub fn new(mut description: Description) -> Result<Self, ProblemError> {
         if description.mesh.geometry() == Geometry::Axisymmetric {
             description.sides[Side::Left.index()] = SideCondition::Symmetry;
         }
         check(&description)?;
-        Ok(Problem { description })
+        let radiant = match &description.radiation {
+            Some(surfaces) => {
+                Some(RadiantMap::new(Radiation::new(&description.mesh, surfaces, PATCH_COUNT)?))
+            }
+            None => None,
+        };
+        Ok(Problem { description, radiant })
     }
 
     /// The mesh.
@@ -141,8 +152,18 @@ impl Problem {
         let sources = self.description.sources.as_ref();
         let sources = sources.map(|s| s.coarsened(self.mesh(), coarsening));
         let mesh = coarsening.mesh.clone();
+        let radiant = self.radiant.as_ref().map(|r| r.coarsened(self.mesh(), coarsening));
         let description = Description { mesh, sources, ..self.description.clone() };
-        Problem { description }
+        Problem { description, radiant }
+    }
+
+    /// Radiation between its surfaces, where it is modelled: view factors and exchange areas.
+    pub fn radiation(&self) -> Option<&Radiation> {
+        self.radiant.as_ref().map(RadiantMap::radiation)
+    }
+
+    pub(crate) fn radiant(&self) -> Option<&RadiantMap> {
+        self.radiant.as_ref()
     }
 
     /// Everything else, as checked.

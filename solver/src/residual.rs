@@ -4,9 +4,17 @@ use crate::equations::{energy, mass, momentum};
 use crate::level::Level;
 use crate::{Residuals, State, par};
 
-/// All residuals of a state with the given right-hand sides, into `out` (mass in `p`). One pass:
-/// what a row reads stays near for all four equations.
+/// All residuals of a state with the given right-hand sides, into `out` (mass in `p`).
 pub(crate) fn evaluate(level: &Level, state: &State, rhs: &State, out: &mut State) {
+    evaluate_local(level, state, rhs, out);
+    if let Some(radiant) = &level.radiant {
+        radiant.add(&state.t, &mut out.t);
+    }
+}
+
+/// The same without radiation, which couples all surfaces: what remains couples neighbours only.
+/// One pass: what a row reads stays near for all four equations.
+pub(crate) fn evaluate_local(level: &Level, state: &State, rhs: &State, out: &mut State) {
     let (nx, ny) = (level.nx, level.ny);
     let State { u, v, p, t } = out;
     let (v, v_last) = v.split_at_mut(nx * ny);

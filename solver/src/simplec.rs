@@ -252,7 +252,7 @@ fn balance(region: &[u32], values: &mut [f32]) {
 }
 
 fn energy_step(level: &Level, work: &mut Work, smoothing: &Smoothing) {
-    let Work { state, rhs, stencil, right, change, line, .. } = work;
+    let Work { state, rhs, residual, stencil, right, change, line, .. } = work;
     let nx = level.nx;
     let cells = state.t.len();
     stencil.shape(nx, cells);
@@ -268,6 +268,17 @@ fn energy_step(level: &Level, work: &mut Work, smoothing: &Smoothing) {
             right[i] = r as f32;
         });
     });
+    if let Some(radiant) = &level.radiant {
+        residual.t.fill(0.0);
+        radiant.add(&state.t, &mut residual.t);
+        right.iter_mut().zip(&residual.t).for_each(|(r, heat)| *r += *heat as f32);
+        radiant.films(&state.t, |air, solid, share, film| {
+            stencil.rest[air] += ((1.0 - share).powi(2) * film) as f32;
+            if let Some(solid) = solid {
+                stencil.rest[solid] += (share * share * film) as f32;
+            }
+        });
+    }
     solve(stencil, change, right, smoothing.sweeps, line);
     par::add(&mut state.t, &change[..cells], nx);
 }

@@ -99,6 +99,7 @@ pub fn problem(case: &Case, mesh: Mesh) -> Result<Problem, ProblemError> {
         sides: *case.sides(),
         parts: case.parts().iter().map(|p| p.blocks.clone()).collect(),
         sources: None,
+        radiation: None,
     })
 }
 

@@ -65,6 +65,7 @@ fn plain(layout: &Layout, x: Vec<f64>, y: Vec<f64>, air: Air) -> Result<Descript
         sides: [SideCondition::Adiabatic; 4],
         parts: Vec::new(),
         sources: None,
+        radiation: None,
     })
 }
 

@@ -1,0 +1,276 @@
+//! Radiation in the energy equation: what every radiating face takes from the cells beside it.
+//!
+//! ```text
+//!   solid or outside        face          air
+//!        T_s ──── g_s ────── T_f ── g_a ──── T_a        g [W/K] to the cell centres, or outside
+//!                             └─► q: net heat it radiates
+//! ```
+//! The face's own balance g_s(T_s − T_f) + g_a(T_a − T_f) = q gives T_f; of q the share
+//! g_s/(g_s + g_a) is drawn from the solid (or outside), the rest from the air. Temperatures of a
+//! patch are the mean of its faces', which radiate alike:
+//! T_p = C_p − R_p·q_p, C_p the mean without radiation. These few nonlinear equations are solved
+//! whenever residuals are evaluated, so that radiation is exact on every mesh at any time; only the
+//! linear solvers see a film in its place.
+
+use std::sync::Arc;
+
+use ventrise_mesh::{Coarsening, Mesh, Side};
+
+use crate::conduction::cell_conductivity;
+use crate::{Air, Backing, Owner, Problem, Radiation, STEFAN_BOLTZMANN, SideCondition};
+
+/// Iterations for the patches' temperatures at the most, and the change that ends them [K].
+const PATCH_STEPS: usize = 60;
+const PATCH_BOUND: f64 = 1e-8;
+
+/// A radiating face of one mesh: faces of a finer mesh with the same cells beside them are one.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub(crate) struct RadiantFace {
+    air: usize,
+    backing: Backing,
+    patch: usize,
+    area: f64,
+    /// Whether the normal lies along x.
+    upright: bool,
+}
+
+/// Radiation with its faces on one mesh.
+#[derive(Debug, Clone)]
+pub(crate) struct RadiantMap {
+    radiation: Arc<Radiation>,
+    faces: Vec<RadiantFace>,
+}
+
+impl RadiantMap {
+    pub fn new(radiation: Radiation) -> RadiantMap {
+        let mut faces = Vec::with_capacity(radiation.faces().len());
+        for (patch, p) in radiation.patches().iter().enumerate() {
+            if p.is_opening {
+                continue;
+            }
+            faces.extend(radiation.faces()[p.faces.clone()].iter().map(|f| RadiantFace {
+                air: f.air_cell,
+                backing: f.backing,
+                patch,
+                area: f.area,
+                upright: f.normal[0] != 0.0,
+            }));
+        }
+        RadiantMap { radiation: Arc::new(radiation), faces }
+    }
+
+    pub fn radiation(&self) -> &Radiation {
+        &self.radiation
+    }
+
+    /// The same on a coarser mesh.
+    pub fn coarsened(&self, fine: &Mesh, c: &Coarsening) -> RadiantMap {
+        let parent = |cell: usize| {
+            let (i, j) = (cell % fine.nx(), cell / fine.nx());
+            c.x_parent[i] + c.y_parent[j] * c.mesh.nx()
+        };
+        let mut faces: Vec<RadiantFace> = Vec::new();
+        for f in &self.faces {
+            let backing = match f.backing {
+                Backing::Cell(cell) => Backing::Cell(parent(cell)),
+                Backing::Edge { side, n } => {
+                    let parents = match side {
+                        Side::Left | Side::Right => &c.y_parent,
+                        Side::Bottom | Side::Top => &c.x_parent,
+                    };
+                    Backing::Edge { side, n: parents[n] }
+                }
+            };
+            let coarse = RadiantFace { air: parent(f.air), backing, ..*f };
+            match faces.last_mut() {
+                Some(last)
+                    if last.air == coarse.air
+                        && last.backing == coarse.backing
+                        && last.patch == coarse.patch =>
+                {
+                    last.area += coarse.area;
+                }
+                _ => faces.push(coarse),
+            }
+        }
+        RadiantMap { radiation: self.radiation.clone(), faces }
+    }
+}
+
+/// A face with its conductances.
+#[derive(Debug, Clone, Copy)]
+struct Coupling {
+    air: usize,
+    /// The solid cell behind, where there is one.
+    solid: Option<usize>,
+    side: Option<Side>,
+    patch: usize,
+    /// Its part of the patch's area.
+    part: f64,
+    /// Share of the radiated heat that is drawn from the solid or from outside; the air gives the
+    /// rest.
+    share: f64,
+    /// Temperature rise outside [K], where there is no solid cell.
+    outside: f64,
+    /// g_s + g_a [W/K]; infinite at a surface of fixed temperature.
+    conductance: f64,
+}
+
+/// Radiation on one mesh with given air.
+#[derive(Debug)]
+pub(crate) struct Radiant {
+    radiation: Arc<Radiation>,
+    couplings: Vec<Coupling>,
+    /// R_p [K/W].
+    resistance: Vec<f64>,
+    /// Σ_q G_pq over the others [m²].
+    reach: Vec<f64>,
+    ambient: f64,
+}
+
+/// Heat that radiation carries [W].
+#[derive(Debug, Clone, PartialEq, Default)]
+pub struct RadiantHeat {
+    /// Net heat radiated by every block.
+    pub blocks: Vec<f64>,
+    /// Heat that leaves through slots and open sides.
+    pub openings: f64,
+    /// Heat that leaves through walls of the section's sides, taken up there from other surfaces;
+    /// by [`Side::index`].
+    pub sides: [f64; 4],
+}
+
+impl Radiant {
+    pub fn new(problem: &Problem, air: &Air) -> Option<Radiant> {
+        let map = problem.radiant()?;
+        let d = problem.description();
+        let patches = map.radiation.patches();
+        let count = patches.len();
+        let mesh = problem.mesh();
+        let half = |cell: usize, upright: bool| {
+            let (i, j) = (cell % mesh.nx(), cell / mesh.nx());
+            0.5 * if upright { mesh.dx(i) } else { mesh.dy(j) }
+        };
+        let mut resistance = vec![0.0; count];
+        let couplings: Vec<Coupling> = map
+            .faces
+            .iter()
+            .map(|f| {
+                let to_air = air.conductivity * f.area / half(f.air, f.upright);
+                let (behind, solid, side, outside) = match f.backing {
+                    Backing::Cell(cell) => {
+                        let k = cell_conductivity(problem, air, cell);
+                        let k = if f.upright { k[0] } else { k[1] };
+                        (k * f.area / half(cell, f.upright), Some(cell), None, 0.0)
+                    }
+                    Backing::Edge { side, .. } => {
+                        let (g, t) = match d.sides[side.index()] {
+                            SideCondition::Temperature(t) => (f64::INFINITY, t),
+                            SideCondition::Film { coefficient, temperature } => {
+                                (coefficient * f.area, temperature)
+                            }
+                            _ => (0.0, d.ambient),
+                        };
+                        (g, None, Some(side), t - d.ambient)
+                    }
+                };
+                let share = if behind.is_finite() { behind / (behind + to_air) } else { 1.0 };
+                let part = f.area / patches[f.patch].area;
+                resistance[f.patch] += part * part / (behind + to_air);
+                Coupling {
+                    air: f.air,
+                    solid,
+                    side,
+                    patch: f.patch,
+                    part,
+                    share,
+                    outside,
+                    conductance: behind + to_air,
+                }
+            })
+            .collect();
+        let reach = (0..count)
+            .map(|p| {
+                let row = map.radiation.exchange(p);
+                row.iter().sum::<f64>() - row[p]
+            })
+            .collect();
+        let radiation = map.radiation.clone();
+        Some(Radiant { radiation, couplings, resistance, reach, ambient: d.ambient })
+    }
+
+    /// Net heat radiated by every patch [W] at the cells' rises `t` [K], and the patches' absolute
+    /// temperatures [K].
+    fn patch_heat(&self, t: &[f64]) -> (Vec<f64>, Vec<f64>) {
+        let mut free = vec![0.0; self.resistance.len()];
+        for c in &self.couplings {
+            let behind = c.solid.map_or(c.outside, |n| t[n]);
+            free[c.patch] += c.part * (c.share * behind + (1.0 - c.share) * t[c.air]);
+        }
+        free.iter_mut().for_each(|t| *t += self.ambient);
+        let mut now = free.clone();
+        let mut heat = self.radiation.net_heat(&now);
+        for _ in 0..PATCH_STEPS {
+            let mut change = 0.0_f64;
+            for p in 0..now.len() {
+                let film = 4.0 * STEFAN_BOLTZMANN * now[p].powi(3) * self.reach[p];
+                let next = (free[p] - self.resistance[p] * (heat[p] - film * now[p]))
+                    / (1.0 + self.resistance[p] * film);
+                change = change.max((next - now[p]).abs());
+                now[p] = next;
+            }
+            heat = self.radiation.net_heat(&now);
+            if change.is_nan() || change <= PATCH_BOUND {
+                break;
+            }
+        }
+        (heat, now)
+    }
+
+    /// Takes the radiated heat from the residuals `out` [W] of the cells.
+    pub fn add(&self, t: &[f64], out: &mut [f64]) {
+        let (heat, _) = self.patch_heat(t);
+        for c in &self.couplings {
+            let heat = c.part * heat[c.patch];
+            if let Some(solid) = c.solid {
+                out[solid] -= c.share * heat;
+            }
+            out[c.air] -= (1.0 - c.share) * heat;
+        }
+    }
+
+    /// Calls `each(air cell, solid cell, share of the solid, film [W/K])`: a change of the face's
+    /// unradiated temperature changes its heat by the film times that change, other faces kept.
+    pub fn films(&self, t: &[f64], mut each: impl FnMut(usize, Option<usize>, f64, f64)) {
+        let (_, patch_temperature) = self.patch_heat(t);
+        for c in &self.couplings {
+            let film = 4.0
+                * STEFAN_BOLTZMANN
+                * patch_temperature[c.patch].powi(3)
+                * self.reach[c.patch]
+                * c.part;
+            each(c.air, c.solid, c.share, film / (1.0 + film / c.conductance));
+        }
+    }
+}
+
+/// Heat carried by radiation in a state; `None` where it is not modelled.
+pub fn radiant_heat(problem: &Problem, air: &Air, t: &[f64]) -> Option<RadiantHeat> {
+    let radiant = Radiant::new(problem, air)?;
+    let (heat, _) = radiant.patch_heat(t);
+    let blocks = problem.description().blocks.len();
+    let mut found = RadiantHeat { blocks: vec![0.0; blocks], ..RadiantHeat::default() };
+    for (patch, heat) in radiant.radiation.patches().iter().zip(&heat) {
+        match patch.owner {
+            Owner::Block(block) => found.blocks[block] += heat,
+            _ if patch.is_opening => found.openings -= heat,
+            _ => {}
+        }
+    }
+    for c in &radiant.couplings {
+        if let Some(side) = c.side {
+            found.sides[side.index()] -= c.part * heat[c.patch] * c.share;
+        }
+    }
+    Some(found)
+}
