@@ -75,8 +75,9 @@ pub fn answer(results: &Results) -> Answer {
 fn unsolved(results: &Results) -> Answer {
     let worst = results.told.residuals.values().flatten().fold(0.0_f64, |a, b| a.max(*b));
     let sentence = format!(
-        "No solution was found: the equations are off by {worst:.0e} of their scale. Everything \
-         below is the last attempt, no basis for a decision."
+        "{} and no solution was found: the equations are off by {worst:.0e} of their scale. \
+         Everything below is the last attempt, no basis for a decision.",
+        unfinished(results)
     );
     Answer { tone: "open", word: "Undecided", sentence }
 }
