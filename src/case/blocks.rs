@@ -8,8 +8,8 @@ use super::units::Dimension;
 
 const BLOCK: Keys = Keys {
     what: "a block",
-    known: &["name", "part", "material", "x", "y", "heat", "limit", "repeat"],
-    later: &["emissivity"],
+    known: &["name", "part", "material", "x", "y", "heat", "limit", "emissivity", "repeat"],
+    later: &[],
 };
 
 const REPEAT: Keys = Keys { what: "repeat", known: &["count", "step-x", "step-y"], later: &[] };
@@ -31,6 +31,7 @@ pub(super) struct Draft {
     pub y: Option<Located<[f64; 2]>>,
     pub heat: f64,
     pub limit: Option<Located<f64>>,
+    pub emissivity: Option<f64>,
     pub repeat: Option<Repeat>,
 }
 
@@ -85,6 +86,7 @@ fn read_block(reader: &mut Reader, mut scope: Scope) -> Draft {
         let error = CaseError::new(Cause::Conflict, &scope.place, message).at(limit.span.clone());
         reader.report(error.hint("give the block a name or a part"));
     }
+    let emissivity = reader.emissivity(&scope);
     let repeat = read_repeat(reader, &scope);
     Draft {
         place: scope.place,
@@ -96,6 +98,7 @@ fn read_block(reader: &mut Reader, mut scope: Scope) -> Draft {
         y,
         heat: heat.map_or(0.0, |h| h.value),
         limit,
+        emissivity,
         repeat,
     }
 }

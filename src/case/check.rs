@@ -95,6 +95,7 @@ pub(super) fn assemble(
                     material: material.unwrap_or(0),
                     part,
                     heat: draft.heat,
+                    emissivity: draft.emissivity,
                 },
                 place,
                 draft: index,
@@ -175,6 +176,31 @@ fn with_source(mut own: Material) -> Material {
     own
 }
 
+/// Where radiation is modelled every surface has an emissivity; none is assumed in silence.
+pub(super) fn emissivities(reader: &mut Reader, case: &Case, drafts: &[Draft]) {
+    if !case.radiates() {
+        return;
+    }
+    let mut named: Vec<&str> = Vec::new();
+    for block in case.blocks() {
+        let material = &case.materials()[block.material];
+        if case.emissivity(block).is_some() || named.contains(&material.name.as_str()) {
+            continue;
+        }
+        named.push(&material.name);
+        let uses = drafts.iter().filter_map(|d| d.material.as_ref());
+        let span = uses.filter(|m| m.value == material.name).map(|m| m.span.clone()).next();
+        let message = format!(
+            "radiation is modelled, since the case gives an emissivity, but material \"{}\" has none",
+            material.name
+        );
+        let place = format!("material \"{}\"", material.name);
+        let error = CaseError::new(Cause::Missing, &place, message).at(span.unwrap_or(0..0));
+        reader
+            .report(error.hint("write emissivity = 0.9 or so in its [[material]] or in the block"));
+    }
+}
+
 /// Index of a draft's material; the library's are added as they come into use.
 fn material(reader: &mut Reader, materials: &mut Vec<Material>, draft: &Draft) -> Option<usize> {
     let name = draft.material.as_ref()?;
@@ -187,6 +213,7 @@ fn material(reader: &mut Reader, materials: &mut Vec<Material>, draft: &Draft) -
             conductivity: found.conductivity,
             density: Some(found.density),
             specific_heat: Some(found.specific_heat),
+            emissivity: None,
             source: Some(found.source),
         });
         return Some(materials.len() - 1);

@@ -40,6 +40,15 @@ pub(super) fn doubts(case: &Case) -> Vec<String> {
             _ => {}
         }
     }
+    for side in Side::ALL.into_iter().filter(|_| case.radiates()) {
+        let silent = case.side_emissivities[side.index()].is_none();
+        if silent && case.sides[side.index()].is_wall() {
+            doubts.push(format!(
+                "the {} side has no emissivity and counts as white: it reflects all radiation",
+                side_name(side)
+            ));
+        }
+    }
     let open = case.sides.contains(&SideCondition::Open);
     if let Some(doubt) = trapped(case) {
         doubts.push(doubt);

@@ -97,12 +97,14 @@ pub(super) fn read_slots(reader: &mut Reader, top: &Scope) -> Vec<SlotDraft> {
 #[derive(Debug)]
 pub(super) struct Sides {
     pub conditions: [SideCondition; 4],
+    /// Of their inner faces, where written.
+    pub emissivities: [Option<f64>; 4],
     pub spans: [Option<Range<usize>>; 4],
 }
 
 const SIDES: Keys = Keys { what: "[sides]", known: &SIDE_NAMES, later: &[] };
 const SIDE: Keys =
-    Keys { what: "a side", known: &["temperature", "flux", "film"], later: &["emissivity"] };
+    Keys { what: "a side", known: &["temperature", "flux", "film", "emissivity"], later: &[] };
 const SIDE_WORDS: [&str; 3] = ["adiabatic", "symmetry", "open"];
 
 /// Reads `[sides]`.
@@ -113,6 +115,7 @@ pub(super) fn read_sides(
     ambient: Option<&Ambient>,
 ) -> Option<Sides> {
     let mut conditions = [SideCondition::Adiabatic; 4];
+    let mut emissivities = [None; 4];
     let mut spans = [None, None, None, None];
     let mut whole = true;
     if top.has("sides") {
@@ -122,7 +125,10 @@ pub(super) fn read_sides(
             let key = side_name(side);
             spans[side.index()] = Some(scope.span_of(key));
             match read_side(reader, &scope, key, ambient) {
-                Some(condition) => conditions[side.index()] = condition,
+                Some((condition, emissivity)) => {
+                    conditions[side.index()] = condition;
+                    emissivities[side.index()] = emissivity;
+                }
                 None => whole = false,
             }
         }
@@ -130,7 +136,7 @@ pub(super) fn read_sides(
     } else if section.is_some_and(|s| s.geometry == Geometry::Axisymmetric) {
         conditions[Side::Left.index()] = SideCondition::Symmetry;
     }
-    whole.then_some(Sides { conditions, spans })
+    whole.then_some(Sides { conditions, emissivities, spans })
 }
 
 /// The left side of an axisymmetric section is its axis.
@@ -163,7 +169,7 @@ fn read_side(
     scope: &Scope,
     key: &str,
     ambient: Option<&Ambient>,
-) -> Option<SideCondition> {
+) -> Option<(SideCondition, Option<f64>)> {
     let value = scope.get(key)?;
     let DeValue::Table(table) = value.get_ref() else {
         if !matches!(value.get_ref(), DeValue::String(_)) {
@@ -178,9 +184,9 @@ fn read_side(
         }
         let word = reader.text(scope, key)?;
         return match word.value.as_str() {
-            "adiabatic" => Some(SideCondition::Adiabatic),
-            "symmetry" => Some(SideCondition::Symmetry),
-            "open" => Some(SideCondition::Open),
+            "adiabatic" => Some((SideCondition::Adiabatic, None)),
+            "symmetry" => Some((SideCondition::Symmetry, None)),
+            "open" => Some((SideCondition::Open, None)),
             "temperature" | "flux" | "film" => {
                 let message = format!("{key} = \"{}\" needs its number", word.value);
                 let error = CaseError::new(Cause::Kind, &scope.place, message).at(word.span);
@@ -202,7 +208,12 @@ fn read_side(
     };
     let inner = Scope::new(table, value.span(), &format!("sides, {key}"));
     reader.check_keys(&inner, &SIDE);
-    let given: Vec<&str> = SIDE.known.iter().copied().filter(|k| inner.has(k)).collect();
+    let emissivity = reader.emissivity(&inner);
+    let conditions = || SIDE.known.iter().copied().filter(|k| *k != "emissivity");
+    let given: Vec<&str> = conditions().filter(|k| inner.has(k)).collect();
+    if given.is_empty() && inner.has("emissivity") {
+        return Some((SideCondition::Adiabatic, emissivity));
+    }
     if given.len() != 1 {
         let (cause, message) = if given.is_empty() {
             (Cause::Missing, "the side has no condition".to_string())
@@ -210,7 +221,7 @@ fn read_side(
             (Cause::Conflict, format!("{} cannot be given together", given.join(" and ")))
         };
         let error = CaseError::new(cause, &inner.place, message).at(inner.span.clone());
-        reader.report(error.hint("give one of temperature, flux and film"));
+        reader.report(error.hint("give one of temperature, flux and film, or emissivity alone"));
     }
     let temperature = reader.temperature(&inner, "temperature");
     let flux = reader.quantity(&inner, "flux", Dimension::Flux);
@@ -224,14 +235,15 @@ fn read_side(
         let good = flux.value == 0.0 || (1e-6..=1e7).contains(&flux.value.abs());
         reader.within(&inner, "flux", flux, good, "0 W/m2, or from 1e-6 W/m2 to 1e7 W/m2 in size");
     }
-    match (temperature, flux, film) {
+    let condition = match (temperature, flux, film) {
         (Some(t), None, None) => Some(SideCondition::Temperature(t.value)),
         (None, Some(q), None) => Some(SideCondition::Flux(q.value)),
         (None, None, Some(h)) => {
             Some(SideCondition::Film { coefficient: h.value, temperature: ambient?.temperature })
         }
         _ => None,
-    }
+    };
+    Some((condition?, emissivity))
 }
 
 const PROBE: Keys = Keys { what: "a probe", known: &["name", "at", "from", "to"], later: &[] };

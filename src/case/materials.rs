@@ -15,7 +15,7 @@ pub struct LibraryMaterial {
     pub density: f64,
     /// Specific heat [J/(kg·K)].
     pub specific_heat: f64,
-    /// Total hemispherical emissivity of the usual surface [-]; not used by this version.
+    /// Total hemispherical emissivity of the usual surface [-]; counts where the case models radiation.
     pub emissivity: f64,
     /// Where the numbers come from.
     pub source: &'static str,

@@ -56,6 +56,8 @@ pub struct Material {
     pub density: Option<f64>,
     /// Specific heat [J/(kg·K)], when known (a steady solution does not need it).
     pub specific_heat: Option<f64>,
+    /// Emissivity, as the case writes it.
+    pub emissivity: Option<f64>,
     /// Source of the library's numbers; `None` for the case's own materials.
     pub source: Option<&'static str>,
 }
@@ -73,6 +75,8 @@ pub struct Block {
     pub part: Option<usize>,
     /// Heat released in the whole block [W]; below zero when it is cooled.
     pub heat: f64,
+    /// Emissivity of its surface in place of the material's, as the case writes it.
+    pub emissivity: Option<f64>,
 }
 
 /// Blocks judged together.
@@ -173,6 +177,7 @@ pub struct Case {
     pub(super) parts: Vec<Part>,
     pub(super) slots: Vec<Slot>,
     pub(super) sides: [SideCondition; 4],
+    pub(super) side_emissivities: [Option<f64>; 4],
     pub(super) probes: Vec<Probe>,
     pub(super) mesh: MeshChoice,
     pub(super) solve: SolveChoice,
@@ -234,6 +239,28 @@ impl Case {
     /// Conditions of the sides, by [`Side::index`].
     pub fn sides(&self) -> &[SideCondition; 4] {
         &self.sides
+    }
+
+    /// Emissivities of the sides' inner faces as the case writes them, by [`Side::index`].
+    pub fn side_emissivities(&self) -> &[Option<f64>; 4] {
+        &self.side_emissivities
+    }
+
+    /// Whether radiation is modelled: the case writes an emissivity somewhere.
+    pub fn radiates(&self) -> bool {
+        self.blocks.iter().any(|b| b.emissivity.is_some())
+            || self.materials.iter().any(|m| m.emissivity.is_some())
+            || self.side_emissivities.iter().any(Option::is_some)
+    }
+
+    /// Emissivity of a block's surface: its own, its material's, the library's.
+    pub fn emissivity(&self, block: &Block) -> Option<f64> {
+        let material = &self.materials[block.material];
+        let of_library = || {
+            let found = material.source.and_then(|_| super::materials::find(&material.name))?;
+            Some(found.emissivity)
+        };
+        block.emissivity.or(material.emissivity).or_else(of_library)
     }
 
     /// Probes, in the order of the file.

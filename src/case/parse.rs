@@ -258,6 +258,13 @@ impl<'t> Reader<'t> {
             .then_some(number)
     }
 
+    /// An emissivity from 0 to 1.
+    pub fn emissivity(&mut self, scope: &Scope) -> Option<f64> {
+        let value = self.number(scope, "emissivity")?;
+        let good = (0.0..=1.0).contains(&value.value);
+        self.within(scope, "emissivity", &value, good, "from 0 to 1").then_some(value.value)
+    }
+
     /// A whole number in a range.
     pub fn count(
         &mut self,

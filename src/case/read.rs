@@ -138,6 +138,7 @@ fn read_case(reader: &mut Reader, top: &Scope, text: &str, file: &str) -> Option
             check::way_out(reader, top, section, sides, &slots, &bodies.blocks);
         }
     }
+    let sides = sides?;
     let mut case = Case {
         title,
         section: section?,
@@ -147,7 +148,8 @@ fn read_case(reader: &mut Reader, top: &Scope, text: &str, file: &str) -> Option
         blocks: bodies.blocks.into_iter().map(|b| b.block).collect(),
         parts: bodies.parts,
         slots: slots.into_iter().filter_map(|s| s.finish()).collect(),
-        sides: sides?.conditions,
+        sides: sides.conditions,
+        side_emissivities: sides.emissivities,
         probes: probes.into_iter().filter_map(|p| p.finish()).collect(),
         mesh: mesh?,
         solve: solve?,
@@ -161,6 +163,7 @@ fn read_case(reader: &mut Reader, top: &Scope, text: &str, file: &str) -> Option
     };
     if reader.errors.is_empty() {
         check::join_edges(&mut case);
+        check::emissivities(reader, &case, &drafts);
     }
     Some(case)
 }

@@ -147,6 +147,9 @@ impl Case {
             if let Some(specific_heat) = material.specific_heat {
                 lines.quantity("specific-heat", specific_heat, Dimension::SpecificHeat);
             }
+            if let Some(emissivity) = material.emissivity {
+                lines.line(&format!("emissivity = {}", number(emissivity)));
+            }
         }
         for block in &self.blocks {
             lines.header("[[block]]");
@@ -160,6 +163,13 @@ impl Case {
             lines.lengths("x", block.rectangle.x);
             lines.lengths("y", block.rectangle.y);
             lines.quantity("heat", block.heat, Dimension::Power);
+            let own = block.emissivity.or(self.materials[block.material].emissivity);
+            if self.radiates()
+                && let Some(emissivity) = self.emissivity(block)
+                && (block.emissivity.is_some() || own.is_none())
+            {
+                lines.line(&format!("emissivity = {}", number(emissivity)));
+            }
             if let Some(limit) = block.part.and_then(|p| self.parts[p].limit) {
                 lines.quantity("limit", limit, Dimension::Temperature);
             }
@@ -177,16 +187,24 @@ impl Case {
         }
         lines.header("[sides]");
         for side in Side::ALL {
+            let emissivity = self.side_emissivities[side.index()];
+            let with =
+                emissivity.map_or(String::new(), |e| format!(", emissivity = {}", number(e)));
             let value = match self.sides[side.index()] {
-                SideCondition::Adiabatic | SideCondition::Sliding(_) => quoted("adiabatic"),
+                SideCondition::Adiabatic | SideCondition::Sliding(_) => match emissivity {
+                    Some(e) => format!("{{ emissivity = {} }}", number(e)),
+                    None => quoted("adiabatic"),
+                },
                 SideCondition::Symmetry => quoted("symmetry"),
                 SideCondition::Open => quoted("open"),
                 SideCondition::Temperature(t) => {
-                    format!("{{ temperature = {} }}", quoted(&write(t, "degC")))
+                    format!("{{ temperature = {}{with} }}", quoted(&write(t, "degC")))
                 }
-                SideCondition::Flux(q) => format!("{{ flux = {} }}", quoted(&write(q, "W/m2"))),
+                SideCondition::Flux(q) => {
+                    format!("{{ flux = {}{with} }}", quoted(&write(q, "W/m2")))
+                }
                 SideCondition::Film { coefficient, .. } => {
-                    format!("{{ film = {} }}", quoted(&write(coefficient, "W/(m2 K)")))
+                    format!("{{ film = {}{with} }}", quoted(&write(coefficient, "W/(m2 K)")))
                 }
             };
             lines.line(&format!("{} = {value}", side_name(side)));

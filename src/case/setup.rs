@@ -1,7 +1,10 @@
 //! From a case to a mesh and a problem.
 
 use ventrise_mesh::{Generated, Layout, Mesh, MeshError, Side, SlotSpan, Spacing, generate};
-use ventrise_solver::{AirModel, Block, Description, Problem, ProblemError, Settings, Slot, Solid};
+use ventrise_solver::{
+    AirModel, Block, Description, Problem, ProblemError, Settings, SideCondition, SideSurface,
+    Slot, Solid, Surfaces,
+};
 
 use super::estimate::{Estimate, GRAVITY};
 use super::model::{AirChoice, Case, ProbeShape};
@@ -99,8 +102,22 @@ pub fn problem(case: &Case, mesh: Mesh) -> Result<Problem, ProblemError> {
         sides: *case.sides(),
         parts: case.parts().iter().map(|p| p.blocks.clone()).collect(),
         sources: None,
-        radiation: None,
+        radiation: surfaces(case),
     })
+}
+
+/// How the surfaces radiate; `None` where the case gives no emissivity.
+fn surfaces(case: &Case) -> Option<Surfaces> {
+    if !case.radiates() {
+        return None;
+    }
+    let side = |side: Side| match case.sides()[side.index()] {
+        SideCondition::Symmetry => SideSurface::Mirror,
+        SideCondition::Open => SideSurface::Opening,
+        _ => SideSurface::Wall(case.side_emissivities()[side.index()].unwrap_or(0.0)),
+    };
+    let block = |b: &super::Block| case.emissivity(b).unwrap_or(0.0);
+    Some(Surfaces { blocks: case.blocks().iter().map(block).collect(), sides: Side::ALL.map(side) })
 }
 
 /// The run's settings.

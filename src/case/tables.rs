@@ -229,8 +229,9 @@ const MATERIAL: Keys = Keys {
         "conductivity-y",
         "density",
         "specific-heat",
+        "emissivity",
     ],
-    later: &["emissivity"],
+    later: &[],
 };
 
 /// Ranges of solids, from an evacuated panel to a heat pipe taken as a solid.
@@ -257,6 +258,7 @@ pub(super) fn read_materials(reader: &mut Reader, top: &Scope) -> Vec<Located<Ma
         let density = reader.bounded(&scope, "density", Dimension::Density, DENSITY);
         let specific_heat =
             reader.bounded(&scope, "specific-heat", Dimension::SpecificHeat, SPECIFIC_HEAT);
+        let emissivity = reader.emissivity(&scope);
         let has = ["conductivity", "conductivity-x", "conductivity-y"].map(|k| scope.has(k));
         match has {
             [true, false, false] | [false, true, true] => {}
@@ -301,6 +303,7 @@ pub(super) fn read_materials(reader: &mut Reader, top: &Scope) -> Vec<Located<Ma
                 conductivity,
                 density: density.map(|d| d.value),
                 specific_heat: specific_heat.map(|c| c.value),
+                emissivity,
                 source: None,
             },
             span: name.span,

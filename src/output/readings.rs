@@ -2,9 +2,9 @@
 
 use ventrise_mesh::AIR;
 use ventrise_solver::{
-    Balance, Numbers, OpeningFlow, PartTemperature, Problem, Sample, Sampler, SideFlow, Solution,
-    balance, block_temperatures, cell_velocities, heat_fluxes, numbers, part_temperatures,
-    side_flows, slot_flows,
+    Balance, Numbers, OpeningFlow, PartTemperature, Problem, RadiantHeat, STEFAN_BOLTZMANN, Sample,
+    Sampler, SideFlow, Solution, balance, block_temperatures, cell_velocities, heat_fluxes,
+    numbers, part_temperatures, radiant_heat, side_flows, slot_flows,
 };
 
 use crate::case::{Case, ProbeShape};
@@ -44,6 +44,9 @@ pub struct Run<'a> {
     pub cpu_seconds: f64,
 }
 
+/// Painted and plastic surfaces, 0.8 to 0.95 (common practice, no source).
+const UNKNOWN_EMISSIVITY: f64 = 0.9;
+
 /// Numbers read off a run once, for all its files.
 #[derive(Debug, Clone)]
 pub struct Readings {
@@ -63,6 +66,8 @@ pub struct Readings {
     pub numbers: Numbers,
     /// Lowest temperature rise of the air in a cell [K]; `None` without air.
     pub min_air_rise: Option<f64>,
+    /// Heat carried by radiation; `None` where it is not modelled.
+    pub radiant: Option<RadiantHeat>,
     /// Samples of every probe, in the case's order; one for a point.
     pub probes: Vec<Vec<Sample>>,
 }
@@ -93,8 +98,46 @@ impl Run<'_> {
                 .filter(|(region, _)| **region == AIR)
                 .map(|(_, rise)| *rise)
                 .min_by(f64::total_cmp),
+            radiant: radiant_heat(problem, air, &state.t),
             probes: self.case.probes().iter().map(|p| sample(&p.shape)).collect(),
         }
+    }
+
+    /// Heat that the blocks' surfaces would radiate to black surroundings at ambient temperature
+    /// [W], where radiation is not modelled: more than they would in truth, since they see each
+    /// other too. Emissivities that nobody knows count as [`UNKNOWN_EMISSIVITY`].
+    pub fn radiation_left_out(&self) -> Option<f64> {
+        if self.case.radiates() {
+            return None;
+        }
+        let (mesh, t) = (self.problem.mesh(), &self.solution.state.t);
+        let ambient = self.problem.description().ambient;
+        let (nx, ny) = (mesh.nx(), mesh.ny());
+        let regions = mesh.regions();
+        let per_area = |n: usize| {
+            let block = &self.case.blocks()[regions[n] as usize];
+            let emissivity = self.case.emissivity(block).unwrap_or(UNKNOWN_EMISSIVITY);
+            emissivity * STEFAN_BOLTZMANN * ((ambient + t[n]).powi(4) - ambient.powi(4))
+        };
+        let mut heat = 0.0;
+        let mut face = |a: usize, b: usize, area: f64| match (regions[a] == AIR, regions[b] == AIR)
+        {
+            (true, false) => heat += area * per_area(b),
+            (false, true) => heat += area * per_area(a),
+            _ => {}
+        };
+        for j in 0..ny {
+            for i in 0..nx {
+                let n = i + j * nx;
+                if i + 1 < nx {
+                    face(n, n + 1, mesh.x_area(i + 1) * mesh.dy(j));
+                }
+                if j + 1 < ny {
+                    face(n, n + nx, mesh.y_area(i));
+                }
+            }
+        }
+        Some(heat)
     }
 
     /// Cell fields in the units of the files: °C, m/s, Pa, W/m²; indices are −1 in air.

@@ -18,6 +18,11 @@ pub const BOUSSINESQ_SPREAD: f64 = 28.6;
 /// Reynolds number of a duct beyond which flow may turn turbulent (common practice, no source).
 pub const TURBULENT_REYNOLDS: f64 = 2300.0;
 
+/// Radiation left out that is worth a warning, as a share of the heat put in.
+const LEAST_RADIATION: f64 = 0.01;
+/// View factors that add up to one within this are as good as the stated 0.1 %.
+const WORST_VIEW_DEFECT: f64 = 2e-3;
+
 /// The whole summary; fields in the order of the file.
 #[derive(Debug, Clone, Serialize)]
 pub struct Summary {
@@ -175,7 +180,7 @@ pub struct HeatPaths {
     pub slots: f64,
     /// Through the sides: conducted, and carried by air through open ones.
     pub sides: f64,
-    /// Radiated; not part of the model, so zero.
+    /// Radiated through slots and open sides; zero where radiation is not modelled.
     pub radiation: f64,
 }
 
@@ -186,6 +191,8 @@ pub struct Part {
     pub name: String,
     /// Heat released in it [W].
     pub heat_w: f64,
+    /// Net heat radiated from its surfaces [W]; `null` where radiation is not modelled.
+    pub radiated_w: Option<f64>,
     /// Lowest temperature [°C].
     pub min_c: Option<f64>,
     /// Mean over the volume [°C].
@@ -353,7 +360,7 @@ impl Summary {
             heat_paths_w: HeatPaths {
                 slots: readings.slots.iter().map(|s| s.heat).sum(),
                 sides: readings.sides.iter().map(heat_of).sum(),
-                radiation: 0.0,
+                radiation: readings.radiant.as_ref().map_or(0.0, |r| r.openings),
             },
             parts: parts(case, readings, solution),
             slots: slots(case, readings, &solution.verdict),
@@ -421,6 +428,10 @@ fn parts(case: &Case, readings: &Readings, solution: &Solution) -> Vec<Part> {
         Part {
             name: part.name.clone(),
             heat_w: part.heat,
+            radiated_w: readings
+                .radiant
+                .as_ref()
+                .map(|r| part.blocks.iter().map(|b| r.blocks[*b]).sum()),
             min_c: found.map(|f| celsius(f.min)),
             mean_c: found.map(|f| celsius(f.mean)),
             max_c,
@@ -524,6 +535,26 @@ fn warnings(run: &Run, readings: &Readings) -> Vec<String> {
             "the air gets {rise:.0} K above ambient; the linear density law is within a tenth up \
              to {BOUSSINESQ_SPREAD} K"
         ));
+    }
+    let heat = readings.balance.heat_in;
+    if let Some(left_out) = run.radiation_left_out().filter(|q| *q > LEAST_RADIATION * heat) {
+        let rise = readings.parts.iter().flatten().map(|p| p.max).fold(0.0, f64::max);
+        warnings.push(format!(
+            "radiation is not modelled, since the case gives no emissivity: the blocks' surfaces \
+             would radiate up to {left_out:.2} W, and the hottest part may read up to {:.1} K too \
+             high. Give materials, blocks or sides an emissivity to model it",
+            rise * left_out / (left_out + heat)
+        ));
+    }
+    if let Some(radiation) = run.problem.radiation() {
+        let correction = radiation.correction();
+        if correction.defect > WORST_VIEW_DEFECT {
+            warnings.push(format!(
+                "view factors of a surface added up to one within {:.1e} only before they were \
+                 corrected; mirror sides opposite each other are followed so far and no further",
+                correction.defect
+            ));
+        }
     }
     if numbers.vent_reynolds > TURBULENT_REYNOLDS {
         warnings.push(format!(
