@@ -36,11 +36,11 @@ pub struct Typed {
 #[derive(Debug, Subcommand)]
 pub enum TypedCommand {
     /// Read and judge a case: what was understood, mesh, cells across gaps; solves nothing
-    #[command(after_help = "Example:\n  ventrise check cases/wall-cabinet.toml")]
-    Check {
-        /// Case file (TOML)
-        case: PathBuf,
-    },
+    #[command(
+        after_help = "Examples:\n  ventrise check cases/wall-cabinet.toml\n  ventrise check \
+                            radio.toml --layout pictures/radio.svg"
+    )]
+    Check(TypedCheck),
     /// Solve a case and write its results folder
     #[command(after_help = "Examples:
   ventrise solve cases/wall-cabinet.toml
@@ -50,6 +50,12 @@ pub enum TypedCommand {
   ventrise solve cases/mast-radio.toml --revolve 36
                                                    also the body, for a viewer")]
     Solve(TypedSolve),
+    /// Make the pictures and the page of a results folder again
+    #[command(after_help = "Example:\n  ventrise report cases/wall-cabinet.results")]
+    Report {
+        /// Results folder
+        folder: PathBuf,
+    },
     /// Compute published cavity cases and set them beside their table values
     #[command(after_help = "Examples:
   ventrise benchmark                               square cavity, Rayleigh 1e3 to 1e6
@@ -57,6 +63,19 @@ pub enum TypedCommand {
   ventrise benchmark lid-cavity --uniform          a group of cases, equal cells
   ventrise benchmark annulus --json                for a script")]
     Benchmark(TypedBenchmark),
+}
+
+/// `check` as typed.
+#[derive(Debug, Args)]
+pub struct TypedCheck {
+    /// Case file (TOML)
+    pub case: PathBuf,
+    /// Where to draw the section to scale [default: NAME.layout.svg beside the case file]
+    #[arg(long, value_name = "FILE.svg", value_parser = drawing)]
+    pub layout: Option<PathBuf>,
+    /// Draw nothing, write nothing
+    #[arg(long, conflicts_with = "layout")]
+    pub no_layout: bool,
 }
 
 /// `benchmark` as typed.
@@ -113,9 +132,16 @@ pub enum Command {
     Check {
         /// The case file.
         case: PathBuf,
+        /// Where to draw its section, if it is to be drawn.
+        layout: Option<PathBuf>,
     },
     /// Solve a case.
     Solve(Solve),
+    /// Make pictures and page again.
+    Report {
+        /// The results folder.
+        folder: PathBuf,
+    },
     /// Compute published cases.
     Benchmark {
         /// Which and how.
@@ -148,7 +174,12 @@ impl Typed {
     /// Resolves what was typed.
     pub fn resolve(self) -> Command {
         match self.command {
-            TypedCommand::Check { case } => Command::Check { case },
+            TypedCommand::Check(TypedCheck { case, layout, no_layout }) => {
+                let beside = || case.with_extension("layout.svg");
+                let layout = (!no_layout).then(|| layout.unwrap_or_else(beside));
+                Command::Check { case, layout }
+            }
+            TypedCommand::Report { folder } => Command::Report { folder },
             TypedCommand::Solve(typed) => Command::Solve(Solve {
                 out: typed.out.unwrap_or_else(|| typed.case.with_extension("results")),
                 threads: all_unless(typed.threads),
@@ -187,6 +218,15 @@ fn kelvin(text: &str) -> Result<f64, String> {
     }
 }
 
+/// A file for a drawing: its name says that it is one, so that nothing else is overwritten.
+fn drawing(text: &str) -> Result<PathBuf, String> {
+    let path = PathBuf::from(text);
+    match path.extension() {
+        Some(ending) if ending.eq_ignore_ascii_case("svg") => Ok(path),
+        _ => Err("a file name that ends in .svg belongs here".into()),
+    }
+}
+
 /// A time with its unit.
 fn time(text: &str) -> Result<Duration, String> {
     match units::parse(text, Dimension::Time).map(Duration::try_from_secs_f64) {
@@ -219,6 +259,19 @@ mod tests {
         };
         assert_eq!(solve.out, PathBuf::from("a/radio.v2.results"));
         assert!(solve.threads >= 1 && !solve.quiet);
+    }
+
+    #[test]
+    fn drawings_go_beside_the_case_or_where_they_are_wanted() {
+        let layout =
+            |words: &[&str]| match resolve(&[&["check", "a/radio.v2.toml"], words].concat()) {
+                Ok(Command::Check { layout, .. }) => layout,
+                _ => panic!("not a check"),
+            };
+        assert_eq!(layout(&[]), Some("a/radio.v2.layout.svg".into()));
+        assert_eq!(layout(&["--layout", "b.SVG"]), Some("b.SVG".into()));
+        assert_eq!(layout(&["--no-layout"]), None);
+        assert!(resolve(&["check", "radio.toml", "--layout", "radio.toml"]).is_err());
     }
 
     #[test]

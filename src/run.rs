@@ -18,7 +18,11 @@ use crate::cli::{Command, Solve, Typed};
 use crate::memory;
 use crate::output::overview::Overview;
 use crate::output::readings::celsius;
-use crate::output::{Folder, FolderError, Interruption, Run, Summary, screen, write_files};
+use crate::output::report::{self, ReportError};
+use crate::output::{
+    Folder, FolderError, Interruption, Results, ResultsError, Run, Summary, pictures, screen,
+    write_files, write_whole,
+};
 use crate::progress::{ProgressView, WatchedPart};
 
 /// How a command ends, as the exit code of the program.
@@ -62,12 +66,20 @@ enum Trouble {
     Threads(#[from] rayon::ThreadPoolBuildError),
     #[error("{0}")]
     Benchmark(#[from] BenchmarkError),
+    #[error("{0}")]
+    Results(#[from] ResultsError),
+    #[error("{0}")]
+    Report(#[from] ReportError),
+    #[error("cannot write {file}: {source}")]
+    Write { file: String, source: io::Error },
 }
 
 impl Trouble {
     fn ending(&self) -> Ending {
         match self {
-            Trouble::Case(_) | Trouble::Mesh { .. } | Trouble::Revolve => Ending::WrongInput,
+            Trouble::Case(_) | Trouble::Mesh { .. } | Trouble::Revolve | Trouble::Results(_) => {
+                Ending::WrongInput
+            }
             Trouble::Benchmark(
                 BenchmarkError::Name { .. }
                 | BenchmarkError::Cells { .. }
@@ -89,7 +101,8 @@ pub fn run(words: impl IntoIterator<Item = OsString>) -> ExitCode {
         }
     };
     let done = match typed.resolve() {
-        Command::Check { case } => check(&case),
+        Command::Check { case, layout } => check(&case, layout.as_deref()),
+        Command::Report { folder } => report_again(&folder),
         Command::Solve(solve) => solve_case(&solve),
         Command::Benchmark { request, threads } => compare(&request, threads),
     };
@@ -125,7 +138,7 @@ fn affordable(case: &Case, cells: usize) -> Result<(), Trouble> {
     }
 }
 
-fn check(path: &Path) -> Result<Ending, Trouble> {
+fn check(path: &Path, drawing: Option<&Path>) -> Result<Ending, Trouble> {
     let case = Case::read(path)?;
     let generated = mesh_of(&case)?;
     if affordable(&case, generated.mesh.cell_count()).is_ok() {
@@ -134,6 +147,26 @@ fn check(path: &Path) -> Result<Ending, Trouble> {
     let overview = Overview::of(&case, &generated)
         .map_err(|e| Trouble::Mesh { file: case.file().into(), reason: e.to_string() })?;
     print(|out| overview.write(out));
+    if let Some(file) = drawing {
+        let mesh = &generated.mesh;
+        write_to(file, &pictures::layout(&case, mesh.x(), mesh.y()))?;
+        print(|out| writeln!(out, "\nDrawn in {}", file.display()));
+    }
+    Ok(Ending::Settled)
+}
+
+fn write_to(file: &Path, text: &str) -> Result<(), Trouble> {
+    write_whole(file, text)
+        .map_err(|source| Trouble::Write { file: file.display().to_string(), source })
+}
+
+fn report_again(folder: &Path) -> Result<Ending, Trouble> {
+    let files = report::files(&Results::read(folder)?)?;
+    for (name, text) in &files {
+        write_to(&folder.join(name), text)?;
+    }
+    let names: Vec<&str> = files.iter().map(|f| f.0).collect();
+    print(|out| writeln!(out, "Made again in {}\n  {}", folder.display(), names.join("  ")));
     Ok(Ending::Settled)
 }
 
@@ -183,7 +216,19 @@ fn solve_case(asked: &Solve) -> Result<Ending, Trouble> {
     let readings = run.readings();
     let summary = Summary::of(&run, &readings);
     let folder = Folder::begin(&asked.out)?;
-    let files = write_files(&folder, &run, &readings, &summary, asked.revolve)?;
+    let mut files = write_files(&folder, &run, &readings, &summary, asked.revolve)?;
+    match report::files_of(&run, &readings, &summary) {
+        Ok(drawn) => {
+            for (name, text) in drawn {
+                folder.write(name, |out| out.write_all(text.as_bytes()))?;
+                files.push(name);
+            }
+        }
+        // The numbers are worth more than their pictures: they are kept.
+        Err(error) => {
+            let _ = writeln!(io::stderr(), "no pictures and no page: {error}");
+        }
+    }
     folder.keep()?;
     let ending = ending(&solution, interruption, &summary, asked.require_margin);
     if !asked.quiet {

@@ -90,6 +90,7 @@ fn help_has_examples_and_exit_codes() {
         ("help.txt", &["--help"][..]),
         ("help-solve.txt", &["solve", "--help"]),
         ("help-check.txt", &["check", "--help"]),
+        ("help-report.txt", &["report", "--help"]),
         ("help-benchmark.txt", &["benchmark", "--help"]),
     ] {
         let (code, out, err) = run(&place, words);
@@ -99,12 +100,32 @@ fn help_has_examples_and_exit_codes() {
 }
 
 #[test]
-fn check_tells_what_was_understood_and_writes_nothing() {
+fn check_tells_what_was_understood_and_draws_it() {
     let place = place(RING);
     let (code, out, err) = run(&place, &["check", "case.toml"]);
     assert_eq!((code, err.as_str()), (0, ""));
     same_as_accepted("check-ring.txt", &out);
-    assert_eq!(names(place.path()), ["case.toml"]);
+    assert_eq!(names(place.path()), ["case.layout.svg", "case.toml"]);
+    let (code, ..) = run(&place, &["check", "case.toml", "--layout", "other.svg"]);
+    assert_eq!(code, 0);
+    let read = |name: &str| fs::read_to_string(place.path().join(name)).unwrap();
+    assert_eq!(read("other.svg"), read("case.layout.svg"));
+}
+
+#[test]
+fn check_writes_nothing_when_it_is_not_to_draw_or_the_case_is_wrong() {
+    let ring = place(RING);
+    let (code, out, err) = run(&ring, &["check", "case.toml", "--no-layout"]);
+    assert_eq!((code, err.as_str()), (0, ""));
+    assert!(!out.contains("Drawn"), "{out}");
+    assert_eq!(names(ring.path()), ["case.toml"]);
+    let wrong = place(&RING.replace("1 W", "1 mm"));
+    assert_eq!(run(&wrong, &["check", "case.toml"]).0, 2);
+    assert_eq!(names(wrong.path()), ["case.toml"]);
+    // A drawing that cannot be written is told, after what was understood.
+    let (code, out, err) = run(&ring, &["check", "case.toml", "--layout", "no/such/x.svg"]);
+    assert_eq!(code, 5, "{err}");
+    assert!(out.contains("Section") && err.contains("no/such/x.svg"), "{out}{err}");
 }
 
 #[test]
@@ -114,8 +135,23 @@ fn a_settled_run_is_0_and_leaves_every_file() {
     assert_eq!(code, 0, "{out}{err}");
     same_as_accepted("solve-slab.txt", &out);
     assert_eq!(names(place.path()), ["case.results", "case.toml"]);
-    let files = ["case.toml", "fields.vtr", "history.csv", "parts.csv", "probes.csv", "sides.csv"];
-    let files: Vec<&str> = files.into_iter().chain(["slots.csv", "summary.json"]).collect();
+    // No air moves in it and no line probe is in it: no speed.svg, no profiles.svg.
+    let files = [
+        "case.toml",
+        "fields.vtr",
+        "heat-flux.svg",
+        "history.csv",
+        "history.svg",
+        "layout.svg",
+        "margins.svg",
+        "parts.csv",
+        "probes.csv",
+        "report.html",
+        "sides.csv",
+        "slots.csv",
+        "summary.json",
+        "temperature.svg",
+    ];
     assert_eq!(names(&place.path().join("case.results")), files);
     // The parabola's end: 70 degC; a cell's centre lies 2.5 mm before it.
     let s = summary(&place, "case.results");

@@ -13,7 +13,7 @@ use tempfile::TempDir;
 /// Marks a folder as one of results.
 const MARK: &str = "summary.json";
 /// Files that a results folder consists of; anything else in it belongs to the user.
-const OURS: [&str; 17] = [
+const OURS: [&str; 19] = [
     MARK,
     "fields.vtr",
     "revolved.vts",
@@ -25,6 +25,8 @@ const OURS: [&str; 17] = [
     "layout.svg",
     "temperature.svg",
     "speed.svg",
+    "heat-flux.svg",
+    "profiles.svg",
     "history.svg",
     "margins.svg",
     "report.html",
@@ -142,6 +144,29 @@ impl Folder {
             None => Ok(()),
         }
     }
+}
+
+/// Writes one file whole or not at all, in place of an older one.
+///
+/// # Errors
+/// What the file system reports.
+pub fn write_whole(target: &Path, text: &str) -> io::Result<()> {
+    let parent = match target.parent() {
+        Some(parent) if parent != Path::new("") => parent,
+        _ => Path::new("."),
+    };
+    // The rights of any new file, or those of the file that is replaced.
+    let rights = fs::metadata(target).ok().map(|m| m.permissions());
+    let place = tempfile::Builder::new().prefix(".ventrise-").tempdir_in(parent)?;
+    let temporary = place.path().join("file");
+    let mut file = fs::File::create(&temporary)?;
+    io::Write::write_all(&mut file, text.as_bytes())?;
+    file.sync_all()?;
+    drop(file);
+    if let Some(rights) = rights {
+        fs::set_permissions(&temporary, rights)?;
+    }
+    fs::rename(&temporary, target)
 }
 
 /// Temporary folders are private; results get the rights of any new folder.
@@ -281,6 +306,19 @@ mod tests {
         drop(folder);
         assert_eq!(names(place.path()), ["x.results"]);
         assert_eq!(fs::read_to_string(target.join(MARK)).unwrap(), "1");
+    }
+
+    #[test]
+    fn a_single_file_is_replaced_whole() {
+        let place = tempfile::tempdir().unwrap();
+        let file = place.path().join("x.svg");
+        for text in ["first", "second"] {
+            write_whole(&file, text).unwrap();
+            assert_eq!(fs::read_to_string(&file).unwrap(), text);
+        }
+        fs::create_dir(place.path().join("folder.svg")).unwrap();
+        assert!(write_whole(&place.path().join("folder.svg"), "x").is_err());
+        assert_eq!(names(place.path()), ["folder.svg", "x.svg"]);
     }
 
     #[test]

@@ -5,15 +5,22 @@ use std::io;
 pub mod csv;
 pub mod folder;
 pub mod overview;
+pub mod pictures;
 pub mod readings;
+pub mod report;
+pub mod results;
 pub mod screen;
 pub mod summary;
+pub mod table;
+pub mod told;
 pub mod vtk;
+mod vtr;
 pub mod words;
 
 pub use crate::case::side_name;
-pub use folder::{Folder, FolderError};
+pub use folder::{Folder, FolderError, write_whole};
 pub use readings::{Interruption, Readings, Run};
+pub use results::{Results, ResultsError};
 pub use summary::Summary;
 
 /// Writes all files of a run into its folder; returns their names. `revolve` is the number of

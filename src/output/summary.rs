@@ -14,9 +14,9 @@ use super::side_name;
 
 /// Spread of temperatures beyond which the linear density law is off by more than a tenth [K]:
 /// D. D. Gray, A. Giorgini, Int. J. Heat Mass Transfer 19 (1976) 545-551, air at 15 °C and 1 atm.
-const BOUSSINESQ_SPREAD: f64 = 28.6;
+pub const BOUSSINESQ_SPREAD: f64 = 28.6;
 /// Reynolds number of a duct beyond which flow may turn turbulent (common practice, no source).
-const TURBULENT_REYNOLDS: f64 = 2300.0;
+pub const TURBULENT_REYNOLDS: f64 = 2300.0;
 
 /// Radiation left out that is worth a warning, as a share of the heat put in.
 const LEAST_RADIATION: f64 = 0.01;
