@@ -293,6 +293,18 @@ fn a_folder_without_results_or_with_damaged_ones_is_refused() {
     assert_eq!(run(place.path(), &["report", "x.results"]).0, 0);
 }
 
+#[test]
+fn the_page_says_whether_radiation_is_in_it() {
+    let bright = RING.replace("conductivity-y = ", "emissivity = 0.9\nconductivity-y = ");
+    let bright =
+        bright.replace("{ film = \"8 W/(m2 K)\" }", "{ film = \"8 W/(m2 K)\", emissivity = 0.9 }");
+    let place = solved(&bright, 0);
+    let page = &drawn(&place.path().join("x.results"))["report.html"];
+    assert!(page.contains("Radiation is computed between grey, diffuse surfaces"));
+    assert!(!page.contains("Heat by radiation is not counted"));
+    assert!(page.contains(">Radiated, W<") && page.contains("radiated through slots"));
+}
+
 /// A browser that can work without a screen, if one is installed.
 fn browser() -> Option<&'static str> {
     let works = |name: &&str| {

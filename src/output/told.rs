@@ -172,6 +172,9 @@ pub struct ToldPart {
     /// Heat [W].
     #[serde(default)]
     pub heat_w: f64,
+    /// Net heat radiated from its surfaces, where that is modelled [W].
+    #[serde(default)]
+    pub radiated_w: Option<f64>,
     /// Mean temperature [°C].
     #[serde(default)]
     pub mean_c: Option<f64>,

@@ -3,7 +3,7 @@
 use ventrise_mesh::Geometry;
 
 use crate::output::results::Results;
-use crate::output::words::{mm, sized};
+use crate::output::words::mm;
 
 /// The cautions that apply, each with its heading.
 pub fn cautions(results: &Results) -> Vec<[String; 2]> {
@@ -33,15 +33,13 @@ pub fn cautions(results: &Results) -> Vec<[String; 2]> {
          that range. Turbulent air would mix and cool more, and unsteadily."
             .into(),
     );
-    let radiated = results.told.heat_paths_w.get("radiation").copied().flatten();
-    add("Radiation.", match radiated {
-        Some(heat) if heat != 0.0 => format!(
-            "Radiation is computed between grey, diffuse surfaces and carries {} W here. \
-             Emissivities are assumptions: a surface that ages, gets dirty or is painted changes \
-             them. Sunshine counts only as far as the case gives it as heat.",
-            sized(heat, 3, 0.0)
-        ),
-        _ => "Heat by radiation is not counted. Painted, anodised and plastic surfaces often give \
+    add("Radiation.", match results.case.radiates() {
+        true => "Radiation is computed between grey, diffuse surfaces, and to surroundings at \
+                 ambient temperature through slots and open sides. Emissivities are assumptions: \
+                 a surface that ages, gets dirty or is painted changes them. Sunshine counts only \
+                 as far as the case gives it as heat."
+            .into(),
+        false => "Heat by radiation is not counted. Painted, anodised and plastic surfaces often give \
               off as much heat by radiation as to the air; such parts get less warm than told \
               here. Sunshine and hotter surroundings, which heat a housing, are not counted \
               either."

@@ -64,6 +64,7 @@ pub fn margins(results: &Results) -> Table {
     let mut parts: Vec<&ToldPart> = results.told.parts.iter().collect();
     let key = |p: &ToldPart| p.margin_k.unwrap_or(f64::INFINITY);
     parts.sort_by(|a, b| key(a).total_cmp(&key(b)));
+    let radiates = parts.iter().any(|p| p.radiated_w.is_some());
     let row = |p: &&ToldPart| {
         let judged = match (p.margin_k, p.limit_c) {
             (Some(margin), _) if margin < 0.0 => "over",
@@ -78,17 +79,21 @@ pub fn margins(results: &Results) -> Table {
             Some([_, high]) => fixed(high, 1),
             None => perhaps(p.max_c, 1),
         };
+        let radiated = radiates.then(|| of_size(p.radiated_w, 2));
         let numbers = [
-            number(p.heat_w),
             max,
             perhaps(p.limit_c, 1),
             perhaps(p.margin_k, 1),
             perhaps(p.resistance_k_w, 2),
+            judged.into(),
         ];
-        std::iter::once(p.name.clone()).chain(numbers).chain([judged.into()]).collect()
+        [p.name.clone(), number(p.heat_w)].into_iter().chain(radiated).chain(numbers).collect()
     };
+    let radiated = radiates.then_some("Radiated, W");
+    let header = ["Part", "Heat, W"].into_iter().chain(radiated);
+    let rest = ["Hottest, °C", "Limit, °C", "Margin, K", "K/W", "Limit is"];
     Table {
-        header: vec!["Part", "Heat, W", "Hottest, °C", "Limit, °C", "Margin, K", "K/W", "Limit is"],
+        header: header.chain(rest).collect(),
         rows: parts.iter().map(row).collect(),
         note: "K/W: rise of the hottest place above ambient over the part's own heat.".into(),
     }
@@ -107,7 +112,7 @@ pub fn paths(results: &Results) -> Vec<Path> {
     }
     // Slots and sides are told one by one; what else there is has its own name.
     let others = told.heat_paths_w.iter().filter(|(k, _)| !matches!(k.as_str(), "slots" | "sides"));
-    found.extend(others.filter_map(|(name, heat)| Some((name.replace('_', " "), (*heat)?))));
+    found.extend(others.filter_map(|(name, heat)| Some((path_name(name), (*heat)?))));
     let b = &told.balance;
     let scale = b.heat_in_w.unwrap_or(0.0).abs().max(b.heat_out_w.unwrap_or(0.0).abs());
     found.retain(|(_, heat)| heat.abs() > ROUND_OFF * scale);
@@ -120,6 +125,14 @@ pub fn paths(results: &Results) -> Vec<Path> {
         bar: fixed((100.0 * heat / out).clamp(0.0, 100.0), 1),
     };
     found.into_iter().map(path).collect()
+}
+
+/// Name of a path that is neither a slot nor a side.
+fn path_name(key: &str) -> String {
+    match key {
+        "radiation" => "radiated through slots and open sides".into(),
+        other => other.replace('_', " "),
+    }
 }
 
 /// The balance below the paths.
