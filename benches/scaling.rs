@@ -13,6 +13,8 @@ use ventrise_mesh::Side;
 use ventrise_solver::samples::{Grading, SquareCavity, side_heat};
 use ventrise_solver::{Control, Pieces, Problem, Settings, Solution, part_temperatures, solve};
 
+type Make = fn() -> Series;
+
 /// One problem on a series of meshes.
 struct Series {
     name: &'static str,
@@ -62,7 +64,7 @@ fn main() {
         args.iter().filter(|a| a.chars().next().is_some_and(char::is_alphabetic)).collect();
     let pool = rayon::ThreadPoolBuilder::new().num_threads(threads).build().unwrap();
     println!("threads: {}", pool.current_num_threads());
-    let series: [(&str, fn() -> Series); 4] = [
+    let series: [(&str, Make); 4] = [
         ("cavity-uniform", || cavity("square cavity, Rayleigh 1e6, equal cells", Grading::Uniform)),
         ("cavity-graded", || cavity("square cavity, Rayleigh 1e6, graded", Grading::Both(2.0))),
         ("housing-60W", || housing("vented housing, 60 W/m, equal cells", "60")),

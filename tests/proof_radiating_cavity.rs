@@ -4,7 +4,7 @@
 //! The problem is that of M. Akiyama, Q. P. Chong, Numer. Heat Transfer A 32 (1997) 419-433; the
 //! values are an independent finite-volume recomputation, extrapolated from two meshes (the printed
 //! ones, from memory, agree within 0.1 % in convection and 1.6 % in radiation, with other air).
-#![allow(clippy::unwrap_used)]
+#![allow(clippy::unwrap_used, clippy::print_stdout)]
 
 use ventrise_mesh::{Geometry, Layout, Mesh, Side};
 use ventrise_solver::samples::{Grading, graded};

@@ -207,11 +207,13 @@ fn verdict(summary: &Summary) -> String {
     if !summary.solved {
         let r = &summary.residuals;
         let worst = r.mass.max(r.momentum_x).max(r.momentum_y).max(r.energy);
+        let by = summary.stopped_by.filter(|by| *by != "stalled");
         return format!(
-            "{}. No solution was found: the equations are off by {worst:.0e} of their scale. The \
+            "{}{}. No solution was found: the equations are off by {worst:.0e} of their scale. The \
              numbers above are the last attempt, no basis for a decision. Try a finer mesh, and \
              see whether the heat has a way out.",
-            summary.verdict
+            summary.verdict,
+            by.map_or(String::new(), |by| format!(" by the {by}"))
         );
     }
     let sentence = match (summary.verdict, summary.stopped_by) {
