@@ -35,6 +35,20 @@ pub struct Typed {
 /// Commands as typed.
 #[derive(Debug, Subcommand)]
 pub enum TypedCommand {
+    /// Write a case file to start from
+    #[command(after_help = "Examples:\n  ventrise new --list\n  ventrise new my-radio --from \
+                            mast-radio             writes my-radio.toml")]
+    New {
+        /// Name of the case; NAME.toml is written, never over a file
+        #[arg(required_unless_present = "list")]
+        name: Option<PathBuf>,
+        /// Scenario to start from [default: wall-cabinet]
+        #[arg(long, value_name = "SCENARIO")]
+        from: Option<String>,
+        /// Show the scenarios
+        #[arg(long, conflicts_with_all = ["name", "from"])]
+        list: bool,
+    },
     /// Read and judge a case: what was understood, mesh, cells across gaps; solves nothing
     #[command(
         after_help = "Examples:\n  ventrise check cases/wall-cabinet.toml\n  ventrise check \
@@ -128,6 +142,13 @@ pub struct TypedSolve {
 /// What is to be done, resolved.
 #[derive(Debug, Clone, PartialEq)]
 pub enum Command {
+    /// Write a scenario under a name; without one, list them.
+    New {
+        /// Name of the case.
+        name: Option<PathBuf>,
+        /// Scenario.
+        from: Option<String>,
+    },
     /// Judge a case.
     Check {
         /// The case file.
@@ -174,6 +195,7 @@ impl Typed {
     /// Resolves what was typed.
     pub fn resolve(self) -> Command {
         match self.command {
+            TypedCommand::New { name, from, list: _ } => Command::New { name, from },
             TypedCommand::Check(TypedCheck { case, layout, no_layout }) => {
                 let beside = || case.with_extension("layout.svg");
                 let layout = (!no_layout).then(|| layout.unwrap_or_else(beside));

@@ -4,6 +4,7 @@ pub mod benchmark;
 pub mod case;
 pub mod cli;
 pub mod memory;
+pub mod new;
 pub mod output;
 pub mod progress;
 pub mod run;

@@ -16,6 +16,7 @@ use crate::benchmark::{self, BenchmarkError};
 use crate::case::{Case, CaseErrors, setup};
 use crate::cli::{Command, Solve, Typed};
 use crate::memory;
+use crate::new::{self, NewError};
 use crate::output::overview::Overview;
 use crate::output::readings::celsius;
 use crate::output::report::{self, ReportError};
@@ -70,6 +71,8 @@ enum Trouble {
     Results(#[from] ResultsError),
     #[error("{0}")]
     Report(#[from] ReportError),
+    #[error("{0}")]
+    New(#[from] NewError),
     #[error("cannot write {file}: {source}")]
     Write { file: String, source: io::Error },
 }
@@ -85,6 +88,7 @@ impl Trouble {
                 | BenchmarkError::Cells { .. }
                 | BenchmarkError::Memory { .. },
             ) => Ending::WrongInput,
+            Trouble::New(NewError::Unknown { .. } | NewError::Exists { .. }) => Ending::WrongInput,
             _ => Ending::Failure,
         }
     }
@@ -101,6 +105,7 @@ pub fn run(words: impl IntoIterator<Item = OsString>) -> ExitCode {
         }
     };
     let done = match typed.resolve() {
+        Command::New { name, from } => new_case(name.as_deref(), from.as_deref()),
         Command::Check { case, layout } => check(&case, layout.as_deref()),
         Command::Report { folder } => report_again(&folder),
         Command::Solve(solve) => solve_case(&solve),
@@ -136,6 +141,19 @@ fn affordable(case: &Case, cells: usize) -> Result<(), Trouble> {
         }
         _ => Ok(()),
     }
+}
+
+fn new_case(name: Option<&Path>, from: Option<&str>) -> Result<Ending, Trouble> {
+    let Some(name) = name else {
+        print(|out| out.write_all(new::list().as_bytes()));
+        return Ok(Ending::Settled);
+    };
+    let path = new::write(name, from)?;
+    let file = path.display();
+    print(|out| {
+        writeln!(out, "{file} written. Next: ventrise check {file}, then ventrise solve {file}")
+    });
+    Ok(Ending::Settled)
 }
 
 fn check(path: &Path, drawing: Option<&Path>) -> Result<Ending, Trouble> {
