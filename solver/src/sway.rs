@@ -26,6 +26,8 @@ const LEAVING_STEPS: usize = 14;
 /// Below this Rayleigh number (on the whole section) air at rest is stable: a layer heated from
 /// below needs 1708 on its height.
 const LEAST_RAYLEIGH: f64 = 500.0;
+/// A flow whose velocities change by less than this share of the largest speed in a step stands.
+const LEAST_MOTION: f64 = 1e-3;
 /// Speeds and rises beyond so many times those of the steady flow are no sway.
 const RUNAWAY: f64 = 4.0;
 
@@ -122,6 +124,9 @@ pub(crate) fn wander(
     }
     let scheme = (&level.air, level.convection);
     let swing = follow(coarse, scheme, &state, &state, turnover, going_on)?;
+    if swing.motion < LEAST_MOTION {
+        return None;
+    }
     let (band, slot_band) = bands(stack, problem, l, &state, Some(&swing));
     notes.push(format!(
         "no steady flow was found; followed in time for several turnovers of {turnover:.1} s it \
@@ -197,6 +202,8 @@ struct Swing {
     parts: Vec<[f64; 2]>,
     /// Lowest and highest flow into the section through every slot [m³/s].
     slots: Vec<[f64; 2]>,
+    /// Largest change of a velocity in a step of the last period, over the largest speed.
+    motion: f64,
 }
 
 /// Follows the disturbed flow until it keeps its size; nothing when the run was ended before.
@@ -213,12 +220,17 @@ fn follow(
     let mut run = Transient::new(problem, air, scheme, start, step);
     let mut bands: Vec<Vec<[f64; 2]>> = Vec::new();
     let mut sizes: Vec<f64> = Vec::new();
+    let mut motion = 0.0_f64;
     for _ in 0..MOST_PERIODS {
         let mut band = Vec::new();
         let mut size = 0.0_f64;
+        motion = 0.0;
         for _ in 0..STEPS_PER_PERIOD {
+            let before = run.state().v.clone();
             run.step();
             let now = run.state();
+            let moved = before.iter().zip(&now.v).map(|(a, b)| (a - b).abs());
+            motion = moved.fold(motion, f64::max);
             // Bounded: a run that leaves all measure is no finding about the flow.
             let fastest = largest(&now.u).max(largest(&now.v));
             let kept = fastest <= RUNAWAY * speed
@@ -250,7 +262,7 @@ fn follow(
     let widest = |(a, b): (&[f64; 2], &[f64; 2])| [a[0].min(b[0]), a[1].max(b[1])];
     let mut parts: Vec<_> = bands[n - 1].iter().zip(&bands[n - 2]).map(widest).collect();
     let slots = parts.split_off(problem.description().parts.len());
-    Some(Swing { parts, slots })
+    Some(Swing { parts, slots, motion: motion / speed })
 }
 
 fn largest(values: &[f64]) -> f64 {
