@@ -1,0 +1,32 @@
+"""The one table that all the programs here fill."""
+
+WIDTHS = "{:<9} {:<14} {:<24} {:>7} {:>9} {:>12}  {}"
+REPEATS = 3
+
+
+def heading():
+    print(WIDTHS.format("problem", "mesh", "way", "threads", "seconds", "off by", "more"), flush=True)
+
+
+def row(problem, mesh, way, threads, seconds, off, more):
+    print(WIDTHS.format(problem, mesh, way, threads, f"{seconds:.3f}", off, more), flush=True)
+
+
+def quickest(run):
+    """What the quickest of some runs gave; `run` returns its seconds first.
+
+    The least, because whatever else the machine does can only add.
+    """
+    return min((run() for _ in range(REPEATS)), key=lambda answer: answer[0])
+
+
+def first_that_holds(errors, bound):
+    """Number of the first mesh from which on, to the finest, the error keeps within the bound."""
+    first = len(errors)
+    while first > 0 and abs(errors[first - 1]) <= bound:
+        first -= 1
+    return first
+
+
+if __name__ == "__main__":
+    heading()
