@@ -19,7 +19,6 @@ Newton. Viscosity and the air's conductivity are lowered in steps to their value
 flow is that of air held near a guessed rise.
 """
 
-import contextlib
 import sys
 import time
 import tomllib
@@ -54,7 +53,7 @@ def si(text):
     return float(number) * (1e-3 if unit == "mm" else 1.0)
 
 
-def solve(multiple):
+def solve(multiple, threads):
     """Highest rise, flow, heat through the slots over heat released, unknowns, Newton steps."""
     case = tomllib.loads(CASE.read_text())
     (block,), slots = case["block"], case["slot"]
@@ -114,11 +113,11 @@ def solve(multiple):
 
     state = ng.GridFunction(space)
     state.components[2].Set(GUESSED_RISE)
-    steps = newton(form, state, 3e-2, 20)
+    steps = newton(form, state, 3e-2, 20, threads)
     held.Set(0.0)
     for value in LADDER:
         thick.Set(value)
-        steps += newton(form, state, 1e-6 if value == LADDER[-1] else 3e-2, 20)
+        steps += newton(form, state, 1e-6 if value == LADDER[-1] else 3e-2, 20, threads)
 
     velocity, _, rise = state.components
     points = np.meshgrid(between(xs, left, right), between(ys, low, high))
@@ -138,25 +137,24 @@ def between(lines, low, high):
 
 def timed(multiple, threads):
     start = time.perf_counter()
-    with ng.TaskManager() if threads > 1 else contextlib.nullcontext():
-        answer = solve(multiple)
+    answer = solve(multiple, threads)
     return time.perf_counter() - start, *answer
 
 
 def main(threads):
     ng.SetNumThreads(threads)
     runs = [quickest(lambda multiple=multiple: timed(multiple, threads)) for multiple in MESHES]
-    rises = [run[1] / RISE - 1.0 for run in runs]
-    flows = [run[2] / FLOW - 1.0 for run in runs]
+    rises = [run[1] / RISE - 1.0 for _, run in runs]
+    flows = [run[2] / FLOW - 1.0 for _, run in runs]
     notes = {first_that_holds(rises, BOUND): f"  <- smallest within {BOUND:.1%} of the rise"}
     worst = [max(abs(a), abs(b)) for a, b in zip(rises, flows, strict=True)]
     notes.setdefault(first_that_holds(worst, BOUND), f"  <- smallest within {BOUND:.1%} of rise and flow")
-    for k, (seconds, highest, flow, heat, unknowns, steps) in enumerate(runs):
+    for k, (cpu, (seconds, highest, flow, heat, unknowns, steps)) in enumerate(runs):
         more = f"rise {highest:.4f} K, flow {flow:.4e} m3/s ({flows[k]:+.2%}), "
         more += f"heat out {heat - 1.0:+.2%}, unknowns {unknowns}, steps {steps}"
         mesh = f"{MESHES[k] * sum(ACROSS)} x {MESHES[k] * sum(UP)}"
         more += notes.get(k, "")
-        row("housing", mesh, "NGSolve, Newton", threads, seconds, f"{rises[k]:+.3%}", more)
+        row("housing", mesh, "NGSolve, Newton", threads, seconds, cpu, f"{rises[k]:+.3%}", more)
 
 
 if __name__ == "__main__":

@@ -1,23 +1,30 @@
 """The one table that all the programs here fill."""
 
-WIDTHS = "{:<9} {:<14} {:<24} {:>7} {:>9} {:>12}  {}"
+import time
+
+WIDTHS = "{:<9} {:<14} {:<24} {:>7} {:>9} {:>9} {:>9}  {}"
 REPEATS = 3
 
 
 def heading():
-    print(WIDTHS.format("problem", "mesh", "way", "threads", "seconds", "off by", "more"), flush=True)
+    print(WIDTHS.format("problem", "mesh", "way", "threads", "seconds", "cpu", "off by", "more"), flush=True)
 
 
-def row(problem, mesh, way, threads, seconds, off, more):
-    print(WIDTHS.format(problem, mesh, way, threads, f"{seconds:.3f}", off, more), flush=True)
+def row(problem, mesh, way, threads, seconds, cpu, off, more):
+    print(WIDTHS.format(problem, mesh, way, threads, f"{seconds:.3f}", f"{cpu:.3f}", off, more), flush=True)
 
 
 def quickest(run):
-    """What the quickest of some runs gave; `run` returns its seconds first.
+    """Its processor seconds and what the quickest of some runs gave; `run` returns its seconds first.
 
     The least, because whatever else the machine does can only add.
     """
-    return min((run() for _ in range(REPEATS)), key=lambda answer: answer[0])
+    runs = []
+    for _ in range(REPEATS):
+        before = time.process_time()
+        answer = run()
+        runs.append((time.process_time() - before, answer))
+    return min(runs, key=lambda run: run[1][0])
 
 
 def first_that_holds(errors, bound):
