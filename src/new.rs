@@ -8,13 +8,16 @@ use std::path::{Path, PathBuf};
 pub type Scenario = (&'static str, &'static str);
 
 /// All scenarios, the first being the one taken when none is asked for.
-pub const SCENARIOS: [Scenario; 7] = [
+pub const SCENARIOS: [Scenario; 10] = [
     ("wall-cabinet", include_str!("../cases/wall-cabinet.toml")),
     ("battery-locker", include_str!("../cases/battery-locker.toml")),
+    ("bench-supplies", include_str!("../cases/bench-supplies.toml")),
     ("dry-transformer", include_str!("../cases/dry-transformer.toml")),
     ("gateway", include_str!("../cases/gateway.toml")),
     ("mast-radio", include_str!("../cases/mast-radio.toml")),
+    ("resistor-tray", include_str!("../cases/resistor-tray.toml")),
     ("sensor-box", include_str!("../cases/sensor-box.toml")),
+    ("sensor-screen", include_str!("../cases/sensor-screen.toml")),
     ("telemetry-pillar", include_str!("../cases/telemetry-pillar.toml")),
 ];
 
@@ -34,6 +37,12 @@ pub enum NewError {
     Exists {
         /// Its path.
         file: String,
+    },
+    /// The name is none for a file.
+    #[error("\"{name}\" is no name for a case; a name such as radio or drafts/radio belongs here")]
+    Name {
+        /// As typed.
+        name: String,
     },
     /// The file system refused.
     #[error("cannot write {file}: {source}")]
@@ -58,7 +67,7 @@ pub fn list() -> String {
 /// Writes a scenario to `name`, with the ending .toml, and returns the path; never over a file.
 ///
 /// # Errors
-/// An unknown scenario, a file that exists, a refusal of the file system.
+/// An unknown scenario, a name that is none, a file that exists, a refusal of the file system.
 pub fn write(name: &Path, scenario: Option<&str>) -> Result<PathBuf, NewError> {
     let wanted = scenario.unwrap_or(SCENARIOS[0].0);
     let Some((_, text)) = SCENARIOS.iter().find(|(name, _)| *name == wanted) else {
@@ -67,8 +76,13 @@ pub fn write(name: &Path, scenario: Option<&str>) -> Result<PathBuf, NewError> {
         let hint = nearest.map_or(String::new(), |s| format!("; the nearest is \"{}\"", s.0));
         return Err(NewError::Unknown { name: wanted.to_string(), hint });
     };
+    // What ends in a separator names a folder, though its last part looks like a file.
+    let typed = name.display().to_string();
+    if name.file_name().is_none() || typed.ends_with(std::path::is_separator) {
+        return Err(NewError::Name { name: typed });
+    }
     let path = match name.extension() {
-        Some(ending) if ending == "toml" => name.to_path_buf(),
+        Some(ending) if ending.eq_ignore_ascii_case("toml") => name.to_path_buf(),
         _ => PathBuf::from(format!("{}.toml", name.display())),
     };
     let file = path.display().to_string();

@@ -88,7 +88,9 @@ impl Trouble {
                 | BenchmarkError::Cells { .. }
                 | BenchmarkError::Memory { .. },
             ) => Ending::WrongInput,
-            Trouble::New(NewError::Unknown { .. } | NewError::Exists { .. }) => Ending::WrongInput,
+            Trouble::New(
+                NewError::Unknown { .. } | NewError::Exists { .. } | NewError::Name { .. },
+            ) => Ending::WrongInput,
             _ => Ending::Failure,
         }
     }

@@ -88,6 +88,7 @@ fn help_has_examples_and_exit_codes() {
     let place = place(SLAB);
     for (name, words) in [
         ("help.txt", &["--help"][..]),
+        ("help-new.txt", &["new", "--help"]),
         ("help-solve.txt", &["solve", "--help"]),
         ("help-check.txt", &["check", "--help"]),
         ("help-report.txt", &["report", "--help"]),
