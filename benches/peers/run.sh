@@ -19,11 +19,9 @@ lscpu | sed -n 's/^Model name: */processor: /p'
 "$venv/bin/python" -c 'import platform; print("Python", platform.python_version(), flush=True)'
 grep == requirements.txt | paste -sd ' '
 "$venv/bin/python" rows.py
-timed 2 pressure.py
-# Factors this small can be slower on two threads than on one: both are shown.
-for threads in 1 2; do
-    timed "$threads" cavity.py
-done
-for threads in 1 2; do
-    timed "$threads" housing.py
+# Two threads can be slower than one on systems this small: both are shown.
+for program in pressure.py cavity.py housing.py; do
+    for threads in 1 2; do
+        timed "$threads" "$program"
+    done
 done
