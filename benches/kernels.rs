@@ -1,7 +1,7 @@
 //! Pieces of a run: reading a case, its mesh, iterations of the solver, what is read off a state.
 //!
-//! Throughput is in cells. The solver's pieces are reached through its public functions only: the
-//! cost of ten iterations is the difference between two of the cases of `iterations`.
+//! Throughput is in cells. The pieces of an iteration are those of [`ventrise_solver::Pieces`]; the
+//! cost of ten iterations is also the difference between two of the cases of `iterations`.
 
 #![allow(clippy::unwrap_used)]
 
@@ -11,7 +11,8 @@ use divan::counter::ItemsCount;
 use ventrise::case::{Case, setup};
 use ventrise_solver::samples::SquareCavity;
 use ventrise_solver::{
-    Control, Problem, Settings, Solution, balance, cell_velocities, heat_fluxes, numbers, solve,
+    Control, Pieces, Problem, Settings, Solution, State, balance, cell_velocities, heat_fluxes,
+    numbers, solve,
 };
 
 fn main() {
@@ -75,6 +76,35 @@ fn iterations(bencher: divan::Bencher, count: usize) {
         assert_eq!(run.history.len(), count);
         run
     });
+}
+
+/// Pieces of one iteration on the finest mesh, cells along each side.
+fn piece(bencher: divan::Bencher, cells: usize, mut work: impl FnMut(&mut Pieces)) {
+    let problem = SquareCavity { cells, ..SquareCavity::default() }.problem().unwrap();
+    let mut pieces = Pieces::new(&problem, &State::rest(problem.mesh()));
+    pieces.cycle().unwrap();
+    bencher.counter(ItemsCount::new(cells * cells)).bench_local(|| work(&mut pieces));
+}
+
+#[divan::bench(args = [128, 512])]
+fn residual(bencher: divan::Bencher, cells: usize) {
+    piece(bencher, cells, Pieces::residual);
+}
+
+#[divan::bench(args = [128, 512])]
+fn smoother(bencher: divan::Bencher, cells: usize) {
+    piece(bencher, cells, Pieces::smooth);
+}
+
+/// The linear multigrid: one pressure correction.
+#[divan::bench(args = [128, 512])]
+fn pressure(bencher: divan::Bencher, cells: usize) {
+    piece(bencher, cells, Pieces::pressure);
+}
+
+#[divan::bench(args = [128, 512], sample_count = 10, sample_size = 1)]
+fn cycle(bencher: divan::Bencher, cells: usize) {
+    piece(bencher, cells, |pieces| pieces.cycle().unwrap());
 }
 
 /// What is read off a state: balances, characteristic numbers, cell fields.

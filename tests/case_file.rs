@@ -136,35 +136,7 @@ fn warnings_of(text: &str) -> Vec<String> {
     Case::parse(text, "case.toml").unwrap_or_else(|errors| panic!("{errors}")).warnings()
 }
 
-const PLAIN: &str = r#"
-title = "Plain"
-[section]
-geometry = "planar"
-width = "120 mm"
-height = "160 mm"
-depth = "0.3 m"
-[ambient]
-temperature = "40 degC"
-[[block]]
-name = "core"
-material = "aluminium"
-x = ["40 mm", "80 mm"]
-y = ["40 mm", "120 mm"]
-heat = "15 W"
-limit = "85 degC"
-[[slot]]
-name = "floor"
-side = "bottom"
-from = "10 mm"
-to = "30 mm"
-loss = 1.5
-[[slot]]
-name = "roof"
-side = "top"
-from = "10 mm"
-to = "30 mm"
-loss = 1.5
-"#;
+const PLAIN: &str = include_str!("cases/plain.toml");
 
 #[test]
 fn doubtful_but_possible_cases_are_accepted_with_warnings() {

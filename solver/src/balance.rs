@@ -8,7 +8,7 @@
 use ventrise_mesh::{AIR, Side};
 
 use crate::conduction::{side_area, side_cell, side_exchange};
-use crate::{Air, Problem, SideCondition, State, radiant_heat};
+use crate::{Air, Problem, RadiantHeat, SideCondition, State, radiant_heat};
 
 /// Speed below which air counts as being at rest [m/s].
 pub const REST_SPEED: f64 = 1e-12;
@@ -127,7 +127,10 @@ pub fn slot_flows(problem: &Problem, air: &Air, state: &State) -> Vec<OpeningFlo
 /// Conduction (with what a wall takes up by radiation) and open flow through every side outside its
 /// slots, by [`Side::index`].
 pub fn side_flows(problem: &Problem, air: &Air, state: &State) -> [SideFlow; 4] {
-    let radiant = radiant_heat(problem, air, &state.t).unwrap_or_default();
+    sides_with(problem, air, state, &radiant_heat(problem, air, &state.t).unwrap_or_default())
+}
+
+fn sides_with(problem: &Problem, air: &Air, state: &State, radiant: &RadiantHeat) -> [SideFlow; 4] {
     Side::ALL.map(|side| {
         let slots = problem.mesh().slots(side);
         let is_open = problem.description().sides[side.index()] == SideCondition::Open;
@@ -164,7 +167,8 @@ pub(crate) fn side_face_heat(
 pub fn balance(problem: &Problem, air: &Air, state: &State) -> Balance {
     let d = problem.description();
     let slots = slot_flows(problem, air, state);
-    let sides = side_flows(problem, air, state);
+    let radiant = radiant_heat(problem, air, &state.t).unwrap_or_default();
+    let sides = sides_with(problem, air, state, &radiant);
     let (mut heat_in, mut heat_out) = (0.0, 0.0);
     let mut count_out = |heat: f64| {
         heat_in += (-heat).max(0.0);
@@ -175,7 +179,7 @@ pub fn balance(problem: &Problem, air: &Air, state: &State) -> Balance {
         count_out(-sources.heat.iter().sum::<f64>());
     }
     sides.iter().for_each(|side| count_out(side.conduction));
-    count_out(radiant_heat(problem, air, &state.t).map_or(0.0, |r| r.openings));
+    count_out(radiant.openings);
     let openings = || slots.iter().chain(sides.iter().map(|side| &side.open));
     openings().for_each(|opening| count_out(opening.heat));
     let volume_in: f64 = openings().map(|o| o.inflow).sum();

@@ -308,7 +308,7 @@ impl Newton {
         }
         // Radiation: every surface's own film; what it receives is left to the iteration.
         if let Some(radiant) = &level.radiant {
-            radiant.films(&state.t, |air, solid, share, film| {
+            radiant.films(&radiant.patches(&state.t), |air, solid, share, film| {
                 let cells = [solid.map(|n| (n, share)), Some((air, 1.0 - share))];
                 for (row, a) in cells.into_iter().flatten() {
                     for (column, b) in cells.into_iter().flatten() {

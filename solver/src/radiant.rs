@@ -128,6 +128,12 @@ pub(crate) struct Radiant {
     ambient: f64,
 }
 
+/// Net heat radiated by every patch [W] and its absolute temperature [K].
+pub(crate) struct Patches {
+    heat: Vec<f64>,
+    temperature: Vec<f64>,
+}
+
 /// Heat that radiation carries [W].
 #[derive(Debug, Clone, PartialEq, Default)]
 pub struct RadiantHeat {
@@ -199,9 +205,8 @@ impl Radiant {
         Some(Radiant { radiation, couplings, resistance, reach, ambient: d.ambient })
     }
 
-    /// Net heat radiated by every patch [W] at the cells' rises `t` [K], and the patches' absolute
-    /// temperatures [K].
-    fn patch_heat(&self, t: &[f64]) -> (Vec<f64>, Vec<f64>) {
+    /// The patches at the cells' rises `t` [K].
+    pub fn patches(&self, t: &[f64]) -> Patches {
         let mut free = vec![0.0; self.resistance.len()];
         for c in &self.couplings {
             let behind = c.solid.map_or(c.outside, |n| t[n]);
@@ -224,14 +229,13 @@ impl Radiant {
                 break;
             }
         }
-        (heat, now)
+        Patches { heat, temperature: now }
     }
 
     /// Takes the radiated heat from the residuals `out` [W] of the cells.
-    pub fn add(&self, t: &[f64], out: &mut [f64]) {
-        let (heat, _) = self.patch_heat(t);
+    pub fn add(&self, patches: &Patches, out: &mut [f64]) {
         for c in &self.couplings {
-            let heat = c.part * heat[c.patch];
+            let heat = c.part * patches.heat[c.patch];
             if let Some(solid) = c.solid {
                 out[solid] -= c.share * heat;
             }
@@ -241,12 +245,11 @@ impl Radiant {
 
     /// Calls `each(air cell, solid cell, share of the solid, film [W/K])`: a change of the face's
     /// unradiated temperature changes its heat by the film times that change, other faces kept.
-    pub fn films(&self, t: &[f64], mut each: impl FnMut(usize, Option<usize>, f64, f64)) {
-        let (_, patch_temperature) = self.patch_heat(t);
+    pub fn films(&self, patches: &Patches, mut each: impl FnMut(usize, Option<usize>, f64, f64)) {
         for c in &self.couplings {
             let film = 4.0
                 * STEFAN_BOLTZMANN
-                * patch_temperature[c.patch].powi(3)
+                * patches.temperature[c.patch].powi(3)
                 * self.reach[c.patch]
                 * c.part;
             each(c.air, c.solid, c.share, film / (1.0 + film / c.conductance));
@@ -257,7 +260,7 @@ impl Radiant {
 /// Heat carried by radiation in a state; `None` where it is not modelled.
 pub fn radiant_heat(problem: &Problem, air: &Air, t: &[f64]) -> Option<RadiantHeat> {
     let radiant = Radiant::new(problem, air)?;
-    let (heat, _) = radiant.patch_heat(t);
+    let heat = radiant.patches(t).heat;
     let blocks = problem.description().blocks.len();
     let mut found = RadiantHeat { blocks: vec![0.0; blocks], ..RadiantHeat::default() };
     for (patch, heat) in radiant.radiation.patches().iter().zip(&heat) {

@@ -8,7 +8,7 @@ use crate::{Residuals, State, par};
 pub(crate) fn evaluate(level: &Level, state: &State, rhs: &State, out: &mut State) {
     evaluate_local(level, state, rhs, out);
     if let Some(radiant) = &level.radiant {
-        radiant.add(&state.t, &mut out.t);
+        radiant.add(&radiant.patches(&state.t), &mut out.t);
     }
 }
 

@@ -270,9 +270,10 @@ fn energy_step(level: &Level, work: &mut Work, smoothing: &Smoothing) {
     });
     if let Some(radiant) = &level.radiant {
         residual.t.fill(0.0);
-        radiant.add(&state.t, &mut residual.t);
+        let patches = radiant.patches(&state.t);
+        radiant.add(&patches, &mut residual.t);
         right.iter_mut().zip(&residual.t).for_each(|(r, heat)| *r += *heat as f32);
-        radiant.films(&state.t, |air, solid, share, film| {
+        radiant.films(&patches, |air, solid, share, film| {
             stencil.rest[air] += ((1.0 - share).powi(2) * film) as f32;
             if let Some(solid) = solid {
                 stencil.rest[solid] += (share * share * film) as f32;

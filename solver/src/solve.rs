@@ -224,9 +224,6 @@ impl<'a> Run<'a> {
             let mut stop;
             (end, stop) = self.newton(l, target, fresh, 1.0)?;
             if !fresh && end > NESTED_TARGET && stop.is_none() {
-                let mesh = self.stack.problem(l).unwrap_or(self.problem).mesh();
-                let rest = State::rest(mesh);
-                self.stack.set_state(l, &rest);
                 (end, stop) = self.newton(l, target, true, 1.0)?;
                 fresh = true;
             }
@@ -258,7 +255,7 @@ impl<'a> Run<'a> {
         Ok(None)
     }
 
-    /// Newton's method on level `l`; the residual reached and why it was stopped, if it was.
+    /// Newton's method on level `l`, from rest or from the state it has; the residual reached and why it was stopped, if it was.
     fn newton(
         &mut self,
         l: usize,
@@ -266,6 +263,10 @@ impl<'a> Run<'a> {
         from_rest: bool,
         strength: f64,
     ) -> Result<(f64, Option<StopReason>), SolveError> {
+        if from_rest {
+            let rest = State::rest(self.stack.problem(l).unwrap_or(self.problem).mesh());
+            self.stack.set_state(l, &rest);
+        }
         let (mut rows, mut stop) = (Vec::new(), None);
         let (before, cells) = (self.history.len(), self.stack.cells(l));
         let limit = self.settings.max_iterations;

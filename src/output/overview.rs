@@ -94,14 +94,18 @@ impl<'a> Overview<'a> {
             let [x, y] = [block.rectangle.x, block.rectangle.y];
             writeln!(
                 out,
-                "  {}: {}, x {} to {} mm, y {} to {} mm{}",
+                "  {}: {}, x {} to {} mm, y {} to {} mm{}{}",
                 block.name.as_deref().map_or("(no name)".into(), |name| shortened(name, NAME)),
                 material.name,
                 mm(x[0]),
                 mm(x[1]),
                 mm(y[0]),
                 mm(y[1]),
-                if block.heat == 0.0 { String::new() } else { format!(", {} W", block.heat) }
+                if block.heat == 0.0 { String::new() } else { format!(", {} W", block.heat) },
+                match case.emissivity(block).filter(|_| case.radiates()) {
+                    Some(emissivity) => format!(", emissivity {emissivity}"),
+                    None => String::new(),
+                }
             )?;
         }
         more(out, case.blocks().len())?;
@@ -139,9 +143,26 @@ impl<'a> Overview<'a> {
             let axis = side == Side::Left && self.case.section().geometry == Geometry::Axisymmetric;
             let what =
                 if axis { "axis".to_string() } else { condition(&self.case.sides()[side.index()]) };
-            format!("{} {what}", side_name(side))
+            let emissivity = self.case.side_emissivities()[side.index()];
+            let surface = emissivity.map_or(String::new(), |e| format!(", emissivity {e}"));
+            format!("{} {what}{surface}", side_name(side))
         });
-        writeln!(out, "Sides     {}", sides.join(", "))
+        writeln!(out, "Sides     {}", sides.join("; "))?;
+        if !self.case.joints().is_empty() {
+            writeln!(out, "Joints    {}", self.case.joints().len())?;
+        }
+        for joint in self.case.joints().iter().take(LISTED) {
+            let name = |b: usize| {
+                let name = self.case.blocks()[b].name.as_deref();
+                name.map_or_else(|| format!("block {}", b + 1), |name| shortened(name, NAME))
+            };
+            let [a, b] = joint.blocks;
+            let resistance = fixed(1e4 * joint.resistance, 2);
+            writeln!(out, "  {} and {}: {resistance} K cm2/W", name(a), name(b))?;
+        }
+        more(out, self.case.joints().len())?;
+        let radiation = if self.case.radiates() { "between all surfaces" } else { "not modelled" };
+        writeln!(out, "Radiation {radiation}")
     }
 
     fn probes(&self, out: &mut dyn Write) -> io::Result<()> {

@@ -22,7 +22,6 @@ pub(crate) fn row(
 
 /// A row's data; where there is no row below (above), this one stands for it, unused.
 struct Row<'a> {
-    nx: usize,
     slack: f64,
     /// Heat capacity flow per area and speed, ρ₀·c_p [J/(m³·K)]; times the row's height.
     capacity: f64,
@@ -53,7 +52,6 @@ impl<'a> Row<'a> {
         let (below, above) = (span(j.saturating_sub(1), nx), span((j + 1).min(ny - 1), nx));
         let capacity = level.air.density * level.air.specific_heat;
         Row {
-            nx,
             slack: level.slack,
             capacity,
             tall: capacity * level.dy[j],
@@ -80,20 +78,7 @@ impl<'a> Row<'a> {
         &self,
         mut emit: impl FnMut(usize, f64, Coefficients),
     ) {
-        let last = self.nx - 1;
-        if last == 0 {
-            let (r, c) = self.cell::<CENTRAL, LOW, HIGH, false, false>(0);
-            emit(0, r, c);
-            return;
-        }
-        let (r, c) = self.cell::<CENTRAL, LOW, HIGH, false, true>(0);
-        emit(0, r, c);
-        for i in 1..last {
-            let (r, c) = self.cell::<CENTRAL, LOW, HIGH, true, true>(i);
-            emit(i, r, c);
-        }
-        let (r, c) = self.cell::<CENTRAL, LOW, HIGH, true, false>(last);
-        emit(last, r, c);
+        along_row!(self.cell::<CENTRAL, LOW, HIGH>, self.y_area.len() - 1, emit);
     }
 
     #[inline(always)]

@@ -22,6 +22,27 @@ macro_rules! with_constants {
         }
     };
 }
+/// Emits every place of a row, 0 to `last`, by the row's method for one place; whether there are
+/// neighbours left and right are constants to it.
+macro_rules! along_row {
+    ($row:ident.$place:ident::<$central:ident, $low:ident, $high:ident>, $last:expr, $emit:ident) => {
+        let last = $last;
+        if last == 0 {
+            let (r, c) = $row.$place::<$central, $low, $high, false, false>(0);
+            $emit(0, r, c);
+            return;
+        }
+        let (r, c) = $row.$place::<$central, $low, $high, false, true>(0);
+        $emit(0, r, c);
+        for i in 1..last {
+            let (r, c) = $row.$place::<$central, $low, $high, true, true>(i);
+            $emit(i, r, c);
+        }
+        let (r, c) = $row.$place::<$central, $low, $high, true, false>(last);
+        $emit(last, r, c);
+    };
+}
+
 pub(crate) mod energy;
 pub(crate) mod mass;
 pub(crate) mod momentum;

@@ -142,15 +142,7 @@ impl<'a> XRow<'a> {
         &self,
         mut emit: impl FnMut(usize, f64, Coefficients),
     ) {
-        let last = self.y_area.len();
-        let (r, c) = self.face::<CENTRAL, LOW, HIGH, false, true>(0);
-        emit(0, r, c);
-        for i in 1..last {
-            let (r, c) = self.face::<CENTRAL, LOW, HIGH, true, true>(i);
-            emit(i, r, c);
-        }
-        let (r, c) = self.face::<CENTRAL, LOW, HIGH, true, false>(last);
-        emit(last, r, c);
+        along_row!(self.face::<CENTRAL, LOW, HIGH>, self.y_area.len(), emit);
     }
 
     #[inline(always)]
@@ -294,20 +286,7 @@ impl<'a> YRow<'a> {
         &self,
         mut emit: impl FnMut(usize, f64, Coefficients),
     ) {
-        let last = self.y_area.len() - 1;
-        if last == 0 {
-            let (r, c) = self.face::<CENTRAL, LOW, HIGH, false, false>(0);
-            emit(0, r, c);
-            return;
-        }
-        let (r, c) = self.face::<CENTRAL, LOW, HIGH, false, true>(0);
-        emit(0, r, c);
-        for i in 1..last {
-            let (r, c) = self.face::<CENTRAL, LOW, HIGH, true, true>(i);
-            emit(i, r, c);
-        }
-        let (r, c) = self.face::<CENTRAL, LOW, HIGH, true, false>(last);
-        emit(last, r, c);
+        along_row!(self.face::<CENTRAL, LOW, HIGH>, self.y_area.len() - 1, emit);
     }
 
     #[inline(always)]
