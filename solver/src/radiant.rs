@@ -277,3 +277,77 @@ pub fn radiant_heat(problem: &Problem, air: &Air, t: &[f64]) -> Option<RadiantHe
     }
     Some(found)
 }
+
+#[cfg(test)]
+#[allow(clippy::unwrap_used)]
+mod tests {
+    use ventrise_mesh::{Geometry, Rectangle};
+
+    use super::*;
+    use crate::by_hand::{air, bare, layout};
+    use crate::{
+        Block, Control, Settings, SideSurface, Solid, StopReason, Surfaces, contacts, solve,
+    };
+
+    /// Two plates of 50 mm, k = 0.2 W/(m·K), at 350 K and 300 K outside, 20 mm of still air between
+    /// them, wide between mirrors: the flux q through the first plate, the gap and the second is
+    /// q = (T₁ − a)·k/L = k_air·(a − b)/d + σ·(a⁴ − b⁴)/(1/ε₁ + 1/ε₂ − 1) = (b − T₂)·k/L (closed
+    /// form but for one root).
+    #[test]
+    fn radiation_between_plates_passes_through_them() {
+        let (plate, gap, wide) = (0.05, 0.02, 0.4);
+        let (k, emissivities) = (0.2, [0.9, 0.7]);
+        let across = |q: f64| {
+            let (a, b) = (350.0 - q * plate / k, 300.0 + q * plate / k);
+            let grey = 1.0 / emissivities[0] + 1.0 / emissivities[1] - 1.0;
+            let radiated = STEFAN_BOLTZMANN * (a.powi(4) - b.powi(4)) / grey;
+            (air().conductivity * (a - b) / gap + radiated, radiated)
+        };
+        let (mut low, mut high) = (0.0, 100.0);
+        for _ in 0..60 {
+            let q = 0.5 * (low + high);
+            if across(q).0 > q { low = q } else { high = q }
+        }
+        let exact = low;
+        // The plates lie side by side, then one above the other.
+        for upright in [true, false] {
+            let along = [0.0, plate, plate + gap, 2.0 * plate + gap];
+            let turn = |x: [f64; 2]| {
+                if upright {
+                    Rectangle { x, y: [0.0, wide] }
+                } else {
+                    Rectangle { x: [0.0, wide], y: x }
+                }
+            };
+            let [width, height] = if upright { [along[3], wide] } else { [wide, along[3]] };
+            let mut shapes = layout(Geometry::Planar { depth: 1.0 }, width, height);
+            shapes.blocks = vec![turn([along[0], along[1]]), turn([along[2], along[3]])];
+            let lines: Vec<f64> = (0..=24).map(|n| 0.005 * f64::from(n)).collect();
+            let other: Vec<f64> = (0..=20).map(|n| 0.02 * f64::from(n)).collect();
+            let [x, y] = if upright { [lines, other] } else { [other, lines] };
+            let mut d = bare(Mesh::from_lines(&shapes, x, y).unwrap());
+            d.gravity = [0.0; 2];
+            d.solids = vec![Solid { conductivity: [k; 2], density: 1000.0, specific_heat: 1000.0 }];
+            d.blocks = vec![Block { solid: 0, heat: 0.0 }; 2];
+            d.sides = [SideCondition::Symmetry; 4];
+            let [first, last] = if upright { [0, 1] } else { [2, 3] };
+            d.sides[first] = SideCondition::Temperature(350.0);
+            d.sides[last] = SideCondition::Temperature(300.0);
+            let mut sides = [SideSurface::Mirror; 4];
+            [first, last].map(|side| sides[side] = SideSurface::Wall(0.5)); // behind the plates
+            d.radiation = Some(Surfaces { blocks: emissivities.to_vec(), sides });
+            let problem = Problem::new(d).unwrap();
+            let solution =
+                solve(&problem, &Settings::default(), None, &mut |_| Control::Continue).unwrap();
+            assert_eq!(solution.stop, StopReason::Converged);
+            let (air, state) = (&solution.air, &solution.state);
+            let flux = crate::side_flows(&problem, air, state)[last].conduction / wide;
+            let radiated = radiant_heat(&problem, air, &state.t).unwrap().blocks[0] / wide;
+            // Mirrors are followed until 2e-4 of the view is left.
+            assert!((flux / exact - 1.0).abs() < 1e-3, "{flux} against {exact}");
+            let expected = across(exact).1;
+            assert!((radiated / expected - 1.0).abs() < 1e-3, "{radiated} against {expected}");
+            assert!(contacts(&problem, air, state).is_empty());
+        }
+    }
+}
