@@ -334,7 +334,9 @@ mod tests {
             d.sides[first] = SideCondition::Temperature(350.0);
             d.sides[last] = SideCondition::Temperature(300.0);
             let mut sides = [SideSurface::Mirror; 4];
-            [first, last].map(|side| sides[side] = SideSurface::Wall(0.5)); // behind the plates
+            for side in [first, last] {
+                sides[side] = SideSurface::Wall(0.5); // behind the plates
+            }
             d.radiation = Some(Surfaces { blocks: emissivities.to_vec(), sides });
             let problem = Problem::new(d).unwrap();
             let solution =

@@ -215,7 +215,9 @@ mod tests {
             d.gravity = [0.0; 2];
             let (sliding, open) = if upright { (1, [2, 3]) } else { (3, [0, 1]) };
             d.sides[sliding] = SideCondition::Sliding(speed);
-            open.map(|side: usize| d.sides[side] = SideCondition::Open);
+            for side in open {
+                d.sides[side] = SideCondition::Open;
+            }
             let problem = Problem::new(d).unwrap();
             let unit = h * h * air().density / air().viscosity;
             let mut run =
