@@ -84,7 +84,7 @@ fn a_mesh_that_memory_cannot_hold_is_2_before_anything_is_done() {
     let case = parsed(&text);
     let said = case.refused_memory(16_000_000, 12.3e9, 1.5e9).to_string();
     assert!(
-        said.starts_with("case.toml:30: mesh: cells = [4000, 4000]: a mesh of 16000000"),
+        said.starts_with("case.toml:29: mesh: cells = [4000, 4000]: a mesh of 16000000"),
         "{said}"
     );
     assert!(said.contains("12 GB") && said.contains("1.5 GB left"), "{said}");
@@ -131,7 +131,7 @@ fn what_the_mesh_refuses_is_said_at_the_keys_of_the_case() {
     };
     let few = said("cells = [1, 40]");
     assert!(
-        few.starts_with("case.toml:30: mesh: cells = [1, 40]: 1 cell along x cannot be"),
+        few.starts_with("case.toml:29: mesh: cells = [1, 40]: 1 cell along x cannot be"),
         "{few}"
     );
     assert!(few.contains("into 5 pieces along x") && few.contains("at least 5 cells"), "{few}");
@@ -152,7 +152,7 @@ fn a_pressure_beside_given_air_is_not_ignored_in_silence() {
                  viscosity = \"1.95e-5 Pa s\"\nconductivity = \"0.0275 W/(m K)\"\n\
                  specific-heat = \"1007 J/(kg K)\"\nexpansion = \"0.0032 1/K\"\n[[block]]";
     let said = parsed(&changed("[[block]]", given)).warnings();
-    let warning = "line 10: ambient: altitude = \"3000 m\" has no effect";
+    let warning = "line 9: ambient: altitude = \"3000 m\" has no effect";
     assert!(said.iter().any(|w| w.starts_with(warning)), "{said:?}");
     // Not said of the sea level that is taken for granted, nor after a resolved case is read back.
     let silent = parsed(&changed("[[block]]", given).replace("altitude = \"3000 m\"\n", ""));
