@@ -95,7 +95,8 @@ fn fields(state: &State) -> [&[f64]; 4] {
 /// Makes `old` the same as `new`; what it takes goes to `change`.
 fn advance(old: &mut State, new: &State, change: &mut [f32]) {
     let mut rest = change;
-    let pairs = [(&mut old.u, &new.u), (&mut old.v, &new.v), (&mut old.p, &new.p), (&mut old.t, &new.t)];
+    let pairs =
+        [(&mut old.u, &new.u), (&mut old.v, &new.v), (&mut old.p, &new.p), (&mut old.t, &new.t)];
     for (old, new) in pairs {
         let (change, others) = rest.split_at_mut(old.len());
         rest = others;

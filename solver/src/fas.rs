@@ -208,7 +208,7 @@ impl Stack {
             &self.levels[l + 1],
             state,
             &mut fine.state,
-            1.0,
+            true,
         );
     }
 
@@ -287,7 +287,7 @@ impl Stack {
             &self.levels[l + 1],
             start,
             &mut fine.state,
-            1.0,
+            false,
         );
         for _ in 0..smoothing.iterations[1] {
             smooth(&self.levels[l], &mut self.work[l], &smoothing);

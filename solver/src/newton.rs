@@ -187,9 +187,9 @@ impl Newton {
     fn factors_of(&mut self, matrix: &TriMat<f64>) -> Result<Factors, SolveError> {
         let order = self.order.get_or_insert_with(|| Order::new(&self.numbers.cells, matrix));
         self.factorisations += 1;
-        order.factorise(matrix).map_err(|e: Singular| {
-            SolveError::Factorisation { reason: e.to_string() }
-        })
+        order
+            .factorise(matrix)
+            .map_err(|e: Singular| SolveError::Factorisation { reason: e.to_string() })
     }
 
     /// Inertia ρ·V [kg] and heat capacity [J/K] of every unknown (zero for pressures).

@@ -30,8 +30,6 @@ pub use surfaces::{SideSurface, Surfaces};
 
 use ventrise_mesh::Mesh;
 
-
-
 /// Stefan–Boltzmann constant [W/(m²·K⁴)]. Origin: [codata-2018], exact in the SI of 2019; from
 /// memory.
 pub const STEFAN_BOLTZMANN: f64 = 5.670_374_419e-8;

@@ -151,10 +151,10 @@ impl Cutting<'_> {
         let best = (low + 1..high)
             .filter(|at| (f64::from(*at) - middle).abs() <= reach.max(0.5))
             .min_by(|a, b| {
-                let key = |at: u32| (counts[(at - low) as usize], (f64::from(at) - middle).abs());
-                let ((na, da), (nb, db)) = (key(*a), key(*b));
-                na.cmp(&nb).then(da.total_cmp(&db))
-            })?;
+            let key = |at: u32| (counts[(at - low) as usize], (f64::from(at) - middle).abs());
+            let ((na, da), (nb, db)) = (key(*a), key(*b));
+            na.cmp(&nb).then(da.total_cmp(&db))
+        })?;
         Some((upright, best))
     }
 }

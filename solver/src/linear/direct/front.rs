@@ -134,9 +134,8 @@ impl Dense {
             let mut k = done;
             while k < end {
                 let sizes = (k..complete).map(|r| self.values[r * n + k].abs());
-                let (pivot, size) = sizes
-                    .enumerate()
-                    .fold((0, 0.0), |best, x| if x.1 > best.1 { x } else { best });
+                let (pivot, size) =
+                    sizes.enumerate().fold((0, 0.0), |best, x| if x.1 > best.1 { x } else { best });
                 if size.is_nan() || size < least {
                     break;
                 }
@@ -215,7 +214,8 @@ impl Front {
         work.extend(self.rows.iter().map(|p| right[*p as usize]));
         for r in 1..n {
             let (known, rest) = work.split_at_mut(r.min(e));
-            let left = if r < e { &self.upper[r * n..][..r] } else { &self.lower[(r - e) * e..][..e] };
+            let left =
+                if r < e { &self.upper[r * n..][..r] } else { &self.lower[(r - e) * e..][..e] };
             rest[r - r.min(e)] -= product(left, known);
         }
         self.rows.iter().zip(&*work).for_each(|(p, value)| right[*p as usize] = *value);

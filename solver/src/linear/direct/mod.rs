@@ -91,9 +91,9 @@ impl Order {
 fn scales(matrix: &TriMat<f64>, position: &[u32]) -> (Vec<f64>, Vec<f64>) {
     let entries = || {
         let places = matrix.row_inds().iter().zip(matrix.col_inds());
-        places.zip(matrix.data()).map(|((r, c), v)| {
-            (position[*r] as usize, position[*c] as usize, v.abs())
-        })
+        places
+            .zip(matrix.data())
+            .map(|((r, c), v)| (position[*r] as usize, position[*c] as usize, v.abs()))
     };
     let inverse = |largest: &mut f64| {
         *largest = if *largest > 0.0 { (-largest.log2().round()).exp2() } else { 1.0 };

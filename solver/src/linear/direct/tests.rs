@@ -26,7 +26,8 @@ fn system(nx: u32, ny: u32, scale: f64) -> (Vec<(u32, u32)>, TriMat<f64>) {
             matrix.add_triplet(t, v, scale * value());
             matrix.add_triplet(v, p, 1.0 + 0.1 * value());
             matrix.add_triplet(p, v, -1.0 + 0.1 * value());
-            for (i2, j2) in [(i + 1, j), (i, j + 1), (i.wrapping_sub(1), j), (i, j.wrapping_sub(1))] {
+            for (i2, j2) in [(i + 1, j), (i, j + 1), (i.wrapping_sub(1), j), (i, j.wrapping_sub(1))]
+            {
                 if i2 < nx && j2 < ny {
                     let n = at(i2, j2);
                     matrix.add_triplet(v, n + 1, -1.0 + value());
@@ -94,7 +95,11 @@ fn every_unknown_is_eliminated_once_and_after_all_that_lead_to_it() {
         let parent = &pieces[parent as usize];
         for (p, place) in piece.later.iter().zip(&piece.in_parent) {
             let own = parent.own.len() as u32;
-            let there = if *place < own { parent.own.start + place } else { parent.later[(place - own) as usize] };
+            let there = if *place < own {
+                parent.own.start + place
+            } else {
+                parent.later[(place - own) as usize]
+            };
             assert_eq!(there, *p);
         }
     }
