@@ -5,7 +5,7 @@ use super::dissection::Dissection;
 
 /// Least pivot, every row and column being scaled to a largest entry of about one. What is smaller
 /// waits for the next larger piece.
-const LEAST_PIVOT: f64 = 1e-3;
+pub(super) const LEAST_PIVOT: f64 = 1e-3;
 /// Pivots below this are none, even where nothing is left to wait for.
 const NO_PIVOT: f64 = 1e-30;
 /// Columns eliminated before the rest of the front follows.
