@@ -5,7 +5,7 @@ use super::dissection::Dissection;
 
 /// Least pivot over the largest entry of its column, those of later unknowns' rows included. What
 /// is smaller waits for the next larger piece.
-const LEAST_PIVOT: f64 = 0.1;
+const LEAST_PIVOT: f64 = 0.01;
 /// Pivots below this are none (every row and column is scaled to a largest entry of about one).
 const NO_PIVOT: f64 = 1e-30;
 /// Columns eliminated before the rest of the front follows.
