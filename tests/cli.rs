@@ -93,11 +93,62 @@ fn help_has_examples_and_exit_codes() {
         ("help-check.txt", &["check", "--help"]),
         ("help-report.txt", &["report", "--help"]),
         ("help-benchmark.txt", &["benchmark", "--help"]),
+        ("help-schema.txt", &["schema", "--help"]),
+        ("help-completions.txt", &["completions", "--help"]),
+        ("help-man.txt", &["man", "--help"]),
     ] {
         let (code, out, err) = run(&place, words);
         assert_eq!((code, err.as_str()), (0, ""));
         same_as_accepted(name, &out);
     }
+}
+
+#[test]
+fn every_command_has_examples_a_manual_page_and_completions() {
+    let place = place(SLAB);
+    let (code, help, _) = run(&place, &["--help"]);
+    assert_eq!(code, 0);
+    let (_, commands) = help.split_once("Commands:\n").unwrap();
+    let (commands, _) = commands.split_once("\n\n").unwrap();
+    let names: Vec<&str> = commands
+        .lines()
+        .filter(|line| line.starts_with("  ") && !line.starts_with("   "))
+        .map(|line| line.split_whitespace().next().unwrap())
+        .filter(|name| *name != "help")
+        .collect();
+    assert!(names.len() >= 8 && names.contains(&"solve"), "{names:?}");
+    let completions = ["bash", "zsh", "fish"].map(|shell| {
+        let (code, out, err) = run(&place, &["completions", shell]);
+        assert_eq!((code, err.as_str()), (0, ""), "{shell}");
+        out
+    });
+    let (code, program, _) = run(&place, &["man"]);
+    assert!(code == 0 && program.starts_with(".ie"), "{program}");
+    for name in names {
+        let (_, help, _) = run(&place, &[name, "--help"]);
+        assert!(help.contains("Example"), "{name}: {help}");
+        let (code, page, err) = run(&place, &["man", name]);
+        assert_eq!((code, err.as_str()), (0, ""), "{name}");
+        assert!(page.contains(&format!(".TH ventrise-{name} 1")), "{page}");
+        assert!(program.contains(&format!("ventrise\\-{name}(1)")), "{name}: {program}");
+        assert!(completions.iter().all(|text| text.contains(name)), "{name}");
+    }
+    let (code, out, err) = run(&place, &["man", "solv"]);
+    assert!(code == 2 && out.is_empty() && err.contains("name of a command"), "{err}");
+}
+
+#[test]
+fn the_schema_is_json_with_every_table() {
+    let place = place(SLAB);
+    let (code, out, err) = run(&place, &["schema"]);
+    assert_eq!((code, err.as_str()), (0, ""));
+    let schema: Value = serde_json::from_str(&out).unwrap();
+    assert_eq!(schema["$schema"], "https://json-schema.org/draft/2020-12/schema");
+    assert_eq!(schema["required"], serde_json::json!(["section", "ambient"]));
+    let width = &schema["properties"]["section"]["properties"]["width"];
+    assert_eq!(width["examples"], serde_json::json!(["120 mm"]));
+    assert_eq!(schema["properties"]["mesh"]["properties"]["growth"]["default"], 1.2);
+    assert_eq!(schema["properties"]["block"]["items"]["additionalProperties"], false);
 }
 
 #[test]
