@@ -10,6 +10,7 @@ mod edge;
 mod error;
 mod estimate;
 mod joints;
+pub mod judgement;
 mod keys;
 pub mod materials;
 mod meshing;
