@@ -306,6 +306,35 @@ fn a_closed_pipe_changes_neither_results_nor_exit_code() {
 }
 
 #[test]
+fn the_hand_estimate_stands_beside_the_hottest_part() {
+    let ring = place(RING);
+    let (code, out, err) = run(&ring, &["solve", "case.toml"]);
+    assert_eq!(code, 0, "{out}{err}");
+    // V^3 = 2 g beta H Q/(rho cp (C + C)), C = (1 + K)/A^2 of a ring of 60 to 100 mm; H from the
+    // middle of the block, 100 mm, to the roof.
+    let area = std::f64::consts::PI * (0.1 * 0.1 - 0.06 * 0.06);
+    let losses = 2.0 * 2.5 / (area * area);
+    let flow = (2.0 * 9.80665 * 3e-3 * 0.1 * 1.0 / (1.2 * 1000.0 * losses)).cbrt();
+    let s = summary(&ring, "case.results");
+    let found = s["by_hand"]["flow_m3_s"].as_f64().unwrap();
+    assert!((found / flow - 1.0).abs() < 1e-12, "{found} {flow}");
+    let rise = s["parts"][0]["max_c"].as_f64().unwrap() - 40.0;
+    let line = format!(
+        "By hand: surfaces about {:.0} K above the air, which leaves {:.1} K above ambient or more \
+         ({:.2} m3/h at most). Computed: \"radio\" {rise:.1} K above ambient.",
+        s["by_hand"]["surface_rise_k"].as_f64().unwrap(),
+        1.0 / (1200.0 * flow),
+        3600.0 * flow
+    );
+    assert!(out.contains(&line), "{line}\n{out}");
+    // Without air there is nothing to estimate.
+    let slab = place(SLAB);
+    let (_, out, _) = run(&slab, &["solve", "case.toml"]);
+    assert!(!out.contains("By hand"), "{out}");
+    assert!(summary(&slab, "case.results")["by_hand"].is_null());
+}
+
+#[test]
 fn revolved_fields_are_written_when_asked_for() {
     let place = place(RING);
     let (code, out, err) = run(&place, &["solve", "case.toml", "--revolve", "8"]);
