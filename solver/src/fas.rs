@@ -22,7 +22,7 @@ use crate::{Air, Control, Convection, Problem, Residuals, SolveError, State, par
 pub(crate) const COARSEST_CELLS: [usize; 2] = [2000, 6000];
 /// The nested start begins on a mesh of about so many cells, where a direct solution costs nearly
 /// nothing and many of them do no harm.
-const STARTING_CELLS: usize = 700;
+const STARTING_CELLS: usize = 200;
 /// Largest flow over conductance of a face on coarser meshes: found best of 2, 4 and none on
 /// housings whose cells are large for their speeds.
 const COARSE_PECLET: f64 = 4.0;

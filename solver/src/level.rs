@@ -391,7 +391,8 @@ impl Level {
                 let across = matches!(side, Side::Left | Side::Right);
                 let half = 0.5 * if across { self.dx[i] } else { self.dy[j] };
                 let k = f64::from(self.conductivity[cell][usize::from(!across)]);
-                let share = exchange.conductance * half / (k * side_area(problem, side, n));
+                let full = k * side_area(problem, side, n) / half; // none at an axis
+                let share = if full > 0.0 { exchange.conductance / full } else { 0.0 };
                 self.edges[side.index()].push(Edge { share, rise: exchange.rise });
             }
         }
