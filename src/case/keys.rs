@@ -75,18 +75,14 @@ pub(super) enum Kind {
     Number(f64, f64, &'static str),
     /// A whole number: least, most.
     Count(usize, usize),
-    /// Two lengths; their range.
-    Lengths(&'static str),
-    /// Two whole numbers: least and most of each, range in words.
-    Counts(usize, usize, &'static str),
-    /// Two names.
-    Names,
+    /// Two values in brackets; the range of both together.
+    Pair(&'static [Kind; 2], &'static str),
+    /// Any number of values in brackets, or as tables of one header.
+    List(&'static Kind),
     /// A table.
     Table(&'static Table),
-    /// A list of tables.
-    Tables(&'static Table),
-    /// One of some words, or a table.
-    WordOrTable(&'static [&'static str], &'static Table),
+    /// One of some kinds.
+    Either(&'static [Kind]),
 }
 
 /// How keys of a table go together.
@@ -119,13 +115,40 @@ impl Kind {
     /// The range in words.
     pub fn range(&self) -> Option<String> {
         match self {
-            Kind::Quantity(_, range)
-            | Kind::Number(_, _, range)
-            | Kind::Lengths(range)
-            | Kind::Counts(_, _, range) => (!range.is_empty()).then(|| (*range).into()),
+            Kind::Quantity(_, range) | Kind::Number(_, _, range) | Kind::Pair(_, range) => {
+                (!range.is_empty()).then(|| (*range).into())
+            }
             Kind::Count(least, most) => Some(format!("a whole number from {least} to {most}")),
+            Kind::Either(kinds) => kinds.iter().find_map(Kind::range),
             _ => None,
         }
+    }
+
+    /// The kinds that it is made of, itself included.
+    pub fn all(&self) -> Vec<&Kind> {
+        let inner: &[Kind] = match self {
+            Kind::Pair(kinds, _) => *kinds,
+            Kind::Either(kinds) => kinds,
+            Kind::List(kind) => std::slice::from_ref(*kind),
+            _ => &[],
+        };
+        std::iter::once(self).chain(inner.iter().flat_map(Kind::all)).collect()
+    }
+
+    /// The table in it.
+    pub fn table(&self) -> Option<&'static Table> {
+        self.all().into_iter().find_map(|kind| match kind {
+            Kind::Table(table) => Some(*table),
+            _ => None,
+        })
+    }
+
+    /// The words in it.
+    pub fn words(&self) -> Option<&'static [&'static str]> {
+        self.all().into_iter().find_map(|kind| match kind {
+            Kind::Word(words) => Some(*words),
+            _ => None,
+        })
     }
 }
 
@@ -146,12 +169,7 @@ mod tests {
 
     /// All examples of the tables as one case.
     fn document() -> toml::Table {
-        let inner = TOP.keys.iter().filter_map(|key| match key.kind {
-            Kind::Table(table) | Kind::Tables(table) => Some(table.example),
-            _ => None,
-        });
-        let text: String = std::iter::once(TOP.example).chain(inner).collect();
-        toml::from_str(&text).unwrap()
+        toml::from_str(&super::super::vocabulary::example()).unwrap()
     }
 
     /// Every table with the way to it.
@@ -161,7 +179,7 @@ mod tests {
         while next < all.len() {
             let (way, table) = all[next].clone();
             for key in table.keys {
-                if let Kind::Table(t) | Kind::Tables(t) | Kind::WordOrTable(_, t) = key.kind {
+                if let Some(t) = key.kind.table() {
                     all.push(([way.as_slice(), &[key.name]].concat(), t));
                 }
             }
@@ -293,28 +311,36 @@ mod tests {
         assert!(count >= 9, "{count} compared");
     }
 
+    fn text(value: f64, dimension: Dimension) -> Value {
+        Value::String(format!("{value:e} {}", dimension.usual_unit()))
+    }
+
+    /// Values outside the range of a kind.
+    fn wrong(kind: &Kind) -> Vec<Value> {
+        match kind {
+            Kind::Word(_) => vec![Value::String("quux".into())],
+            Kind::Quantity(dimension, _) => {
+                [1e30, -1e30, 2.5e3, 1e-30, 0.0].map(|value| text(value, *dimension)).to_vec()
+            }
+            Kind::Number(..) | Kind::Count(..) => [1e30, -1e30, 0.5].map(Value::Float).to_vec(),
+            _ => Vec::new(),
+        }
+    }
+
     #[test]
     fn words_and_ranges_are_the_readers() {
         for (way, table) in tables() {
             for key in table.keys {
                 let temperature = matches!(key.kind, Kind::Quantity(Dimension::Temperature, _));
-                let text = |value: f64, dimension: Dimension| {
-                    Value::String(format!("{value:e} {}", dimension.usual_unit()))
-                };
                 let values: Vec<Value> = match &key.kind {
-                    Kind::Word(_) | Kind::WordOrTable(..) => vec![Value::String("quux".into())],
-                    Kind::Quantity(dimension, _) => [1e30, -1e30, 2.5e3, 1e-30, 0.0]
-                        .map(|value| text(value, *dimension))
-                        .to_vec(),
-                    Kind::Number(..) | Kind::Count(..) => {
-                        [1e30, -1e30, 0.5].map(Value::Float).to_vec()
+                    Kind::Pair([Kind::Quantity(dimension, _), _], _) => {
+                        vec![Value::Array(vec![text(7.0, *dimension); 2])]
                     }
-                    Kind::Lengths(_) => {
-                        let [a, b] = [7.0, 7.0].map(|value| text(value, Dimension::Length));
-                        vec![Value::Array(vec![a, b])]
+                    Kind::Pair([Kind::Count(..), _], _) => {
+                        vec![Value::Array(vec![Value::Integer(0); 2])]
                     }
-                    Kind::Counts(..) => vec![Value::Array(vec![Value::Integer(0); 2])],
-                    _ => Vec::new(),
+                    Kind::Pair(..) | Kind::List(_) => Vec::new(),
+                    kind => kind.all().into_iter().flat_map(wrong).collect(),
                 };
                 let begin = format!(": {} = ", key.name);
                 let mut told: BTreeSet<String> = BTreeSet::new();
@@ -332,17 +358,15 @@ mod tests {
                     let range = key.kind.range().unwrap();
                     told.retain(|b| range.contains(b) || !ANY_TEMPERATURE.contains(&b.as_str()));
                 }
-                let known = match &key.kind {
-                    Kind::Word(words) | Kind::WordOrTable(words, _) => {
-                        let quoted: Vec<String> =
-                            words.iter().map(|w| format!("\"{w}\"")).collect();
-                        let quoted: Vec<&str> = quoted.iter().map(String::as_str).collect();
-                        super::super::error::one_of(&quoted)
-                    }
-                    kind => kind.range().unwrap_or_default(),
-                };
-                assert!(told.iter().all(|bound| known.contains(bound)), "{key:?}: {told:?}");
-                let probe_to = known.starts_with("another point");
+                let mut known: Vec<String> = key.kind.range().into_iter().collect();
+                if let Some(words) = key.kind.words() {
+                    let quoted: Vec<String> = words.iter().map(|w| format!("\"{w}\"")).collect();
+                    let quoted: Vec<&str> = quoted.iter().map(String::as_str).collect();
+                    known.push(super::super::error::one_of(&quoted));
+                }
+                let is_known = |bound: &String| known.iter().any(|k| k.contains(bound));
+                assert!(told.iter().all(is_known), "{key:?}: {told:?}");
+                let probe_to = known.iter().any(|k| k.starts_with("another point"));
                 assert!(known.is_empty() || !told.is_empty() || probe_to, "{key:?}: nothing told");
             }
         }

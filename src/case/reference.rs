@@ -69,18 +69,16 @@ pub fn reference() -> String {
     page += TOP.says;
     page += "\n\n| table or key | without it | holds |\n|---|---|---|\n";
     for key in TOP.keys {
-        let name = match key.kind {
-            Kind::Table(t) | Kind::Tables(t) => format!("[`{}`](#{})", t.header, key.name),
-            _ => format!("`{}`", key.name),
+        let name = match key.kind.table() {
+            Some(table) => format!("[`{}`](#{})", table.header, key.name),
+            None => format!("`{}`", key.name),
         };
         line(&mut page, format_args!("| {name} | {} | {} |", need(key), key.says));
     }
     page.push('\n');
     example(&mut page, TOP.example);
-    for key in TOP.keys {
-        if let Kind::Table(table) | Kind::Tables(table) = key.kind {
-            of_table(&mut page, table, "##");
-        }
+    for table in TOP.keys.iter().filter_map(|key| key.kind.table()) {
+        of_table(&mut page, table, "##");
     }
     page += MATERIALS;
     for m in materials::library() {
@@ -94,12 +92,10 @@ pub fn reference() -> String {
 
 /// Every dimension that a key has, in the order of the keys.
 fn dimensions(table: &Table, mut found: Vec<Dimension>) -> Vec<Dimension> {
-    for key in table.keys {
-        match key.kind {
-            Kind::Quantity(dimension, _) if !found.contains(&dimension) => found.push(dimension),
-            Kind::Table(t) | Kind::Tables(t) | Kind::WordOrTable(_, t) => {
-                found = dimensions(t, found);
-            }
+    for kind in table.keys.iter().flat_map(|key| key.kind.all()) {
+        match kind {
+            Kind::Quantity(dimension, _) if !found.contains(dimension) => found.push(*dimension),
+            Kind::Table(inner) => found = dimensions(inner, found),
             _ => {}
         }
     }
@@ -133,11 +129,9 @@ fn of_table(page: &mut String, table: &Table, level: &str) {
     }
     example(page, table.example);
     let mut inner: Vec<&Table> = Vec::new();
-    for key in table.keys {
-        if let Kind::Table(t) | Kind::WordOrTable(_, t) = key.kind
-            && inner.iter().all(|seen| seen.header != t.header)
-        {
-            inner.push(t);
+    for table in table.keys.iter().filter_map(|key| key.kind.table()) {
+        if inner.iter().all(|seen| seen.header != table.header) {
+            inner.push(table);
         }
     }
     for table in inner {
@@ -145,28 +139,37 @@ fn of_table(page: &mut String, table: &Table, level: &str) {
     }
 }
 
-/// What a key may hold, in words.
+/// What a key may hold, in words, with its range.
 fn value(kind: &Kind) -> String {
-    let what = match kind {
+    let what = named(kind);
+    match kind.range() {
+        Some(range) if what.is_empty() => range,
+        Some(range) => format!("{what}: {range}"),
+        None => what,
+    }
+}
+
+/// What a kind is called.
+fn named(kind: &Kind) -> String {
+    match kind {
         Kind::Text => "text".into(),
         Kind::Word(words) => listed(words.iter().map(|w| format!("\"{w}\"")), "or"),
         Kind::Quantity(dimension, _) => dimension.name().into(),
         Kind::Number(..) => "number".into(),
         Kind::Count(..) => String::new(),
-        Kind::Lengths(_) => "two lengths".into(),
-        Kind::Counts(..) => "two whole numbers".into(),
-        Kind::Names => "two names".into(),
-        Kind::Table(table) | Kind::Tables(table) => format!("table, see [{0}](#{0})", table.header),
-        Kind::WordOrTable(words, table) => {
-            let words = listed(words.iter().map(|w| format!("\"{w}\"")), ",");
-            let anchor = table.header.replace(' ', "-");
-            format!("{words}, or a table, see [{}](#{anchor})", table.header)
+        Kind::Pair([Kind::Count(..), _], _) => "two whole numbers in brackets".into(),
+        Kind::Pair([a, b], _) => match (named(a), named(b)) {
+            (a, b) if a == b => format!("two {a}s in brackets"),
+            (a, b) => format!("{a} and {b} in brackets"),
+        },
+        Kind::List(kind) => format!("list: {}", named(kind)),
+        Kind::Table(table) => {
+            format!("table, see [{}](#{})", table.header, table.header.replace(' ', "-"))
         }
-    };
-    match kind.range() {
-        Some(range) if what.is_empty() => range,
-        Some(range) => format!("{what}: {range}"),
-        None => what,
+        Kind::Either(kinds) => {
+            let kinds: Vec<String> = kinds.iter().map(named).collect();
+            kinds.join(", or ")
+        }
     }
 }
 
@@ -204,11 +207,11 @@ fn sentence(table: &Table, rule: &Rule) -> String {
     }
 }
 
-/// `a, b and c`; with a comma as the word, `a, b, c`.
+/// `a, b and c`.
 fn listed(items: impl Iterator<Item = String>, word: &str) -> String {
     let items: Vec<String> = items.collect();
     match items.split_last() {
-        Some((last, rest)) if !rest.is_empty() && word != "," => {
+        Some((last, rest)) if !rest.is_empty() => {
             format!("{} {word} {last}", rest.join(", "))
         }
         _ => items.join(", "),

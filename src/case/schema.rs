@@ -6,16 +6,11 @@ use serde_json::{Map, Value, json};
 
 use super::keys::{Key, Kind, Need, Rule, Table};
 use super::units::Dimension;
-use super::vocabulary::TOP;
+use super::vocabulary::{TOP, example};
 
 /// The schema as JSON text.
 pub fn schema() -> String {
-    let examples = TOP.keys.iter().filter_map(|key| match key.kind {
-        Kind::Table(table) | Kind::Tables(table) => Some(table.example),
-        _ => None,
-    });
-    let text: String = std::iter::once(TOP.example).chain(examples).collect();
-    let example = json!(toml::from_str::<toml::Table>(&text).unwrap_or_default());
+    let example = json!(toml::from_str::<toml::Table>(&example()).unwrap_or_default());
     let mut schema = of_table(&TOP, &[&example]);
     schema.insert("$schema".into(), json!("https://json-schema.org/draft/2020-12/schema"));
     schema.insert("title".into(), json!("Case file of Ventrise"));
@@ -47,37 +42,51 @@ fn of_table(table: &Table, examples: &[&Value]) -> Map<String, Value> {
 }
 
 fn of_key(key: &Key, examples: &[&Value]) -> Value {
-    let mut schema = match &key.kind {
-        Kind::Text => object(json!({ "type": "string", "pattern": "\\S" })),
-        Kind::Word(words) => object(json!({ "enum": words })),
-        Kind::Quantity(dimension, _) => of_quantity(*dimension),
-        Kind::Number(least, most, _) => {
-            object(json!({ "type": "number", "minimum": least, "maximum": most }))
-        }
-        Kind::Count(least, most) => count(*least, *most),
-        Kind::Lengths(_) => two(&of_quantity(Dimension::Length)),
-        Kind::Counts(least, most, _) => two(&count(*least, *most)),
-        Kind::Names => two(&object(json!({ "type": "string", "pattern": "\\S" }))),
-        Kind::Table(table) => of_table(table, examples),
-        Kind::Tables(table) => {
-            let all: Vec<&Value> = examples.iter().filter_map(|e| e.as_array()).flatten().collect();
-            object(json!({ "type": "array", "items": of_table(table, &all) }))
-        }
-        Kind::WordOrTable(words, table) => {
-            object(json!({ "anyOf": [{ "enum": words }, of_table(table, examples)] }))
-        }
-    };
+    let mut schema = of_kind(&key.kind, examples);
     schema.insert("description".into(), json!(description(key)));
     if let Need::Default(value) = key.need
         && let Ok(document) = toml::from_str::<toml::Table>(&format!("value = {value}"))
     {
         schema.insert("default".into(), json!(document["value"]));
     }
-    let is_value = !matches!(key.kind, Kind::Table(_) | Kind::Tables(_));
+    let is_value = key.kind.table().is_none() || key.kind.words().is_some();
     if let Some(example) = examples.first().filter(|_| is_value) {
         schema.insert("examples".into(), json!([example]));
     }
     Value::Object(schema)
+}
+
+/// The schema of what a key holds.
+fn of_kind(kind: &Kind, examples: &[&Value]) -> Map<String, Value> {
+    match kind {
+        Kind::Text => object(json!({ "type": "string", "pattern": "\\S" })),
+        Kind::Word(words) => object(json!({ "enum": words })),
+        Kind::Quantity(dimension, _) => {
+            object(json!({ "type": "string", "pattern": pattern(*dimension) }))
+        }
+        Kind::Number(least, most, _) => {
+            object(json!({ "type": "number", "minimum": least, "maximum": most }))
+        }
+        Kind::Count(least, most) => {
+            object(json!({ "type": "integer", "minimum": least, "maximum": most }))
+        }
+        Kind::Pair(kinds, _) => {
+            let [a, b] = kinds.each_ref().map(|kind| of_kind(kind, &[]));
+            // The plain form is understood by readers of older drafts too.
+            let (form, items) =
+                if a == b { ("items", json!(a)) } else { ("prefixItems", json!([a, b])) };
+            object(json!({ "type": "array", form: items, "minItems": 2, "maxItems": 2 }))
+        }
+        Kind::List(kind) => {
+            let all: Vec<&Value> = examples.iter().filter_map(|e| e.as_array()).flatten().collect();
+            object(json!({ "type": "array", "items": of_kind(kind, &all) }))
+        }
+        Kind::Table(table) => of_table(table, examples),
+        Kind::Either(kinds) => {
+            let kinds: Vec<_> = kinds.iter().map(|kind| of_kind(kind, examples)).collect();
+            object(json!({ "anyOf": kinds }))
+        }
+    }
 }
 
 /// What an editor shows beside a key: its meaning, and the range where it has one.
@@ -86,18 +95,6 @@ fn description(key: &Key) -> String {
         Some(range) => format!("{}; {range}", key.says),
         None => key.says.into(),
     }
-}
-
-fn count(least: usize, most: usize) -> Map<String, Value> {
-    object(json!({ "type": "integer", "minimum": least, "maximum": most }))
-}
-
-fn two(item: &Map<String, Value>) -> Map<String, Value> {
-    object(json!({ "type": "array", "items": item, "minItems": 2, "maxItems": 2 }))
-}
-
-fn of_quantity(dimension: Dimension) -> Map<String, Value> {
-    object(json!({ "type": "string", "pattern": pattern(dimension) }))
 }
 
 /// A regular expression, in the part that all dialects share, for a number with a unit of this

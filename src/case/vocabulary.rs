@@ -1,18 +1,24 @@
 //! Every table and key of the case file, one line a key. Reader, schema and reference page know
 //! keys from here; what they mean in SI is the reader's business.
 
-use super::keys::Kind::{
-    Count, Counts, Lengths, Names, Number, Quantity, Table as Inner, Tables, Text, Word,
-    WordOrTable,
-};
+use super::keys::Kind::{Count, Either, List, Number, Pair, Quantity, Table as Inner, Text, Word};
 use super::keys::Need::{Default, Required, Without};
-use super::keys::{Rule, Table, key};
+use super::keys::{Kind, Rule, Table, key};
 use super::units::Dimension;
 
 /// Names of the sides.
 pub(super) const SIDE_NAMES: [&str; 4] = ["left", "right", "bottom", "top"];
 /// Conditions of a side that need no number.
 pub(super) const SIDE_WORDS: [&str; 3] = ["adiabatic", "symmetry", "open"];
+
+const LENGTHS: [Kind; 2] = [Quantity(Dimension::Length, ""), Quantity(Dimension::Length, "")];
+const SIDE_KIND: Kind = Either(&[Word(&SIDE_WORDS), Inner(&SIDE)]);
+
+/// All examples together: a case.
+pub(super) fn example() -> String {
+    let inner = TOP.keys.iter().filter_map(|key| key.kind.table()).map(|table| table.example);
+    std::iter::once(TOP.example).chain(inner).collect()
+}
 
 /// The whole file.
 #[rustfmt::skip]
@@ -25,12 +31,12 @@ pub(super) const TOP: Table = Table {
         key("section", Inner(&SECTION), Required, "the computed plane"),
         key("ambient", Inner(&AMBIENT), Required, "the air outside"),
         key("air", Inner(&AIR), Without("dry air"), "the properties of the air"),
-        key("material", Tables(&MATERIAL), Without("the built-in materials"), "materials of your own"),
-        key("block", Tables(&BLOCK), Without("no solid"), "solid rectangles"),
-        key("joint", Tables(&JOINT), Without("perfect contact"), "contact resistances"),
-        key("slot", Tables(&SLOT), Without("no opening"), "openings in the edge of the section"),
+        key("material", List(&Inner(&MATERIAL)), Without("the built-in materials"), "materials of your own"),
+        key("block", List(&Inner(&BLOCK)), Without("no solid"), "solid rectangles"),
+        key("joint", List(&Inner(&JOINT)), Without("perfect contact"), "contact resistances"),
+        key("slot", List(&Inner(&SLOT)), Without("no opening"), "openings in the edge of the section"),
         key("sides", Inner(&SIDES), Without("adiabatic sides"), "what the edge does where no slot is"),
-        key("probe", Tables(&PROBE), Without("none"), "places whose values are reported"),
+        key("probe", List(&Inner(&PROBE)), Without("none"), "places whose values are reported"),
         key("mesh", Inner(&MESH), Without("chosen from the case"), "how fine the section is divided"),
         key("solve", Inner(&SOLVE), Without("the usual bounds"), "when to stop"),
     ],
@@ -125,8 +131,8 @@ pub(super) const BLOCK: Table = Table {
         key("name", Text, Without("no name"), "a name of its own; a named block without a part is a part by itself"),
         key("part", Text, Without("its name"), "name of the part it belongs to; blocks of one part are judged together"),
         key("material", Text, Required, "name of a built-in material or of one of your own"),
-        key("x", Lengths("a smaller and a larger length"), Required, "from and to along x"),
-        key("y", Lengths("a smaller and a larger length"), Required, "from and to along y"),
+        key("x", Pair(&LENGTHS, "a smaller and a larger length"), Required, "from and to along x"),
+        key("y", Pair(&LENGTHS, "a smaller and a larger length"), Required, "from and to along y"),
         key("heat", Quantity(Dimension::Power, "0 W, or from 1e-9 W to 1000 kW in size"), Default("\"0 W\""), "heat released in the block, over the depth or the full revolution; below zero it is cooled"),
         key("limit", Quantity(Dimension::Temperature, "at most 3000 degC"), Without("not judged"), "highest temperature allowed in its part; the blocks of a part have one limit between them"),
         key("emissivity", Number(0.0, 1.0, "from 0 to 1"), Without("its material's"), "emissivity of its surface"),
@@ -160,7 +166,7 @@ pub(super) const JOINT: Table = Table {
     what: "a joint",
     says: "The resistance between blocks that touch. Without one heat passes as if they were of one piece.",
     keys: &[
-        key("between", Names, Required, "two blocks or parts; every touching pair of them gets the joint"),
+        key("between", Pair(&[Text, Text], ""), Required, "two blocks or parts; every touching pair of them gets the joint"),
         key("resistance", Quantity(Dimension::AreaResistance, "from 0 to 10000 K cm2/W"), Required, "resistance times area"),
     ],
     later: &[],
@@ -192,10 +198,10 @@ pub(super) const SIDES: Table = Table {
     what: "[sides]",
     says: "What the four edges of the section do where no slot is. The left side of an axisymmetric section is its axis.",
     keys: &[
-        key("left", WordOrTable(&SIDE_WORDS, &SIDE), Default("\"adiabatic\""), "the left side"),
-        key("right", WordOrTable(&SIDE_WORDS, &SIDE), Default("\"adiabatic\""), "the right side"),
-        key("bottom", WordOrTable(&SIDE_WORDS, &SIDE), Default("\"adiabatic\""), "the bottom side"),
-        key("top", WordOrTable(&SIDE_WORDS, &SIDE), Default("\"adiabatic\""), "the top side"),
+        key("left", SIDE_KIND, Default("\"adiabatic\""), "the left side"),
+        key("right", SIDE_KIND, Default("\"adiabatic\""), "the right side"),
+        key("bottom", SIDE_KIND, Default("\"adiabatic\""), "the bottom side"),
+        key("top", SIDE_KIND, Default("\"adiabatic\""), "the top side"),
     ],
     later: &[],
     rules: &[],
@@ -226,9 +232,9 @@ pub(super) const PROBE: Table = Table {
     says: "A point or a straight line whose temperatures and speeds are reported.",
     keys: &[
         key("name", Text, Without("\"probe 1\", \"probe 2\", ..."), "what tables call it"),
-        key("at", Lengths(""), Without("-"), "a point: its x and y"),
-        key("from", Lengths(""), Without("-"), "one end of a line"),
-        key("to", Lengths("another point than from"), Without("-"), "the other end"),
+        key("at", Pair(&LENGTHS, ""), Without("-"), "a point: its x and y"),
+        key("from", Pair(&LENGTHS, ""), Without("-"), "one end of a line"),
+        key("to", Pair(&LENGTHS, "another point than from"), Without("-"), "the other end"),
     ],
     later: &[],
     rules: &[Rule::OneOf(&[&["at"], &["from", "to"]])],
@@ -242,7 +248,7 @@ pub(super) const MESH: Table = Table {
     says: "How fine the section is divided. Lines fall on every edge of blocks and slots.",
     keys: &[
         key("cell", Quantity(Dimension::Length, "more than 0, no larger than the section, at least 1/100000 of the section"), Without("from the section"), "largest cell"),
-        key("cells", Counts(1, 20_000, "from 1 to 20000 along each direction and 20 million in all"), Without("a graded mesh"), "so many equal cells along x and y instead"),
+        key("cells", Pair(&[Count(1, 20_000), Count(1, 20_000)], "from 1 to 20000 along each direction and 20 million in all"), Without("a graded mesh"), "so many equal cells along x and y instead"),
         key("wall", Quantity(Dimension::Length, "more than 0, no larger than cell, at least 1/1000000 of the section"), Without("from the boundary layer"), "first cell at surfaces"),
         key("growth", Number(1.0, 2.0, "more than 1 and at most 2"), Default("1.2"), "largest ratio of neighbouring cells"),
         key("across", Count(1, 64), Default("8"), "least number of cells across every gap, slot and fin"),
