@@ -4,7 +4,8 @@ use std::num::NonZeroUsize;
 use std::path::PathBuf;
 use std::time::Duration;
 
-use clap::{Args, Parser, Subcommand};
+use clap::{Args, CommandFactory, Parser, Subcommand, ValueHint};
+use clap_complete::Shell;
 
 use crate::benchmark;
 use crate::case::units::{self, Dimension};
@@ -68,6 +69,7 @@ pub enum TypedCommand {
     #[command(after_help = "Example:\n  ventrise report cases/wall-cabinet.results")]
     Report {
         /// Results folder
+        #[arg(value_hint = ValueHint::DirPath)]
         folder: PathBuf,
     },
     /// Compute published cavity cases and set them beside their table values
@@ -77,12 +79,36 @@ pub enum TypedCommand {
   ventrise benchmark lid-cavity --uniform          a group of cases, equal cells
   ventrise benchmark annulus --json                for a script")]
     Benchmark(TypedBenchmark),
+    /// Print the JSON Schema of the case file, with which editors complete and check
+    #[command(after_help = "Example:
+  ventrise schema > ventrise.schema.json           then let the first line of a case file be
+                                                   #:schema ventrise.schema.json")]
+    Schema,
+    /// Print what a shell needs to complete commands, options and file names
+    #[command(after_help = "Examples:
+  ventrise completions bash > ~/.local/share/bash-completion/completions/ventrise
+  ventrise completions zsh > ~/.zfunc/_ventrise    a folder of fpath
+  ventrise completions fish > ~/.config/fish/completions/ventrise.fish")]
+    Completions {
+        /// The shell
+        shell: Shell,
+    },
+    /// Print a manual page
+    #[command(after_help = "Examples:
+  ventrise man > ventrise.1 && man ./ventrise.1
+  ventrise man solve > ventrise-solve.1")]
+    Man {
+        /// Command to print the page of [default: the program as a whole]
+        #[arg(value_name = "COMMAND", value_parser = page)]
+        page: Option<String>,
+    },
 }
 
 /// `check` as typed.
 #[derive(Debug, Args)]
 pub struct TypedCheck {
     /// Case file (TOML)
+    #[arg(value_hint = ValueHint::FilePath)]
     pub case: PathBuf,
     /// Where to draw the section to scale [default: NAME.layout.svg beside the case file]
     #[arg(long, value_name = "FILE.svg", value_parser = drawing)]
@@ -118,9 +144,10 @@ pub struct TypedBenchmark {
 #[derive(Debug, Args)]
 pub struct TypedSolve {
     /// Case file (TOML)
+    #[arg(value_hint = ValueHint::FilePath)]
     pub case: PathBuf,
     /// Results folder [default: NAME.results beside the case file]
-    #[arg(long, value_name = "DIR")]
+    #[arg(long, value_name = "DIR", value_hint = ValueHint::DirPath)]
     pub out: Option<PathBuf>,
     /// Threads to work with, at most 256 [default: all the machine offers]
     #[arg(long, value_name = "N", value_parser = clap::value_parser!(u16).range(1..=MOST_THREADS))]
@@ -170,6 +197,12 @@ pub enum Command {
         /// Number of threads.
         threads: usize,
     },
+    /// Print the schema of the case file.
+    Schema,
+    /// Print the completions of a shell.
+    Completions(Shell),
+    /// Print the manual page of a command, or of the program.
+    Man(Option<String>),
 }
 
 /// A solve with its defaults resolved.
@@ -201,6 +234,9 @@ impl Typed {
                 let layout = (!no_layout).then(|| layout.unwrap_or_else(beside));
                 Command::Check { case, layout }
             }
+            TypedCommand::Schema => Command::Schema,
+            TypedCommand::Completions { shell } => Command::Completions(shell),
+            TypedCommand::Man { page } => Command::Man(page),
             TypedCommand::Report { folder } => Command::Report { folder },
             TypedCommand::Solve(typed) => Command::Solve(Solve {
                 out: typed.out.unwrap_or_else(|| typed.case.with_extension("results")),
@@ -229,6 +265,14 @@ impl Typed {
 fn all_unless(asked: Option<u16>) -> usize {
     let offered = || std::thread::available_parallelism().map_or(1, NonZeroUsize::get);
     asked.map_or_else(offered, usize::from)
+}
+
+/// The name of a command.
+fn page(text: &str) -> Result<String, String> {
+    match Typed::command().find_subcommand(text) {
+        Some(_) => Ok(text.into()),
+        None => Err("the name of a command belongs here, such as solve".into()),
+    }
 }
 
 /// A margin: a finite number of kelvin, with or without the unit.
@@ -270,7 +314,6 @@ mod tests {
 
     #[test]
     fn the_command_line_is_consistent() {
-        use clap::CommandFactory;
         Typed::command().debug_assert();
     }
 

@@ -3,6 +3,7 @@
 pub mod benchmark;
 pub mod case;
 pub mod cli;
+pub mod manual;
 pub mod memory;
 pub mod new;
 pub mod output;

@@ -15,6 +15,7 @@ use ventrise_solver::{Control, Problem, Solution, SolveError, StopReason, Verdic
 use crate::benchmark::{self, BenchmarkError};
 use crate::case::{Case, CaseErrors, setup};
 use crate::cli::{Command, Solve, Typed};
+use crate::manual;
 use crate::memory;
 use crate::new::{self, NewError};
 use crate::output::overview::Overview;
@@ -112,6 +113,18 @@ pub fn run(words: impl IntoIterator<Item = OsString>) -> ExitCode {
         Command::Report { folder } => report_again(&folder),
         Command::Solve(solve) => solve_case(&solve),
         Command::Benchmark { request, threads } => compare(&request, threads),
+        Command::Schema => {
+            print(|out| out.write_all(crate::case::schema().as_bytes()));
+            Ok(Ending::Settled)
+        }
+        Command::Completions(shell) => {
+            print(|out| manual::completions(shell, out));
+            Ok(Ending::Settled)
+        }
+        Command::Man(command) => {
+            print(|out| manual::page(command.as_deref(), out));
+            Ok(Ending::Settled)
+        }
     };
     let ending = done.unwrap_or_else(|trouble| {
         let _ = writeln!(io::stderr(), "{trouble}");

@@ -93,11 +93,62 @@ fn help_has_examples_and_exit_codes() {
         ("help-check.txt", &["check", "--help"]),
         ("help-report.txt", &["report", "--help"]),
         ("help-benchmark.txt", &["benchmark", "--help"]),
+        ("help-schema.txt", &["schema", "--help"]),
+        ("help-completions.txt", &["completions", "--help"]),
+        ("help-man.txt", &["man", "--help"]),
     ] {
         let (code, out, err) = run(&place, words);
         assert_eq!((code, err.as_str()), (0, ""));
         same_as_accepted(name, &out);
     }
+}
+
+#[test]
+fn every_command_has_examples_a_manual_page_and_completions() {
+    let place = place(SLAB);
+    let (code, help, _) = run(&place, &["--help"]);
+    assert_eq!(code, 0);
+    let (_, commands) = help.split_once("Commands:\n").unwrap();
+    let (commands, _) = commands.split_once("\n\n").unwrap();
+    let names: Vec<&str> = commands
+        .lines()
+        .filter(|line| line.starts_with("  ") && !line.starts_with("   "))
+        .map(|line| line.split_whitespace().next().unwrap())
+        .filter(|name| *name != "help")
+        .collect();
+    assert!(names.len() >= 8 && names.contains(&"solve"), "{names:?}");
+    let completions = ["bash", "zsh", "fish"].map(|shell| {
+        let (code, out, err) = run(&place, &["completions", shell]);
+        assert_eq!((code, err.as_str()), (0, ""), "{shell}");
+        out
+    });
+    let (code, program, _) = run(&place, &["man"]);
+    assert!(code == 0 && program.starts_with(".ie"), "{program}");
+    for name in names {
+        let (_, help, _) = run(&place, &[name, "--help"]);
+        assert!(help.contains("Example"), "{name}: {help}");
+        let (code, page, err) = run(&place, &["man", name]);
+        assert_eq!((code, err.as_str()), (0, ""), "{name}");
+        assert!(page.contains(&format!(".TH ventrise-{name} 1")), "{page}");
+        assert!(program.contains(&format!("ventrise\\-{name}(1)")), "{name}: {program}");
+        assert!(completions.iter().all(|text| text.contains(name)), "{name}");
+    }
+    let (code, out, err) = run(&place, &["man", "solv"]);
+    assert!(code == 2 && out.is_empty() && err.contains("name of a command"), "{err}");
+}
+
+#[test]
+fn the_schema_is_json_with_every_table() {
+    let place = place(SLAB);
+    let (code, out, err) = run(&place, &["schema"]);
+    assert_eq!((code, err.as_str()), (0, ""));
+    let schema: Value = serde_json::from_str(&out).unwrap();
+    assert_eq!(schema["$schema"], "https://json-schema.org/draft/2020-12/schema");
+    assert_eq!(schema["required"], serde_json::json!(["section", "ambient"]));
+    let width = &schema["properties"]["section"]["properties"]["width"];
+    assert_eq!(width["examples"], serde_json::json!(["120 mm"]));
+    assert_eq!(schema["properties"]["mesh"]["properties"]["growth"]["default"], 1.2);
+    assert_eq!(schema["properties"]["block"]["items"]["additionalProperties"], false);
 }
 
 #[test]
@@ -252,6 +303,35 @@ fn a_closed_pipe_changes_neither_results_nor_exit_code() {
     drop(child.stdout.take());
     assert_eq!(child.wait().unwrap().code(), Some(0));
     assert_eq!(summary(&place, "case.results")["verdict"], "settled");
+}
+
+#[test]
+fn the_hand_estimate_stands_beside_the_hottest_part() {
+    let ring = place(RING);
+    let (code, out, err) = run(&ring, &["solve", "case.toml"]);
+    assert_eq!(code, 0, "{out}{err}");
+    // V^3 = 2 g beta H Q/(rho cp (C + C)), C = (1 + K)/A^2 of a ring of 60 to 100 mm; H from the
+    // middle of the block, 100 mm, to the roof.
+    let area = std::f64::consts::PI * (0.1 * 0.1 - 0.06 * 0.06);
+    let losses = 2.0 * 2.5 / (area * area);
+    let flow = (2.0 * 9.80665 * 3e-3 * 0.1 * 1.0 / (1.2 * 1000.0 * losses)).cbrt();
+    let s = summary(&ring, "case.results");
+    let found = s["by_hand"]["flow_m3_s"].as_f64().unwrap();
+    assert!((found / flow - 1.0).abs() < 1e-12, "{found} {flow}");
+    let rise = s["parts"][0]["max_c"].as_f64().unwrap() - 40.0;
+    let line = format!(
+        "By hand: surfaces about {:.0} K above the air, which leaves {:.1} K above ambient or more \
+         ({:.2} m3/h at most). Computed: \"radio\" {rise:.1} K above ambient.",
+        s["by_hand"]["surface_rise_k"].as_f64().unwrap(),
+        1.0 / (1200.0 * flow),
+        3600.0 * flow
+    );
+    assert!(out.contains(&line), "{line}\n{out}");
+    // Without air there is nothing to estimate.
+    let slab = place(SLAB);
+    let (_, out, _) = run(&slab, &["solve", "case.toml"]);
+    assert!(!out.contains("By hand"), "{out}");
+    assert!(summary(&slab, "case.results")["by_hand"].is_null());
 }
 
 #[test]

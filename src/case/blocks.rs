@@ -3,16 +3,9 @@
 use std::ops::Range;
 
 use super::error::{CaseError, Cause};
-use super::parse::{Keys, Located, Reader, Scope};
+use super::parse::{Located, Reader, Scope};
 use super::units::Dimension;
-
-const BLOCK: Keys = Keys {
-    what: "a block",
-    known: &["name", "part", "material", "x", "y", "heat", "limit", "emissivity", "repeat"],
-    later: &[],
-};
-
-const REPEAT: Keys = Keys { what: "repeat", known: &["count", "step-x", "step-y"], later: &[] };
+use super::vocabulary::{BLOCK, REPEAT};
 
 /// Most copies of one pattern.
 const COPIES: usize = 1000;

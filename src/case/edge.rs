@@ -8,16 +8,9 @@ use ventrise_solver::SideCondition;
 
 use super::error::{CaseError, Cause};
 use super::model::{Ambient, Probe, ProbeShape, Section, Slot, side_name};
-use super::parse::{Keys, Located, Reader, Scope};
+use super::parse::{Located, Reader, Scope};
 use super::units::Dimension;
-
-const SLOT: Keys = Keys {
-    what: "a slot",
-    known: &["name", "side", "from", "to", "loss"],
-    later: &["fan", "free-area", "kind"],
-};
-
-const SIDE_NAMES: [&str; 4] = ["left", "right", "bottom", "top"];
+use super::vocabulary::{PROBE, SIDE, SIDE_NAMES, SIDE_WORDS, SIDES, SLOT};
 
 /// A `[[slot]]` table as read.
 #[derive(Debug)]
@@ -101,11 +94,6 @@ pub(super) struct Sides {
     pub emissivities: [Option<f64>; 4],
     pub spans: [Option<Range<usize>>; 4],
 }
-
-const SIDES: Keys = Keys { what: "[sides]", known: &SIDE_NAMES, later: &[] };
-const SIDE: Keys =
-    Keys { what: "a side", known: &["temperature", "flux", "film", "emissivity"], later: &[] };
-const SIDE_WORDS: [&str; 3] = ["adiabatic", "symmetry", "open"];
 
 /// Reads `[sides]`.
 pub(super) fn read_sides(
@@ -209,7 +197,7 @@ fn read_side(
     let inner = Scope::new(table, value.span(), &format!("sides, {key}"));
     reader.check_keys(&inner, &SIDE);
     let emissivity = reader.emissivity(&inner);
-    let conditions = || SIDE.known.iter().copied().filter(|k| *k != "emissivity");
+    let conditions = || SIDE.names().filter(|k| *k != "emissivity");
     let given: Vec<&str> = conditions().filter(|k| inner.has(k)).collect();
     if given.is_empty() && inner.has("emissivity") {
         return Some((SideCondition::Adiabatic, emissivity));
@@ -245,8 +233,6 @@ fn read_side(
     };
     Some((condition?, emissivity))
 }
-
-const PROBE: Keys = Keys { what: "a probe", known: &["name", "at", "from", "to"], later: &[] };
 
 /// A `[[probe]]` table as read.
 #[derive(Debug)]

@@ -5,10 +5,9 @@ use ventrise_mesh::Rectangle;
 use super::check::Placed;
 use super::error::{CaseError, Cause};
 use super::model::{Joint, Part};
-use super::parse::{Keys, Reader, Scope};
+use super::parse::{Reader, Scope};
 use super::units::Dimension;
-
-const JOINT: Keys = Keys { what: "a joint", known: &["between", "resistance"], later: &[] };
+use super::vocabulary::JOINT;
 
 /// Overlap of two edges that counts as touching [m].
 const TOUCH: f64 = 1e-9;

@@ -10,17 +10,22 @@ mod edge;
 mod error;
 mod estimate;
 mod joints;
+pub mod judgement;
+mod keys;
 pub mod materials;
 mod meshing;
 mod model;
 mod overlap;
 mod parse;
 mod read;
+mod reference;
 mod resolved;
+mod schema;
 pub mod setup;
 mod surfaces;
 mod tables;
 pub mod units;
+mod vocabulary;
 
 pub use error::{CaseError, CaseErrors, Cause};
 pub use estimate::Estimate;
@@ -28,3 +33,5 @@ pub use model::{
     AirChoice, Ambient, Block, Case, Material, MeshChoice, Part, Probe, ProbeShape, Section, Slot,
     SolveChoice, side_name,
 };
+pub use reference::reference;
+pub use schema::schema;

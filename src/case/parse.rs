@@ -6,6 +6,7 @@ use toml::Spanned;
 use toml::de::{DeTable, DeValue};
 
 use super::error::{CaseError, Cause, nearest, one_of};
+use super::keys::Table;
 use super::units::{self, Dimension, UnitError};
 
 /// Highest temperature that a case may name, 3000 °C [K]: a slip of the unit, or no housing.
@@ -56,14 +57,6 @@ impl<'d> Scope<'d> {
     }
 }
 
-/// Keys that a table may have now and keys that it will have in later versions.
-pub(super) struct Keys {
-    /// What the table is called in hints: "a block".
-    pub what: &'static str,
-    pub known: &'static [&'static str],
-    pub later: &'static [&'static str],
-}
-
 /// Collects mistakes and warnings while a text is read.
 #[derive(Debug)]
 pub(super) struct Reader<'t> {
@@ -98,10 +91,10 @@ impl<'t> Reader<'t> {
     }
 
     /// Reports keys that do not exist, or not yet.
-    pub fn check_keys(&mut self, scope: &Scope, keys: &Keys) {
+    pub fn check_keys(&mut self, scope: &Scope, table: &Table) {
         for (key, value) in scope.table.iter() {
             let name: &str = key.get_ref();
-            if keys.known.contains(&name) {
+            if table.key(name).is_some() {
                 continue;
             }
             let typed = self.typed(&value.span());
@@ -109,7 +102,7 @@ impl<'t> Reader<'t> {
                 DeValue::Table(_) | DeValue::Array(_) => name.to_string(),
                 _ => format!("{name} = {typed}"),
             };
-            let error = if keys.later.contains(&name) {
+            let error = if table.later.contains(&name) {
                 CaseError::new(
                     Cause::NotYet,
                     &scope.place,
@@ -120,11 +113,13 @@ impl<'t> Reader<'t> {
                 let error = CaseError::new(
                     Cause::UnknownKey,
                     &scope.place,
-                    format!("{shown}: {} has no key {name}", keys.what),
+                    format!("{shown}: {} has no key {name}", table.what),
                 );
-                error.hint(match nearest(name, keys.known.iter().copied()) {
+                error.hint(match nearest(name, table.names()) {
                     Some(near) => format!("the nearest key is {near}"),
-                    None => format!("its keys are {}", keys.known.join(", ")),
+                    None => {
+                        format!("its keys are {}", table.names().collect::<Vec<_>>().join(", "))
+                    }
                 })
             };
             self.report(error.at(key.span()));

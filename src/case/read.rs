@@ -11,23 +11,15 @@ use super::edge::{read_probes, read_sides, read_slots};
 use super::error::{CaseError, CaseErrors, Cause};
 use super::joints::read_joints;
 use super::model::{Case, Origin};
-use super::parse::{Keys, Reader, Scope};
+use super::parse::{Reader, Scope};
 use super::tables::{
     mesh_keys, read_air, read_ambient, read_materials, read_mesh, read_section, read_solve,
 };
+use super::vocabulary::TOP;
 use super::{check, doubts};
 
 /// Most bytes of a case file: ten times what the largest number of blocks takes.
 const LARGEST_FILE: usize = 10_000_000;
-
-const TOP: Keys = Keys {
-    what: "the case file",
-    known: &[
-        "title", "section", "ambient", "air", "material", "block", "joint", "slot", "sides",
-        "probe", "mesh", "solve",
-    ],
-    later: &["fan"],
-};
 
 impl Case {
     /// Reads and checks a case file.

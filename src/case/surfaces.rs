@@ -13,6 +13,8 @@ const MOST_LOOKS: usize = 8000;
 /// A piece of a heated block's surface.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub(super) struct Surface {
+    /// Index into [`Case::blocks`].
+    pub block: usize,
     /// Its area [m²].
     pub area: f64,
     /// Height of the block [m].
@@ -45,7 +47,7 @@ pub(super) fn heated_surfaces(case: &Case) -> Vec<Surface> {
     let count = heated.iter().filter(|h| **h).count().max(1);
     let heights = (MOST_LOOKS / count).clamp(1, HEIGHTS);
     let mut surfaces = Vec::new();
-    for (block, _) in blocks.iter().zip(&heated).filter(|(_, heated)| **heated) {
+    for (index, block) in blocks.iter().enumerate().filter(|(n, _)| heated[*n]) {
         let ([x0, x1], [y0, y1]) = (block.rectangle.x, block.rectangle.y);
         let height = y1 - y0;
         for k in 0..heights {
@@ -53,13 +55,13 @@ pub(super) fn heated_surfaces(case: &Case) -> Vec<Surface> {
             let mut face = |x: f64, leftwards: bool| {
                 let area = depth(x) * height / heights as f64;
                 let gap = gap(case, &heated, x, y, leftwards);
-                surfaces.push(Surface { area, height, gap });
+                surfaces.push(Surface { block: index, area, height, gap });
             };
             face(x0, true);
             face(x1, false);
         }
         let ends = 2.0 * depth(0.5 * (x0 + x1)) * (x1 - x0);
-        surfaces.push(Surface { area: ends, height, gap: None });
+        surfaces.push(Surface { block: index, area: ends, height, gap: None });
     }
     surfaces
 }

@@ -7,14 +7,9 @@ use ventrise_solver::{Air, standard_pressure};
 
 use super::error::{CaseError, Cause};
 use super::model::{AirChoice, Ambient, Material, MeshChoice, Section, SolveChoice};
-use super::parse::{Keys, Located, Reader, Scope};
+use super::parse::{Located, Reader, Scope};
 use super::units::Dimension;
-
-const SECTION: Keys = Keys {
-    what: "[section]",
-    known: &["geometry", "width", "height", "depth", "tilt"],
-    later: &[],
-};
+use super::vocabulary::{AIR, AMBIENT, MATERIAL, MESH, SECTION, SOLVE};
 
 /// Extent of a section along any direction [m]; anything beyond is a slip of the unit.
 const EXTENT: (RangeInclusive<f64>, &str) = (1e-6..=100.0, "from 0.001 mm to 100 m");
@@ -65,9 +60,6 @@ pub(super) fn read_section(reader: &mut Reader, top: &Scope) -> Option<Section> 
     };
     Some(Section { geometry, width: width?, height: height? })
 }
-
-const AMBIENT: Keys =
-    Keys { what: "[ambient]", known: &["temperature", "altitude", "pressure"], later: &[] };
 
 /// Reads `[ambient]`.
 pub(super) fn read_ambient(reader: &mut Reader, top: &Scope) -> Option<Ambient> {
@@ -134,20 +126,6 @@ const AIR_NUMBERS: [AirNumber; 5] = [
     ("expansion", Dimension::Expansion, "0.0032 1/K", (0.0..=1.0, "from 0 1/K to 1 1/K")),
 ];
 
-const AIR: Keys = Keys {
-    what: "[air]",
-    known: &[
-        "properties",
-        "density",
-        "viscosity",
-        "conductivity",
-        "specific-heat",
-        "expansion",
-        "reference-temperature",
-    ],
-    later: &[],
-};
-
 /// Reads `[air]`.
 pub(super) fn read_air(
     reader: &mut Reader,
@@ -165,7 +143,7 @@ pub(super) fn read_air(
         "film"
     };
     if properties == "film" {
-        let given = AIR.known.iter().filter(|k| **k != "properties" && scope.has(k));
+        let given = AIR.names().filter(|k| *k != "properties" && scope.has(k));
         for key in given {
             let typed = reader.typed(&scope.span_of(key));
             let message = format!(
@@ -219,20 +197,6 @@ pub(super) fn read_air(
     let reference_temperature = reference.map_or(ambient, |r| r.value);
     Some(AirChoice::Given { air, reference_temperature })
 }
-
-const MATERIAL: Keys = Keys {
-    what: "a material",
-    known: &[
-        "name",
-        "conductivity",
-        "conductivity-x",
-        "conductivity-y",
-        "density",
-        "specific-heat",
-        "emissivity",
-    ],
-    later: &[],
-};
 
 /// Ranges of solids, from an evacuated panel to a heat pipe taken as a solid.
 const CONDUCTIVITY: (RangeInclusive<f64>, &str) = (1e-4..=1e6, "from 1e-4 W/(m K) to 1e6 W/(m K)");
@@ -312,9 +276,6 @@ pub(super) fn read_materials(reader: &mut Reader, top: &Scope) -> Vec<Located<Ma
     materials
 }
 
-const MESH: Keys =
-    Keys { what: "[mesh]", known: &["cell", "cells", "wall", "growth", "across"], later: &[] };
-
 /// Reads `[mesh]`.
 pub(super) fn read_mesh(
     reader: &mut Reader,
@@ -379,11 +340,9 @@ pub(super) fn read_mesh(
 /// The keys of `[mesh]` that are given, and where their values are written.
 pub(super) fn mesh_keys(top: &Scope) -> Vec<(&'static str, Range<usize>)> {
     let Some(scope) = top.table("mesh") else { return Vec::new() };
-    let given = MESH.known.iter().filter(|key| scope.has(key));
-    given.map(|key| (*key, scope.span_of(key))).collect()
+    let given = MESH.names().filter(|key| scope.has(key));
+    given.map(|key| (key, scope.span_of(key))).collect()
 }
-
-const SOLVE: Keys = Keys { what: "[solve]", known: &["tolerance", "max-iterations"], later: &[] };
 
 /// Reads `[solve]`.
 pub(super) fn read_solve(reader: &mut Reader, top: &Scope) -> Option<SolveChoice> {

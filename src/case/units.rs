@@ -114,6 +114,11 @@ impl Dimension {
             .filter_map(|u| u.spellings.first())
             .copied()
     }
+
+    /// Every spelling of its units, as they are after signs for the same thing have been made one.
+    pub fn spellings(self) -> impl Iterator<Item = &'static str> {
+        UNITS.iter().filter(move |u| u.dimension == self).flat_map(|u| u.spellings).copied()
+    }
 }
 
 /// A unit and its spellings (after [`normalised`]).

@@ -2,7 +2,8 @@
 
 use std::io;
 
-pub mod csv;
+pub mod by_hand;
+mod csv;
 pub mod folder;
 pub mod overview;
 pub mod pictures;

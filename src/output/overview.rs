@@ -6,13 +6,15 @@ use ventrise_mesh::{Crossed, Crossing, GapEnd, Generated, Geometry, MeshError, S
 use ventrise_solver::SideCondition;
 
 use crate::case::setup::layout;
-use crate::case::{AirChoice, Case, Estimate, ProbeShape};
+use crate::case::{AirChoice, Case, Estimate, ProbeShape, judgement};
 use crate::memory;
 
 use super::readings::celsius;
 use super::side_name;
 use super::words::{counted, fixed, grouped, mm, shortened, sized};
 
+/// Seconds in an hour: flows are shown per hour.
+const HOUR: f64 = 3600.0;
 /// Most columns of a name.
 const NAME: usize = 40;
 /// Most blocks and crossings listed one by one.
@@ -247,11 +249,38 @@ impl<'a> Overview<'a> {
             fixed(estimate.rise, 0),
             mm((estimate.layer * 1e4).round() / 1e4),
             estimate.rayleigh
-        )
+        )?;
+        if let Some(draught) = &estimate.draught {
+            writeln!(
+                out,
+                "  draught at most {} m3/h, which leaves {} K above ambient or more",
+                sized(HOUR * draught.flow, 2, 0.0),
+                fixed(draught.rise, 1)
+            )?;
+        }
+        if let Some(gap) = judgement::plate_gap(self.case, &estimate) {
+            writeln!(
+                out,
+                "  heated faces {} mm apart at the closest; at {} mm height about {} mm serve best",
+                mm(gap.width),
+                mm(gap.height),
+                fixed(1e3 * gap.best, 1)
+            )?;
+        }
+        if let Some(share) = judgement::radiated_share(self.case, &estimate) {
+            writeln!(
+                out,
+                "  by radiation up to {} % of the heat{}",
+                fixed(100.0 * share, 0),
+                if self.case.radiates() { "" } else { ", which is not modelled" }
+            )?;
+        }
+        Ok(())
     }
 
     fn doubts(&self, out: &mut dyn Write) -> io::Result<()> {
         let mut warnings = self.case.warnings();
+        warnings.extend(judgement::questions(self.case, &self.generated.mesh));
         let needed = memory::of_solve(self.generated.mesh.cell_count());
         if let Some(available) = memory::available().filter(|available| needed > *available) {
             warnings.push(format!(

@@ -35,6 +35,13 @@ pub fn report(
     heat(out, summary)?;
     balances(out, summary, readings)?;
     writeln!(out, "Verdict: {}", verdict(summary))?;
+    let warmest = summary.parts.iter().filter_map(|p| Some((p, p.max_c?)));
+    let warmest = warmest.max_by(|a, b| a.1.total_cmp(&b.1));
+    if let (Some(by_hand), Some((part, max))) =
+        (summary.by_hand.filter(|_| summary.solved), warmest)
+    {
+        writeln!(out, "By hand: {}", by_hand.beside(&part.name, max - readings.ambient))?;
+    }
     if !summary.warnings.is_empty() {
         writeln!(out, "\nWarnings")?;
         for warning in &summary.warnings {

@@ -9,6 +9,7 @@ use ventrise_solver::{SOLVED, Sample, Solution, StopReason, Verdict, contacts};
 
 use crate::case::{Case, ProbeShape};
 
+use super::by_hand::ByHand;
 use super::readings::{Interruption, Readings, Run};
 use super::side_name;
 
@@ -75,6 +76,8 @@ pub struct Summary {
     pub blocks: Vec<Block>,
     /// Names of materials, by the index used in the field files.
     pub materials: Vec<String>,
+    /// What a hand estimate gives for the same case, where there is heat in air.
+    pub by_hand: Option<ByHand>,
     /// Sentences about what makes the numbers doubtful.
     pub warnings: Vec<String>,
 }
@@ -371,6 +374,7 @@ impl Summary {
             probes: probes(case, readings),
             blocks: blocks(case, readings),
             materials: case.materials().iter().map(|m| m.name.clone()).collect(),
+            by_hand: numbers.max_air_rise.and_then(|_| ByHand::of(case)),
             warnings: warnings(run, readings),
         }
     }
