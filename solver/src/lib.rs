@@ -15,10 +15,12 @@ mod equations;
 mod error;
 mod fas;
 mod film;
+mod following;
 mod level;
 mod linear;
 mod newton;
 mod numbers;
+mod outer;
 mod par;
 mod pieces;
 mod probe;
@@ -32,6 +34,7 @@ mod simplec;
 mod solution;
 mod solve;
 mod stability;
+mod still_air;
 mod state;
 mod sway;
 mod transfer;
@@ -39,13 +42,14 @@ mod transient;
 
 pub use air::{Air, AirModel, standard_pressure};
 pub use balance::{Balance, OpeningFlow, REST_SPEED, SideFlow, balance, side_flows, slot_flows};
-pub use boundary::{SideCondition, Slot};
+pub use boundary::{OuterFilm, Outside, SideCondition, Slot};
 pub use contacts::{Contact, contacts};
 pub use error::{ProblemError, SolveError};
 pub use numbers::{
     Numbers, PartTemperature, block_temperatures, cell_velocities, heat_fluxes, numbers,
     part_temperatures,
 };
+pub use outer::OuterFlow;
 pub use pieces::Pieces;
 pub use probe::{Sample, Sampler};
 pub use problem::{Block, Description, Joint, Problem, Solid, Sources};
@@ -58,3 +62,4 @@ pub use settings::{Convection, DRIFT_BOUND, HEAT_BOUND, MASS_BOUND, SOLVED, Sett
 pub use solution::{Control, Progress, Residuals, Solution, StopReason, Verdict};
 pub use solve::solve;
 pub use state::State;
+pub use still_air::{Facing, still_air_film};

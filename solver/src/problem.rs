@@ -3,7 +3,7 @@
 use ventrise_mesh::{AIR, Coarsening, Geometry, Mesh, Side};
 
 use crate::radiant::RadiantMap;
-use crate::{AirModel, PATCH_COUNT, ProblemError, Radiation, SideCondition, Slot, Surfaces};
+use crate::{AirModel, OuterFilm, PATCH_COUNT, ProblemError, Radiation, SideCondition, Slot, Surfaces};
 
 /// A solid material.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -249,12 +249,26 @@ fn check(d: &Description) -> Result<(), ProblemError> {
                 number("film coefficient", coefficient, coefficient > 0.0, "positive")?;
                 number("temperature", temperature, temperature > 0.0, "positive")?;
             }
+            SideCondition::Outside(o) => {
+                if let OuterFilm::Given(h) = o.film {
+                    number("film coefficient", h, h > 0.0, "positive")?;
+                }
+                number("temperature", o.air, o.air > 0.0, "positive")?;
+                number("temperature", o.surroundings, o.surroundings > 0.0, "positive")?;
+                let good = (0.0..=1.0).contains(&o.emissivity);
+                number("emissivity", o.emissivity, good, "from 0 to 1")?;
+                number("sun", o.sun, o.sun >= 0.0, "zero or more")?;
+                number("wall resistance", o.wall, o.wall >= 0.0, "zero or more")?;
+            }
             SideCondition::Sliding(u) => number("speed", u, true, "finite")?,
             _ => {}
         }
         way_out |= matches!(
             side,
-            SideCondition::Open | SideCondition::Temperature(_) | SideCondition::Film { .. }
+            SideCondition::Open
+                | SideCondition::Temperature(_)
+                | SideCondition::Film { .. }
+                | SideCondition::Outside(_)
         );
     }
     if way_out { Ok(()) } else { Err(ProblemError::NoWayOut) }

@@ -4,6 +4,7 @@ use crate::acceleration::Acceleration;
 use crate::balance::balance;
 use crate::fas::{COARSEST_CELLS, Stack};
 use crate::film::film_rise;
+use crate::following::Following;
 use crate::numbers::part_temperatures;
 use crate::residual::Scales;
 use crate::settings::{DRIFT_BOUND, HEAT_BOUND, MASS_BOUND, SOLVED};
@@ -31,6 +32,9 @@ const FILM_BOUND: f64 = 0.02;
 /// after which it is taken again.
 const FIRST_FILM_CHECK: f64 = 3e-2;
 const FILM_CHECKS: f64 = 0.03;
+/// Renewals on the coarsest mesh at the most: of the film temperature, of more that follows.
+const RENEWALS: usize = 8;
+const FOLLOWING_RENEWALS: usize = 40;
 /// Residual over the tolerance from which on the mass balance is restored after every cycle.
 const NEARLY: f64 = 30.0;
 /// Residual with which a stalled iteration is taken for a flow without a steady state, and the
@@ -86,6 +90,8 @@ struct Run<'a> {
     history: Vec<Progress>,
     notes: Vec<String>,
     film: f64,
+    /// Whether more than the air's constants follows the result.
+    follows: bool,
 }
 
 /// How the cycles on one mesh ended.
@@ -110,7 +116,9 @@ impl<'a> Run<'a> {
             AirModel::Film { pressure } => Air::dry(d.ambient, pressure),
         };
         let stack = Stack::new(problem, &air, settings.convection, coarsest_cells);
-        Run { problem, settings, watch, stack, history: Vec::new(), notes: Vec::new(), film: 0.0 }
+        let follows = Following::any(problem);
+        let (history, notes) = (Vec::new(), Vec::new());
+        Run { problem, settings, watch, stack, history, notes, film: 0.0, follows }
     }
 
     /// Ends the cycles on a finer mesh than before, where there is one; all else begins anew.
@@ -141,7 +149,7 @@ impl<'a> Run<'a> {
             }
             // What a coarser mesh could not solve is no start for a finer one.
             from_rest = end > NESTED_TARGET;
-            self.renew_air(l);
+            self.renew(l);
         }
         if !from_rest {
             self.stack.start_from_coarser(bottom);
@@ -178,7 +186,7 @@ impl<'a> Run<'a> {
                 Cycles::Limit if l == 0 => return Ok(StopReason::IterationLimit),
                 _ => {}
             }
-            self.renew_air(l);
+            self.renew(l);
         }
         Ok(StopReason::Converged)
     }
@@ -191,7 +199,7 @@ impl<'a> Run<'a> {
             let ended = self.start_bottom(0, false)?;
             return Ok(ended.unwrap_or(StopReason::Converged));
         }
-        self.renew_air(0);
+        self.renew(0);
         self.finest()
     }
 
@@ -209,7 +217,7 @@ impl<'a> Run<'a> {
         }
     }
 
-    /// Newton's method on the coarsest mesh of the cycles, with the film temperature.
+    /// Newton's method on the coarsest mesh of the cycles, with what follows the result.
     fn start_bottom(
         &mut self,
         l: usize,
@@ -220,7 +228,8 @@ impl<'a> Run<'a> {
         let mut fresh = from_rest;
         let mut end = 0.0;
         let mut converged = false;
-        for _ in 0..8 {
+        let renewals = if self.follows { FOLLOWING_RENEWALS } else { RENEWALS };
+        for _ in 0..renewals {
             let mut stop;
             (end, stop) = self.newton(l, target, fresh, 1.0)?;
             if !fresh && end > NESTED_TARGET && stop.is_none() {
@@ -236,7 +245,7 @@ impl<'a> Run<'a> {
             }
             fresh = false;
             converged = end <= self.settings.tolerance.max(target);
-            if !self.renew_air(l) {
+            if !self.renew(l) {
                 break;
             }
             converged = false;
@@ -358,15 +367,17 @@ impl<'a> Run<'a> {
             let done = if finest { self.within_bounds(&row) } else { largest < NESTED_TARGET };
             let control = (self.watch)(&row);
             self.history.push(row);
-            if finest && !done && largest < film_check {
+            // What follows the result may still be behind it when the residuals are done.
+            let behind = self.follows && largest <= self.settings.tolerance;
+            if finest && !done && (largest < film_check || behind) {
                 film_check = FILM_CHECKS * largest;
-                if self.renew_air(l) {
+                if self.renew(l) {
                     acceleration = Acceleration::new();
                     continue;
                 }
             }
             if done {
-                if !(finest && self.renew_air(l)) {
+                if !(finest && self.renew(l)) {
                     return Ok(Cycles::Reached);
                 }
                 acceleration = Acceleration::new();
@@ -428,20 +439,38 @@ impl<'a> Run<'a> {
         (row, scales)
     }
 
-    /// Takes the air's constants at the film temperature of level `l`'s state; true when they
-    /// changed.
-    fn renew_air(&mut self, l: usize) -> bool {
+    /// Takes the air's constants at the film temperature of level `l`'s state, and what else
+    /// follows it; true when they changed.
+    fn renew(&mut self, l: usize) -> bool {
+        let film = self.moved_film(l);
+        if film.is_none() && !(self.follows && self.following_moved(l)) {
+            return false;
+        }
+        let air = film.unwrap_or(self.stack.level(l).air);
+        self.stack.set_constants(self.problem, &air, l);
+        self.stack.pose(l);
+        true
+    }
+
+    /// The air at the film temperature of level `l`'s state, when that has moved.
+    fn moved_film(&mut self, l: usize) -> Option<Air> {
         let d = self.problem.description();
-        let AirModel::Film { pressure } = d.air else { return false };
+        let AirModel::Film { pressure } = d.air else { return None };
         let problem = self.stack.problem(l).unwrap_or(self.problem);
         let film = film_rise(problem, &self.stack.level(l).air, self.stack.state(l));
         if !film.is_finite() || (film - self.film).abs() <= FILM_BOUND {
-            return false;
+            return None;
         }
         self.film = film;
-        self.stack.set_air(self.problem, &Air::dry(d.ambient + film, pressure));
-        self.stack.pose(l);
-        true
+        Some(Air::dry(d.ambient + film, pressure))
+    }
+
+    /// Whether what follows level `l`'s state is no longer what its equations hold.
+    fn following_moved(&self, l: usize) -> bool {
+        let problem = self.stack.problem(l).unwrap_or(self.problem);
+        let (level, state) = (self.stack.level(l), self.stack.state(l));
+        let now = Following::at(problem, &level.air, state);
+        !now.stands(&level.following, problem, state)
     }
 
     /// Carries an unfinished state of a coarser level up to the finest.
