@@ -153,7 +153,8 @@ fn sides_with(
         } else {
             OpeningFlow::default()
         };
-        let conduction = (0..slots.len()).map(|n| side_face_heat(problem, air, outer, state, side, n));
+        let conduction =
+            (0..slots.len()).map(|n| side_face_heat(problem, air, outer, state, side, n));
         let conduction = conduction.sum::<f64>() + radiant.sides[side.index()];
         SideFlow { conduction, open, outer: outer.flow(problem, side) }
     })

@@ -283,13 +283,7 @@ struct Face {
 }
 
 impl Face {
-    fn new(
-        problem: &Problem,
-        air: &Air,
-        side: Side,
-        n: usize,
-        outside: &Outside,
-    ) -> Option<Face> {
+    fn new(problem: &Problem, air: &Air, side: Side, n: usize, outside: &Outside) -> Option<Face> {
         if problem.mesh().slots(side)[n].is_some() {
             return None;
         }
@@ -301,10 +295,8 @@ impl Face {
     /// T_s [K] for a film and a temperature `inside` [K], by Newton's method.
     fn surface(&self, outside: &Outside, film: f64, inside: f64, start: f64) -> f64 {
         let (g, radiant) = (1.0 / self.resistance, outside.emissivity * STEFAN_BOLTZMANN);
-        let brought = g * inside
-            + film * outside.air
-            + radiant * outside.surroundings.powi(4)
-            + outside.sun;
+        let brought =
+            g * inside + film * outside.air + radiant * outside.surroundings.powi(4) + outside.sun;
         let mut surface = start;
         for _ in 0..STEPS {
             let excess = (g + film) * surface + radiant * surface.powi(4) - brought;

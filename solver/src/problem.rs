@@ -3,7 +3,9 @@
 use ventrise_mesh::{AIR, Coarsening, Geometry, Mesh, Side};
 
 use crate::radiant::RadiantMap;
-use crate::{AirModel, OuterFilm, PATCH_COUNT, ProblemError, Radiation, SideCondition, Slot, Surfaces};
+use crate::{
+    AirModel, OuterFilm, PATCH_COUNT, ProblemError, Radiation, SideCondition, Slot, Surfaces,
+};
 
 /// A solid material.
 #[derive(Debug, Clone, Copy, PartialEq)]

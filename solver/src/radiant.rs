@@ -176,11 +176,11 @@ impl Radiant {
                             SideCondition::Film { coefficient, temperature } => {
                                 (coefficient * f.area, temperature)
                             }
-                            SideCondition::Outside(_) => outer
-                                .face(side, n)
-                                .map_or((0.0, d.ambient), |o| {
+                            SideCondition::Outside(_) => {
+                                outer.face(side, n).map_or((0.0, d.ambient), |o| {
                                     (o.behind * f.area, d.ambient + o.exchange.rise)
-                                }),
+                                })
+                            }
                             _ => (0.0, d.ambient),
                         };
                         (g, None, Some(side), t - d.ambient)

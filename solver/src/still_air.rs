@@ -80,8 +80,7 @@ pub(crate) fn plate_length(mesh: &Mesh, sides: &[SideCondition; 4], side: Side) 
         1 => 2.0 * extent,
         _ => f64::INFINITY,
     };
-    let [width, height] =
-        [mesh.x(), mesh.y()].map(|lines| lines[lines.len() - 1] - lines[0]);
+    let [width, height] = [mesh.x(), mesh.y()].map(|lines| lines[lines.len() - 1] - lines[0]);
     match (Facing::of(side), mesh.geometry()) {
         // Endless up and down: its own section is the best there is.
         (Facing::Sideways, _) => match mirrors([Side::Bottom, Side::Top]) {

@@ -409,7 +409,9 @@ pub(super) fn way_out(
     let mut way_out = !slots.is_empty();
     for side in Side::ALL {
         match sides.conditions[side.index()] {
-            SideCondition::Temperature(_) | SideCondition::Film { .. } => way_out = true,
+            SideCondition::Temperature(_)
+            | SideCondition::Film { .. }
+            | SideCondition::Outside(_) => way_out = true,
             SideCondition::Open => {
                 let length = side_length(section, side);
                 let covered: f64 = blocks

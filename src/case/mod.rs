@@ -13,6 +13,7 @@ mod joints;
 pub mod materials;
 mod meshing;
 mod model;
+mod outside;
 mod overlap;
 mod parse;
 mod read;
@@ -25,6 +26,6 @@ pub mod units;
 pub use error::{CaseError, CaseErrors, Cause};
 pub use estimate::Estimate;
 pub use model::{
-    AirChoice, Ambient, Block, Case, Material, MeshChoice, Part, Probe, ProbeShape, Section, Slot,
-    SolveChoice, side_name,
+    AirChoice, Ambient, Block, Case, Material, MeshChoice, OuterSide, Part, Probe, ProbeShape,
+    Section, Slot, SolveChoice, Wall, side_name,
 };

@@ -101,6 +101,26 @@ pub struct Part {
     pub heat: f64,
 }
 
+/// What the case says about the outer face of a side, beside what its condition holds.
+#[derive(Debug, Clone, PartialEq)]
+pub struct OuterSide {
+    /// The wall between the section's edge and the outer face.
+    pub wall: Option<Wall>,
+    /// Sun on it [W/m²] and the share absorbed.
+    pub sun: Option<(f64, f64)>,
+}
+
+/// A wall too thin to be drawn as blocks: a resistance across.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Wall {
+    /// Name of its material.
+    pub material: String,
+    /// Thickness [m].
+    pub thickness: f64,
+    /// Conductivity along x and y [W/(m·K)].
+    pub conductivity: [f64; 2],
+}
+
 /// An opening in the section's edge.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Slot {
@@ -188,6 +208,7 @@ pub struct Case {
     pub(super) slots: Vec<Slot>,
     pub(super) sides: [SideCondition; 4],
     pub(super) side_emissivities: [Option<f64>; 4],
+    pub(super) outer_sides: [Option<OuterSide>; 4],
     pub(super) probes: Vec<Probe>,
     pub(super) mesh: MeshChoice,
     pub(super) solve: SolveChoice,
@@ -259,6 +280,11 @@ impl Case {
     /// Emissivities of the sides' inner faces as the case writes them, by [`Side::index`].
     pub fn side_emissivities(&self) -> &[Option<f64>; 4] {
         &self.side_emissivities
+    }
+
+    /// What the case says about the sides' outer faces, by [`Side::index`].
+    pub fn outer_sides(&self) -> &[Option<OuterSide>; 4] {
+        &self.outer_sides
     }
 
     /// Whether radiation is modelled: the case writes an emissivity somewhere.

@@ -260,9 +260,14 @@ impl<'t> Reader<'t> {
 
     /// An emissivity from 0 to 1.
     pub fn emissivity(&mut self, scope: &Scope) -> Option<f64> {
-        let value = self.number(scope, "emissivity")?;
+        self.share(scope, "emissivity")
+    }
+
+    /// A plain number from 0 to 1.
+    pub fn share(&mut self, scope: &Scope, key: &str) -> Option<f64> {
+        let value = self.number(scope, key)?;
         let good = (0.0..=1.0).contains(&value.value);
-        self.within(scope, "emissivity", &value, good, "from 0 to 1").then_some(value.value)
+        self.within(scope, key, &value, good, "from 0 to 1").then_some(value.value)
     }
 
     /// A whole number in a range.

@@ -3,7 +3,7 @@
 use std::fmt::Write as _;
 
 use ventrise_mesh::{Geometry, Side, Spacing};
-use ventrise_solver::SideCondition;
+use ventrise_solver::{OuterFilm, Outside, SideCondition};
 
 use super::model::{AirChoice, Case, ProbeShape, side_name};
 use super::setup::spacing;
@@ -195,6 +195,34 @@ impl Case {
         }
     }
 
+    /// A side with an outer face; `with` is what its inner face adds.
+    fn outside(&self, side: Side, outside: &Outside, with: &str) -> String {
+        let film = match outside.film {
+            OuterFilm::Given(h) => quoted(&write(h, "W/(m2 K)")),
+            OuterFilm::StillAir => quoted("still air"),
+        };
+        let mut keys = format!("film = {film}{with}");
+        let mut add = |key: &str, value: String| {
+            let written = write!(keys, ", {key} = {value}");
+            debug_assert!(written.is_ok());
+        };
+        if outside.emissivity > 0.0 {
+            add("outer-emissivity", number(outside.emissivity));
+            add("surroundings", quoted(&write(outside.surroundings, "degC")));
+        }
+        let outer = self.outer_sides[side.index()].as_ref();
+        if let Some((sun, absorptance)) = outer.and_then(|o| o.sun) {
+            add("sun", quoted(&write(sun, "W/m2")));
+            add("absorptance", number(absorptance));
+        }
+        if let Some(wall) = outer.and_then(|o| o.wall.as_ref()) {
+            let [material, thickness] =
+                [quoted(&wall.material), quoted(&write(wall.thickness, "mm"))];
+            add("wall", format!("{{ material = {material}, thickness = {thickness} }}"));
+        }
+        format!("{{ {keys} }}")
+    }
+
     fn write_edge(&self, lines: &mut Lines) {
         for slot in &self.slots {
             lines.header("[[slot]]");
@@ -225,6 +253,7 @@ impl Case {
                 SideCondition::Film { coefficient, .. } => {
                     format!("{{ film = {}{with} }}", quoted(&write(coefficient, "W/(m2 K)")))
                 }
+                SideCondition::Outside(outside) => self.outside(side, &outside, &with),
             };
             lines.line(&format!("{} = {value}", side_name(side)));
         }

@@ -9,7 +9,7 @@ use ventrise_solver::{Progress, Sample};
 use crate::case::Case;
 
 use super::readings::Readings;
-use super::summary::Summary;
+use super::summary::{OuterHeat, Summary};
 
 /// A table under construction.
 struct Table(String);
@@ -133,7 +133,9 @@ pub fn slots(summary: &Summary) -> String {
 
 /// `sides.csv`.
 pub fn sides(summary: &Summary) -> String {
-    let mut table = Table::new(&[
+    // Columns of outer faces only where there are any.
+    let outer = summary.sides.iter().any(|s| s.outer.is_some());
+    let columns = [
         "side",
         "heat_w",
         "conduction_w",
@@ -141,11 +143,29 @@ pub fn sides(summary: &Summary) -> String {
         "in_m3_s",
         "out_m3_s",
         "out_mean_c",
-    ]);
+        "film_w",
+        "radiation_w",
+        "sun_w",
+        "surface_mean_c",
+        "surface_max_c",
+        "film_w_m2_k",
+    ];
+    let mut table = Table::new(if outer { &columns } else { &columns[..7] });
     for s in &summary.sides {
         let values = [s.heat_w, s.conduction_w, s.convection_w, s.in_m3_s, s.out_m3_s];
         let name = std::iter::once(s.name.to_string());
-        table.row(name.chain(values.map(number)).chain([perhaps(s.out_mean_c)]));
+        let o = s.outer.as_ref();
+        let of = |value: fn(&OuterHeat) -> f64| perhaps(o.map(value));
+        let rest = [
+            of(|o| o.film_w),
+            of(|o| o.radiation_w),
+            of(|o| o.sun_w),
+            of(|o| o.surface_mean_c),
+            of(|o| o.surface_max_c),
+            of(|o| o.film_w_m2_k),
+        ];
+        let rest = rest.into_iter().filter(|_| outer);
+        table.row(name.chain(values.map(number)).chain([perhaps(s.out_mean_c)]).chain(rest));
     }
     table.0
 }

@@ -32,6 +32,7 @@ pub fn report(
     writeln!(out)?;
     parts(out, summary, readings)?;
     slots(out, summary)?;
+    outer(out, summary)?;
     heat(out, summary)?;
     balances(out, summary, readings)?;
     writeln!(out, "Verdict: {}", verdict(summary))?;
@@ -128,6 +129,26 @@ fn slots(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
     }
     for (name, side) in &open {
         row(name, [side.in_m3_s, side.out_m3_s], side.out_mean_c, side.convection_w)?;
+    }
+    writeln!(out)
+}
+
+/// Sides with an outer face.
+fn outer(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
+    let sides: Vec<_> = summary.sides.iter().filter_map(|s| Some((s, s.outer.as_ref()?))).collect();
+    if sides.is_empty() {
+        return Ok(());
+    }
+    let header = ["film W", "radiated W", "sun W", "mean degC", "max degC", "W/(m2 K)"];
+    let w = *NAME_WIDTH.start();
+    writeln!(out, "{:w$}{}", "Outer face", columns(&header.map(String::from)))?;
+    let scale = heat_scale(summary);
+    for (side, o) in sides {
+        let heat = [o.film_w, o.radiation_w, -o.sun_w].map(|heat| sized(heat, 2, scale));
+        let rest = [o.surface_mean_c, o.surface_max_c].map(|c| fixed(c, 1));
+        let film = std::iter::once(sized(o.film_w_m2_k, 2, 0.0));
+        let cells: Vec<String> = heat.into_iter().chain(rest).chain(film).collect();
+        writeln!(out, "{}{}", in_column(&format!("{} side", side.name), w), columns(&cells))?;
     }
     writeln!(out)
 }

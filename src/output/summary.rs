@@ -23,6 +23,8 @@ const LEAST_RADIATION: f64 = 0.01;
 /// Heat flux across touching blocks from which on a joint without resistance is worth a warning:
 /// every K cm²/W would cost half a kelvin [W/m²].
 const JOINT_FLUX: f64 = 5e3;
+/// Burn threshold of bare metal touched for ten seconds [°C]: ISO 13732-1, from memory.
+const TOUCHED: f64 = 55.0;
 /// View factors that add up to one within this are as good as the stated 0.1 %.
 const WORST_VIEW_DEFECT: f64 = 2e-3;
 
@@ -253,6 +255,28 @@ pub struct SideHeat {
     pub out_m3_s: f64,
     /// Mean temperature of the air that leaves, when the side is open [°C].
     pub out_mean_c: Option<f64>,
+    /// How the conducted heat leaves the outer face, where the side has one.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub outer: Option<OuterHeat>,
+}
+
+/// What leaves a side by its outer face.
+#[derive(Debug, Clone, Serialize)]
+pub struct OuterHeat {
+    /// Heat that the outside air takes [W].
+    pub film_w: f64,
+    /// Heat radiated to the surroundings, net [W].
+    pub radiation_w: f64,
+    /// Heat of the sun absorbed [W].
+    pub sun_w: f64,
+    /// Mean temperature of the outer face [°C].
+    pub surface_mean_c: f64,
+    /// Its highest temperature [°C].
+    pub surface_max_c: f64,
+    /// Film coefficient used [W/(m²·K)].
+    pub film_w_m2_k: f64,
+    /// Area without slots [m²].
+    pub area_m2: f64,
 }
 
 /// A probe: a point, or a line with its extremes.
@@ -482,6 +506,15 @@ fn sides(readings: &Readings) -> Vec<SideHeat> {
             in_m3_s: flow.open.inflow,
             out_m3_s: flow.open.outflow,
             out_mean_c: flow.open.out_mean_rise.map(|rise| readings.ambient + rise),
+            outer: flow.outer.map(|o| OuterHeat {
+                film_w: o.film,
+                radiation_w: o.radiation,
+                sun_w: o.sun,
+                surface_mean_c: readings.ambient + o.mean_rise,
+                surface_max_c: readings.ambient + o.max_rise,
+                film_w_m2_k: o.coefficient,
+                area_m2: o.area,
+            }),
         }
     };
     Side::ALL.map(side).to_vec()
@@ -575,6 +608,18 @@ fn warnings(run: &Run, readings: &Readings) -> Vec<String> {
                 contact.heat.abs(),
                 1e4 * contact.area,
                 1e-4 * flux
+            ));
+        }
+    }
+    for side in Side::ALL {
+        let Some(outer) = readings.sides[side.index()].outer else { continue };
+        let hottest = readings.ambient + outer.max_rise;
+        if hottest > TOUCHED {
+            warnings.push(format!(
+                "the outer face of the {} side reaches {hottest:.0} degC; bare metal burns the \
+                 skin from about {TOUCHED:.0} degC on when touched for ten seconds (for \
+                 information: no statement of conformity)",
+                side_name(side)
             ));
         }
     }

@@ -223,6 +223,23 @@ pub struct ToldSlot {
     pub area_m2: Option<f64>,
 }
 
+/// What leaves an outer face.
+#[derive(Debug, Clone, Deserialize)]
+pub struct ToldOuter {
+    /// Heat that the outside air takes [W].
+    pub film_w: f64,
+    /// Heat radiated [W].
+    pub radiation_w: f64,
+    /// Heat of the sun absorbed [W].
+    pub sun_w: f64,
+    /// Mean temperature [°C].
+    pub surface_mean_c: f64,
+    /// Highest temperature [°C].
+    pub surface_max_c: f64,
+    /// Film coefficient used [W/(m²·K)].
+    pub film_w_m2_k: f64,
+}
+
 /// A side.
 #[derive(Debug, Clone, Deserialize)]
 pub struct ToldSide {
@@ -234,6 +251,9 @@ pub struct ToldSide {
     /// Heat with air [W].
     #[serde(default)]
     pub convection_w: f64,
+    /// Its outer face, where it has one.
+    #[serde(default)]
+    pub outer: Option<ToldOuter>,
     /// Air in [m³/s].
     #[serde(default)]
     pub in_m3_s: f64,
