@@ -8,6 +8,7 @@
 use ventrise_mesh::{AIR, Side};
 
 use crate::conduction::{side_area, side_cell, side_exchange};
+use crate::heat_law::block_heats;
 use crate::outer::{Outer, OuterFlow};
 use crate::{Air, Problem, RadiantHeat, SideCondition, State, radiant::radiant_heat_with};
 
@@ -189,7 +190,7 @@ pub fn balance(problem: &Problem, air: &Air, state: &State) -> Balance {
         heat_in += (-heat).max(0.0);
         heat_out += heat.max(0.0);
     };
-    d.blocks.iter().for_each(|block| count_out(-block.heat));
+    block_heats(problem, state).iter().for_each(|heat| count_out(-heat));
     if let Some(sources) = &d.sources {
         count_out(-sources.heat.iter().sum::<f64>());
     }

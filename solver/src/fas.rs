@@ -85,10 +85,11 @@ impl Stack {
         Stack { levels, coarse_problems, transfers, work, bottom, newton, smoothing }
     }
 
-    /// Takes other constants for the air on every mesh, and what else follows the state of level
-    /// `from`.
-    pub fn set_constants(&mut self, problem: &Problem, air: &Air, from: usize) {
-        let following = self.following(problem, air, from);
+    /// Takes other constants for the air and `heats` of the blocks on every mesh, and what else
+    /// follows the state of level `from`.
+    pub fn set_constants(&mut self, problem: &Problem, air: &Air, from: usize, heats: &[f64]) {
+        let mut following = self.following(problem, air, from);
+        following.iter_mut().for_each(|f| f.heats = heats.to_vec());
         for ((l, level), following) in self.levels.iter_mut().enumerate().zip(following) {
             let problem = if l == 0 { problem } else { &self.coarse_problems[l - 1] };
             let slack = level.slack;

@@ -356,6 +356,8 @@ impl Level {
                 self.y_conductance[i + j * nx] = y_conductance(problem, &self.air, i, j);
             }
         }
+        let followed = self.following.heats.clone();
+        let heat = |block: usize| followed.get(block).copied().unwrap_or(d.blocks[block].heat);
         let mut volumes = vec![0.0; d.blocks.len()];
         for j in 0..ny {
             for i in 0..nx {
@@ -379,7 +381,7 @@ impl Level {
                 let region = mesh.regions()[n];
                 if region != AIR {
                     let block = region as usize;
-                    self.source.t[n] += d.blocks[block].heat * mesh.volume(i, j) / volumes[block];
+                    self.source.t[n] += heat(block) * mesh.volume(i, j) / volumes[block];
                 }
             }
         }
@@ -395,7 +397,7 @@ impl Level {
         if let Some(s) = &d.sources {
             add(&mut self.source.t, &s.heat);
         }
-        self.heat_in = d.blocks.iter().map(|b| b.heat.abs()).sum();
+        self.heat_in = (0..d.blocks.len()).map(|b| heat(b).abs()).sum();
     }
 }
 

@@ -16,6 +16,7 @@ mod error;
 mod fas;
 mod film;
 mod following;
+mod heat_law;
 mod level;
 mod linear;
 mod newton;
@@ -45,6 +46,7 @@ pub use balance::{Balance, OpeningFlow, REST_SPEED, SideFlow, balance, side_flow
 pub use boundary::{OuterFilm, Outside, SideCondition, Slot};
 pub use contacts::{Contact, contacts};
 pub use error::{ProblemError, SolveError};
+pub use heat_law::{HeatLaw, Runaway, block_heats};
 pub use numbers::{
     Numbers, PartTemperature, block_temperatures, cell_velocities, heat_fluxes, numbers,
     part_temperatures,

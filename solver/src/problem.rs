@@ -4,7 +4,8 @@ use ventrise_mesh::{AIR, Coarsening, Geometry, Mesh, Side};
 
 use crate::radiant::RadiantMap;
 use crate::{
-    AirModel, OuterFilm, PATCH_COUNT, ProblemError, Radiation, SideCondition, Slot, Surfaces,
+    AirModel, HeatLaw, OuterFilm, PATCH_COUNT, ProblemError, Radiation, SideCondition, Slot,
+    Surfaces,
 };
 
 /// A solid material.
@@ -121,6 +122,8 @@ pub struct Description {
     pub parts: Vec<Vec<usize>>,
     /// Joints between touching blocks.
     pub joints: Vec<Joint>,
+    /// Heat that follows its block's temperature; a block has one law at most.
+    pub heat_laws: Vec<HeatLaw>,
     /// Extra sources, for manufactured solutions.
     pub sources: Option<Sources>,
     /// How the surfaces radiate; nothing: radiation is not modelled.
@@ -214,6 +217,21 @@ fn check(d: &Description) -> Result<(), ProblemError> {
             return Err(ProblemError::Index { what: "material", index: block.solid, count });
         }
         number("heat", block.heat, true, "finite")?;
+    }
+    for law in &d.heat_laws {
+        let count = d.blocks.len();
+        if law.block >= count {
+            return Err(ProblemError::Index { what: "block", index: law.block, count });
+        }
+        let points = law.points.len();
+        number("points of a heat law", points as f64, points >= 2, "two or more")?;
+        for [t, q] in &law.points {
+            number("temperature", *t, *t > 0.0, "positive")?;
+            number("heat", *q, *q >= 0.0, "zero or more")?;
+        }
+        for pair in law.points.windows(2) {
+            number("temperature", pair[1][0], pair[1][0] > pair[0][0], "rising")?;
+        }
     }
     for joint in &d.joints {
         let r = joint.resistance;

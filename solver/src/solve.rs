@@ -5,14 +5,15 @@ use crate::balance::balance;
 use crate::fas::{COARSEST_CELLS, Stack};
 use crate::film::film_rise;
 use crate::following::Following;
+use crate::heat_law::{HeatSearch, block_heats, hottest};
 use crate::numbers::part_temperatures;
 use crate::residual::Scales;
 use crate::settings::{DRIFT_BOUND, HEAT_BOUND, MASS_BOUND, SOLVED};
 use crate::simplec::Smoothing;
 use crate::sway::{self, Finding};
 use crate::{
-    Air, AirModel, Control, Problem, Progress, Residuals, Settings, Solution, SolveError, State,
-    StopReason, Verdict,
+    Air, AirModel, Control, Problem, Progress, Residuals, Runaway, Settings, Solution, SolveError,
+    State, StopReason, Verdict,
 };
 
 /// Residual that the nested start asks of the meshes before the finest.
@@ -35,6 +36,10 @@ const FILM_CHECKS: f64 = 0.03;
 /// Renewals on the coarsest mesh at the most: of the film temperature, of more that follows.
 const RENEWALS: usize = 8;
 const FOLLOWING_RENEWALS: usize = 40;
+/// Heats stand when they are off by less than this share of them [-]; they are renewed from a
+/// residual of this share of what they are off by.
+const HEAT_STANDS: f64 = 5e-7;
+const HEAT_CLEAR: f64 = 0.03;
 /// Residual over the tolerance from which on the mass balance is restored after every cycle.
 const NEARLY: f64 = 30.0;
 /// Residual with which a stalled iteration is taken for a flow without a steady state, and the
@@ -92,6 +97,9 @@ struct Run<'a> {
     film: f64,
     /// Whether more than the air's constants follows the result.
     follows: bool,
+    /// Heats that follow temperatures.
+    heats: HeatSearch,
+    runaway: Option<Runaway>,
 }
 
 /// How the cycles on one mesh ended.
@@ -100,6 +108,7 @@ enum Cycles {
     Limit,
     Asked,
     Stalled,
+    RanAway,
     Broke { field: &'static str, cell: usize },
 }
 
@@ -118,7 +127,18 @@ impl<'a> Run<'a> {
         let stack = Stack::new(problem, &air, settings.convection, coarsest_cells);
         let follows = Following::any(problem);
         let (history, notes) = (Vec::new(), Vec::new());
-        Run { problem, settings, watch, stack, history, notes, film: 0.0, follows }
+        Run {
+            problem,
+            settings,
+            watch,
+            stack,
+            history,
+            notes,
+            film: 0.0,
+            follows,
+            heats: HeatSearch::default(),
+            runaway: None,
+        }
     }
 
     /// Ends the cycles on a finer mesh than before, where there is one; all else begins anew.
@@ -130,6 +150,7 @@ impl<'a> Run<'a> {
             return false;
         }
         self.stack = stack;
+        self.heats = HeatSearch::default();
         self.note("the coarsest mesh was too coarse for this flow: begun again on a finer".into());
         true
     }
@@ -149,7 +170,7 @@ impl<'a> Run<'a> {
             }
             // What a coarser mesh could not solve is no start for a finer one.
             from_rest = end > NESTED_TARGET;
-            self.renew(l);
+            self.renew(l, f64::INFINITY);
         }
         if !from_rest {
             self.stack.start_from_coarser(bottom);
@@ -184,9 +205,12 @@ impl<'a> Run<'a> {
                 }
                 Cycles::Stalled if l == 0 => return Ok(StopReason::Stalled),
                 Cycles::Limit if l == 0 => return Ok(StopReason::IterationLimit),
+                Cycles::RanAway => return Ok(StopReason::RanAway),
                 _ => {}
             }
-            self.renew(l);
+            if l > 0 {
+                self.renew(l, f64::INFINITY);
+            }
         }
         Ok(StopReason::Converged)
     }
@@ -199,7 +223,7 @@ impl<'a> Run<'a> {
             let ended = self.start_bottom(0, false)?;
             return Ok(ended.unwrap_or(StopReason::Converged));
         }
-        self.renew(0);
+        self.renew(0, f64::INFINITY);
         self.finest()
     }
 
@@ -210,6 +234,7 @@ impl<'a> Run<'a> {
             Cycles::Limit => Ok(StopReason::IterationLimit),
             Cycles::Asked => Ok(StopReason::Asked),
             Cycles::Stalled => Ok(StopReason::Stalled),
+            Cycles::RanAway => Ok(StopReason::RanAway),
             Cycles::Broke { .. } => {
                 self.note("the given start diverged: started again from rest".into());
                 self.start_from_rest()
@@ -245,10 +270,20 @@ impl<'a> Run<'a> {
             }
             fresh = false;
             converged = end <= self.settings.tolerance.max(target);
-            if !self.renew(l) {
+            if !self.renew(l, end) {
                 break;
             }
             converged = false;
+            if self.runaway.is_some() {
+                break;
+            }
+        }
+        if !converged && self.runaway.is_none() && self.heats.climbs() {
+            self.runaway = self.given_up(l);
+        }
+        if self.runaway.is_some() {
+            self.lift_to_finest(l);
+            return Ok(Some(StopReason::RanAway));
         }
         if finest {
             let parts = highest(self.problem, self.stack.state(l));
@@ -371,13 +406,16 @@ impl<'a> Run<'a> {
             let behind = self.follows && largest <= self.settings.tolerance;
             if finest && !done && (largest < film_check || behind) {
                 film_check = FILM_CHECKS * largest;
-                if self.renew(l) {
+                if self.renew(l, largest) {
+                    if self.runaway.is_some() {
+                        return Ok(Cycles::RanAway);
+                    }
                     acceleration = Acceleration::new();
                     continue;
                 }
             }
             if done {
-                if !(finest && self.renew(l)) {
+                if !(finest && self.renew(l, largest)) {
                     return Ok(Cycles::Reached);
                 }
                 acceleration = Acceleration::new();
@@ -441,15 +479,46 @@ impl<'a> Run<'a> {
 
     /// Takes the air's constants at the film temperature of level `l`'s state, and what else
     /// follows it; true when they changed.
-    fn renew(&mut self, l: usize) -> bool {
+    ///
+    /// Heats are renewed where the temperatures tell more than the `residual` blurs.
+    fn renew(&mut self, l: usize, residual: f64) -> bool {
         let film = self.moved_film(l);
-        if film.is_none() && !(self.follows && self.following_moved(l)) {
+        let heats = if self.follows { self.next_heats(l, residual) } else { None };
+        let moved = || self.follows && self.outer_moved(l);
+        if film.is_none() && heats.is_none() && !moved() {
             return false;
         }
         let air = film.unwrap_or(self.stack.level(l).air);
-        self.stack.set_constants(self.problem, &air, l);
+        let heats = heats.unwrap_or_else(|| self.stack.level(l).following.heats.clone());
+        self.stack.set_constants(self.problem, &air, l, &heats);
         self.stack.pose(l);
         true
+    }
+
+    /// Other heats to try, when those of level `l` are not what its temperatures ask for.
+    fn next_heats(&mut self, l: usize, residual: f64) -> Option<Vec<f64>> {
+        let problem = self.stack.problem(l).unwrap_or(self.problem);
+        let (used, state) = (&self.stack.level(l).following, self.stack.state(l));
+        let now = Following { heats: block_heats(problem, state), ..Following::default() };
+        if used.heats.is_empty() {
+            return None;
+        }
+        let gap = now.heat_gap(used);
+        let clear = residual <= (HEAT_CLEAR * gap).max(self.settings.tolerance);
+        if !clear || gap <= HEAT_STANDS {
+            return None;
+        }
+        let behind = now.heats.iter().sum::<f64>() > used.heats.iter().sum();
+        let next = self.heats.next(&used.heats, &now.heats);
+        self.runaway = self.heats.runaway(problem, state, behind);
+        Some(next)
+    }
+
+    /// What is known of heat that still grew when the renewals were used up.
+    fn given_up(&self, l: usize) -> Option<Runaway> {
+        let problem = self.stack.problem(l).unwrap_or(self.problem);
+        let (block, temperature) = hottest(problem, self.stack.state(l))?;
+        Some(Runaway { growth: self.heats.growth?, block, temperature })
     }
 
     /// The air at the film temperature of level `l`'s state, when that has moved.
@@ -465,12 +534,12 @@ impl<'a> Run<'a> {
         Some(Air::dry(d.ambient + film, pressure))
     }
 
-    /// Whether what follows level `l`'s state is no longer what its equations hold.
-    fn following_moved(&self, l: usize) -> bool {
+    /// Whether the outer faces at level `l`'s state are no longer what its equations hold.
+    fn outer_moved(&self, l: usize) -> bool {
         let problem = self.stack.problem(l).unwrap_or(self.problem);
         let (level, state) = (self.stack.level(l), self.stack.state(l));
         let now = Following::at(problem, &level.air, state);
-        !now.stands(&level.following, problem, state)
+        !now.outer_stands(&level.following, problem, state)
     }
 
     /// Carries an unfinished state of a coarser level up to the finest.
@@ -496,6 +565,15 @@ impl<'a> Run<'a> {
     fn judge(&mut self, mut stop: StopReason) -> Result<(StopReason, Verdict), SolveError> {
         for _ in 0..BRANCHES {
             let verdict = match stop {
+                // Heat in balance that would grow at the least disturbance is no answer either.
+                StopReason::Converged if self.heats.climbs() => match self.given_up(0) {
+                    Some(runaway) => return Ok((StopReason::RanAway, Verdict::RunsAway(runaway))),
+                    None => Verdict::Settled,
+                },
+                StopReason::RanAway => match self.runaway {
+                    Some(runaway) => return Ok((stop, Verdict::RunsAway(runaway))),
+                    None => Verdict::Drifting,
+                },
                 StopReason::Converged => Verdict::Settled,
                 StopReason::Stalled => Verdict::Drifting,
                 StopReason::IterationLimit | StopReason::Asked => Verdict::StoppedEarly,
@@ -552,6 +630,7 @@ impl<'a> Run<'a> {
         Solution {
             state: self.stack.state(0).clone(),
             air: self.stack.level(0).air,
+            heat_growth: self.heats.growth.filter(|_| stop != StopReason::RanAway),
             stop,
             verdict,
             history: self.history,

@@ -9,6 +9,7 @@ mod doubts;
 mod edge;
 mod error;
 mod estimate;
+mod heat;
 mod joints;
 pub mod materials;
 mod meshing;
@@ -26,6 +27,6 @@ pub mod units;
 pub use error::{CaseError, CaseErrors, Cause};
 pub use estimate::Estimate;
 pub use model::{
-    AirChoice, Ambient, Block, Case, Material, MeshChoice, OuterSide, Part, Probe, ProbeShape,
-    Section, Slot, SolveChoice, Wall, side_name,
+    AirChoice, Ambient, Block, Case, HeatCurve, Junction, JunctionBy, LimitAt, Material,
+    MeshChoice, OuterSide, Part, Probe, ProbeShape, Section, Slot, SolveChoice, Wall, side_name,
 };

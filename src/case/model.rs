@@ -75,8 +75,69 @@ pub struct Block {
     pub part: Option<usize>,
     /// Heat released in the whole block [W]; below zero when it is cooled.
     pub heat: f64,
+    /// How the heat follows the block's mean temperature; `heat` then is that at `heat-at`, or at
+    /// ambient.
+    pub curve: Option<HeatCurve>,
+    /// The way to a junction in it.
+    pub junction: Option<Junction>,
     /// Emissivity of its surface in place of the material's, as the case writes it.
     pub emissivity: Option<f64>,
+}
+
+/// Heat that follows temperature.
+#[derive(Debug, Clone, PartialEq)]
+pub enum HeatCurve {
+    /// heat·(1 + slope·(T − at)).
+    Slope {
+        /// Relative change [1/K].
+        slope: f64,
+        /// Temperature at which the heat is given [K].
+        at: f64,
+    },
+    /// Temperatures [K], rising, and heats [W], straight between and beyond.
+    Points(Vec<[f64; 2]>),
+}
+
+impl HeatCurve {
+    /// Two or more points of the curve of a block with this heat [K], [W].
+    pub fn points(&self, heat: f64) -> Vec<[f64; 2]> {
+        match self {
+            HeatCurve::Points(points) => points.clone(),
+            // Down to half of the heat at the most: no point may lie below zero.
+            HeatCurve::Slope { slope, at } => {
+                let step = if *slope < 0.0 { -0.5 / slope } else { 100.0 };
+                vec![[*at, heat], [at + step, heat * (1.0 + slope * step)]]
+            }
+        }
+    }
+}
+
+/// A resistance from the hottest place of a block to a junction in it.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Junction {
+    /// Which of the data sheet's numbers it is.
+    pub by: JunctionBy,
+    /// Junction above the block's hottest place, over the block's heat [K/W].
+    pub resistance: f64,
+}
+
+/// The data sheet's numbers for the way to the junction.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum JunctionBy {
+    /// Junction to case, all heat through the case.
+    ThetaJc,
+    /// Junction to top of case, heat going where it goes on the standard's board.
+    PsiJt,
+}
+
+/// Where a limit holds.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
+pub enum LimitAt {
+    /// At the part's hottest place.
+    #[default]
+    Part,
+    /// At the hottest junction in it.
+    Junction,
 }
 
 /// A joint between two touching blocks.
@@ -97,6 +158,8 @@ pub struct Part {
     pub blocks: Vec<usize>,
     /// Highest allowed temperature [K].
     pub limit: Option<f64>,
+    /// Where it holds.
+    pub limit_at: LimitAt,
     /// Heat of all its blocks [W].
     pub heat: f64,
 }

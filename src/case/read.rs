@@ -124,7 +124,7 @@ fn read_case(reader: &mut Reader, top: &Scope, text: &str, file: &str) -> Option
     let ambient = read_ambient(reader, top);
     let air = read_air(reader, top, ambient.as_ref());
     let own = read_materials(reader, top);
-    let drafts = read_blocks(reader, top);
+    let drafts = read_blocks(reader, top, ambient.as_ref());
     let slots = read_slots(reader, top);
     let sides = read_sides(reader, top, section.as_ref(), ambient.as_ref(), &own);
     let probes = read_probes(reader, top);

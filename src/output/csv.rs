@@ -86,7 +86,9 @@ pub fn history(case: &Case, ambient: f64, rows: &[Progress]) -> String {
 
 /// `parts.csv`.
 pub fn parts(summary: &Summary) -> String {
-    let mut table = Table::new(&[
+    // A column of junctions only where there are any.
+    let junctions = summary.parts.iter().any(|p| p.junction_c.is_some());
+    let columns = [
         "part",
         "heat_w",
         "min_c",
@@ -95,11 +97,14 @@ pub fn parts(summary: &Summary) -> String {
         "limit_c",
         "margin_k",
         "resistance_k_w",
-    ]);
+        "junction_c",
+    ];
+    let mut table = Table::new(&columns[..if junctions { 9 } else { 8 }]);
     for p in &summary.parts {
         let values = [p.min_c, p.mean_c, p.max_c, p.limit_c, p.margin_k, p.resistance_k_w];
         let start = [quoted(&p.name), number(p.heat_w)];
-        table.row(start.into_iter().chain(values.map(perhaps)));
+        let junction = junctions.then(|| perhaps(p.junction_c));
+        table.row(start.into_iter().chain(values.map(perhaps)).chain(junction));
     }
     table.0
 }

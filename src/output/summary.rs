@@ -7,7 +7,7 @@ use serde::Serialize;
 use ventrise_mesh::{AIR, Side};
 use ventrise_solver::{SOLVED, Sample, Solution, StopReason, Verdict, contacts};
 
-use crate::case::{Case, ProbeShape};
+use crate::case::{Case, HeatCurve, LimitAt, ProbeShape};
 
 use super::readings::{Interruption, Readings, Run};
 use super::side_name;
@@ -38,12 +38,18 @@ pub struct Summary {
     /// Whether the equations are met well enough for the numbers to mean anything; if not, they are
     /// the last attempt and no margin is given.
     pub solved: bool,
-    /// `settled`, `swaying`, `drifting` or `stopped early`.
+    /// `settled`, `swaying`, `runs away`, `drifting` or `stopped early`.
     pub verdict: &'static str,
     /// What ended the iteration early: `signal`, `time limit`, `iteration limit` or `stalled`
     /// (residuals no longer fell).
     #[serde(skip_serializing_if = "Option::is_none")]
     pub stopped_by: Option<&'static str>,
+    /// Where heat follows temperature: how much more one watt more makes of itself [-].
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub heat_growth: Option<f64>,
+    /// About heat that has no steady answer.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub runaway: Option<HeatRunaway>,
     /// About a swaying flow.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub sway: Option<Sway>,
@@ -97,6 +103,17 @@ pub struct Sway {
     pub period_s: Option<f64>,
     /// Growth rate about the steady solution [1/s].
     pub growth_per_s: Option<f64>,
+}
+
+/// Heat that grows faster with temperature than it is carried away.
+#[derive(Debug, Clone, Serialize)]
+pub struct HeatRunaway {
+    /// How much more one watt more makes of itself [-], 1 or more.
+    pub growth: f64,
+    /// The block that was hottest when it was given up, if it has a name.
+    pub block: Option<String>,
+    /// Its mean temperature then [°C].
+    pub given_up_at_c: f64,
 }
 
 /// Size of the mesh.
@@ -204,11 +221,17 @@ pub struct Part {
     pub mean_c: Option<f64>,
     /// Highest temperature [°C].
     pub max_c: Option<f64>,
+    /// Temperature of the hottest junction in it [°C].
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub junction_c: Option<f64>,
     /// Lowest and highest `max_c` over the last oscillations of a swaying flow [°C].
     #[serde(skip_serializing_if = "Option::is_none")]
     pub band_c: Option<[f64; 2]>,
     /// Limit [°C].
     pub limit_c: Option<f64>,
+    /// `junction` where the limit holds there.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub limit_at: Option<&'static str>,
     /// Limit minus highest temperature (of the band, when swaying) [K].
     pub margin_k: Option<f64>,
     /// Highest rise over heat [K/W].
@@ -338,6 +361,15 @@ impl Summary {
             solved: solved(solution),
             verdict: verdict_word(&solution.verdict),
             stopped_by: stopped_by(run),
+            heat_growth: solution.heat_growth,
+            runaway: match solution.verdict {
+                Verdict::RunsAway(r) => Some(HeatRunaway {
+                    growth: r.growth,
+                    block: case.blocks().get(r.block).and_then(|b| b.name.clone()),
+                    given_up_at_c: super::readings::celsius(r.temperature),
+                }),
+                _ => None,
+            },
             sway: match solution.verdict {
                 Verdict::Swaying { period, growth, .. } => {
                     Some(Sway { period_s: period, growth_per_s: growth })
@@ -421,12 +453,16 @@ pub fn verdict_word(verdict: &Verdict) -> &'static str {
     match verdict {
         Verdict::Settled => "settled",
         Verdict::Swaying { .. } => "swaying",
+        Verdict::RunsAway(_) => "runs away",
         Verdict::Drifting => "drifting",
         Verdict::StoppedEarly => "stopped early",
     }
 }
 
 fn solved(solution: &Solution) -> bool {
+    if matches!(solution.verdict, Verdict::RunsAway(_)) {
+        return false;
+    }
     let bounded = matches!(&solution.verdict, Verdict::Swaying { band, .. } if !band.is_empty());
     bounded || solution.history.last().is_some_and(|row| row.residuals.largest() <= SOLVED)
 }
@@ -437,7 +473,7 @@ fn stopped_by(run: &Run) -> Option<&'static str> {
         (Some(Interruption::TimeLimit), _) => Some("time limit"),
         (None, StopReason::IterationLimit) => Some("iteration limit"),
         (None, StopReason::Stalled) => Some("stalled"),
-        (None, StopReason::Converged | StopReason::Asked) => None,
+        (None, StopReason::Converged | StopReason::Asked | StopReason::RanAway) => None,
     }
 }
 
@@ -448,14 +484,27 @@ fn parts(case: &Case, readings: &Readings, solution: &Solution) -> Vec<Part> {
         _ => None,
     };
     let part = |(n, part): (usize, &crate::case::Part)| {
-        let found = readings.parts.get(n).copied().flatten();
+        let runs_away = matches!(verdict, Verdict::RunsAway(_));
+        let found = readings.parts.get(n).copied().flatten().filter(|_| !runs_away);
         let celsius = |rise: f64| readings.ambient + rise;
         let max_c = found.map(|f| celsius(f.max));
         let limit_c = part.limit.map(super::readings::celsius);
+        let follows = part.blocks.iter().any(|b| case.blocks()[*b].curve.is_some());
+        let heat =
+            if follows { part.blocks.iter().map(|b| readings.heats[*b]).sum() } else { part.heat };
+        let junction_c = hottest_junction(case, readings, part).filter(|_| !runs_away);
         let hottest = max_c.map(|max| band(n).map_or(max, |b| max.max(b[1])));
+        let hottest = match part.limit_at {
+            LimitAt::Part => hottest,
+            // A junction sways with its part.
+            LimitAt::Junction => {
+                let sway = hottest.zip(max_c).map_or(0.0, |(high, max)| high - max);
+                junction_c.map(|t| t + sway)
+            }
+        };
         Part {
             name: part.name.clone(),
-            heat_w: part.heat,
+            heat_w: heat,
             radiated_w: readings
                 .radiant
                 .as_ref()
@@ -463,16 +512,29 @@ fn parts(case: &Case, readings: &Readings, solution: &Solution) -> Vec<Part> {
             min_c: found.map(|f| celsius(f.min)),
             mean_c: found.map(|f| celsius(f.mean)),
             max_c,
+            junction_c,
             band_c: band(n),
             limit_c,
+            limit_at: (part.limit_at == LimitAt::Junction).then_some("junction"),
             margin_k: limit_c
                 .zip(hottest)
                 .filter(|_| solved)
                 .map(|(limit, hottest)| limit - hottest),
-            resistance_k_w: found.filter(|_| part.heat > 0.0).map(|f| f.max / part.heat),
+            resistance_k_w: found.filter(|_| heat > 0.0).map(|f| f.max / heat),
         }
     };
     case.parts().iter().enumerate().map(part).collect()
+}
+
+/// Temperature of the hottest junction in a part [°C]: the hottest place of its block, and the
+/// block's heat over the way from there.
+fn hottest_junction(case: &Case, readings: &Readings, part: &crate::case::Part) -> Option<f64> {
+    let of = |b: &usize| {
+        let junction = case.blocks()[*b].junction?;
+        let hottest = readings.ambient + readings.blocks[*b]?.max;
+        Some(hottest + junction.resistance * readings.heats[*b])
+    };
+    part.blocks.iter().filter_map(of).max_by(f64::total_cmp)
 }
 
 fn slots(case: &Case, readings: &Readings, verdict: &Verdict) -> Vec<Slot> {
@@ -548,14 +610,15 @@ fn probes(case: &Case, readings: &Readings) -> Vec<Probe> {
 }
 
 fn blocks(case: &Case, readings: &Readings) -> Vec<Block> {
-    let block = |(block, found): (&crate::case::Block, &Option<_>)| Block {
+    let block = |((block, found), heat): ((&crate::case::Block, &Option<_>), f64)| Block {
         name: block.name.clone(),
         part: block.part.map(|p| case.parts()[p].name.clone()),
         material: case.materials()[block.material].name.clone(),
-        heat_w: block.heat,
+        heat_w: heat,
         max_c: found.map(|f: ventrise_solver::PartTemperature| readings.ambient + f.max),
     };
-    case.blocks().iter().zip(&readings.blocks).map(block).collect()
+    let heats = readings.heats.iter().copied();
+    case.blocks().iter().zip(&readings.blocks).zip(heats).map(block).collect()
 }
 
 fn warnings(run: &Run, readings: &Readings) -> Vec<String> {
@@ -620,6 +683,21 @@ fn warnings(run: &Run, readings: &Readings) -> Vec<String> {
                  skin from about {TOUCHED:.0} degC on when touched for ten seconds (for \
                  information: no statement of conformity)",
                 side_name(side)
+            ));
+        }
+    }
+    for (block, found) in run.case.blocks().iter().zip(&readings.blocks) {
+        let (Some(HeatCurve::Points(points)), Some(found)) = (&block.curve, found) else {
+            continue;
+        };
+        let mean = run.case.ambient().temperature + found.mean;
+        let [first, last] = [points.first(), points.last()].map(|p| p.map_or(mean, |p| p[0]));
+        if !(first..=last).contains(&mean) {
+            warnings.push(format!(
+                "{} is at {:.0} degC in the mean, beyond the heat-points given for it; the last two \
+                 were drawn on",
+                block.name.as_deref().map_or("a block".into(), |name| format!("\"{name}\"")),
+                super::readings::celsius(mean)
             ));
         }
     }

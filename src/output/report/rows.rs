@@ -65,6 +65,7 @@ pub fn margins(results: &Results) -> Table {
     let key = |p: &ToldPart| p.margin_k.unwrap_or(f64::INFINITY);
     parts.sort_by(|a, b| key(a).total_cmp(&key(b)));
     let radiates = parts.iter().any(|p| p.radiated_w.is_some());
+    let junctions = parts.iter().any(|p| p.junction_c.is_some());
     let row = |p: &&ToldPart| {
         let judged = match (p.margin_k, p.limit_c) {
             (Some(margin), _) if margin < 0.0 => "over",
@@ -80,18 +81,22 @@ pub fn margins(results: &Results) -> Table {
             None => perhaps(p.max_c, 1),
         };
         let radiated = radiates.then(|| of_size(p.radiated_w, 2));
+        let at = if p.limit_at.is_some() { " (junction)" } else { "" };
         let numbers = [
-            max,
-            perhaps(p.limit_c, 1),
+            format!("{}{at}", perhaps(p.limit_c, 1)),
             perhaps(p.margin_k, 1),
             perhaps(p.resistance_k_w, 2),
             judged.into(),
         ];
-        [p.name.clone(), number(p.heat_w)].into_iter().chain(radiated).chain(numbers).collect()
+        let junction = junctions.then(|| perhaps(p.junction_c, 1));
+        let start = [p.name.clone(), number(p.heat_w)].into_iter().chain(radiated);
+        start.chain([max]).chain(junction).chain(numbers).collect()
     };
     let radiated = radiates.then_some("Radiated, W");
     let header = ["Part", "Heat, W"].into_iter().chain(radiated);
-    let rest = ["Hottest, °C", "Limit, °C", "Margin, K", "K/W", "Limit is"];
+    let junction = junctions.then_some("Junction, °C");
+    let header = header.chain(["Hottest, °C"]).chain(junction);
+    let rest = ["Limit, °C", "Margin, K", "K/W", "Limit is"];
     Table {
         header: header.chain(rest).collect(),
         rows: parts.iter().map(row).collect(),
