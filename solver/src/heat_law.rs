@@ -18,6 +18,8 @@ const LEAST_STEP: f64 = 1e-5;
 /// Step along a growth of 1 and more, and the largest step, as shares of the heat.
 const CLIMB: f64 = 0.5;
 const LARGEST_STEP: f64 = 1.0;
+/// Growth factors nearer to 1 than this amplifies are not told from 1 [-].
+const LARGEST_AMPLIFICATION: f64 = 100.0;
 /// A block beyond this temperature whose heat still grows by 1 and more runs away [K].
 const RUNAWAY: f64 = 1300.0;
 
@@ -96,6 +98,12 @@ impl HeatSearch {
     /// Whether heat grows faster with temperature than it is carried away.
     pub fn climbs(&self) -> bool {
         self.growth.is_some_and(|g| g >= 1.0)
+    }
+
+    /// How far the answer is for each watt that the laws are off: 1/(1 − g).
+    pub fn amplification(&self) -> f64 {
+        let growth = self.growth.unwrap_or(0.0).clamp(0.0, 1.0);
+        (1.0 / (1.0 - growth)).min(LARGEST_AMPLIFICATION)
     }
 
     /// The heats to try next [W]: `used` made temperatures that the laws answer with `answered`.

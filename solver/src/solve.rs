@@ -36,8 +36,8 @@ const FILM_CHECKS: f64 = 0.03;
 /// Renewals on the coarsest mesh at the most: of the film temperature, of more that follows.
 const RENEWALS: usize = 8;
 const FOLLOWING_RENEWALS: usize = 40;
-/// Heats stand when they are off by less than this share of them [-]; they are renewed from a
-/// residual of this share of what they are off by.
+/// Heats stand when they are off their answer by less than this share of them [-]; they are renewed
+/// from a residual of this share of what they are off by.
 const HEAT_STANDS: f64 = 5e-7;
 const HEAT_CLEAR: f64 = 0.03;
 /// Residual over the tolerance from which on the mass balance is restored after every cycle.
@@ -505,7 +505,7 @@ impl<'a> Run<'a> {
         }
         let gap = now.heat_gap(used);
         let clear = residual <= (HEAT_CLEAR * gap).max(self.settings.tolerance);
-        if !clear || gap <= HEAT_STANDS {
+        if !clear || gap * self.heats.amplification() <= HEAT_STANDS {
             return None;
         }
         let behind = now.heats.iter().sum::<f64>() > used.heats.iter().sum();
