@@ -20,7 +20,7 @@ const EXAMPLES: [(&str, &str, f64, f64); 11] = [
     ("gateway", "radio chips", 38.0, 0.634),
     ("mast-radio", "radio", 35.3, 2.83),
     ("resistor-tray", "resistors", 33.6, 3.50),
-    ("roadside-box", "electronics", 30.0, 0.0),
+    ("roadside-box", "converter", 26.7, 0.0),
     ("sensor-box", "electronics", 30.2, 0.0),
     ("sensor-screen", "screen", 8.5, 2.26),
     ("telemetry-pillar", "modem", 22.2, 2.00),
@@ -150,6 +150,11 @@ fn mast_radio() {
 #[test]
 fn resistor_tray() {
     check("resistor-tray");
+}
+
+#[test]
+fn roadside_box() {
+    check("roadside-box");
 }
 
 #[test]

@@ -131,3 +131,18 @@ fn a_housing_is_solved_with_its_heat() {
     let growth = solution.heat_growth.unwrap();
     assert!((0.1..0.6).contains(&growth), "{growth}");
 }
+
+/// The same with 8 %/K: at a growth near 4 no steady flow carries the heat away.
+#[test]
+fn a_housing_can_run_away() {
+    let text = include_str!("../cases/wall-cabinet.toml");
+    let law = "heat-slope = \"8 %/K\"\nheat-at = \"20 degC\"\nheat = \"8 W\"";
+    let case = Case::parse(&text.replace("heat = \"8 W\"", law), "case.toml").unwrap();
+    let mesh = setup::mesh(&case).unwrap().mesh;
+    let problem = setup::problem(&case, mesh).unwrap();
+    let settings = setup::settings(&case);
+    let solution = solve(&problem, &settings, None, &mut |_| Control::Continue).unwrap();
+    let Verdict::RunsAway(found) = solution.verdict else { panic!("{:?}", solution.verdict) };
+    assert!(found.growth >= 1.0 && found.temperature > 340.0, "{found:?}");
+    assert_eq!(solution.heat_growth, None);
+}

@@ -20,8 +20,6 @@ const CLIMB: f64 = 0.5;
 const LARGEST_STEP: f64 = 1.0;
 /// Growth factors nearer to 1 than this amplifies are not told from 1 [-].
 const LARGEST_AMPLIFICATION: f64 = 100.0;
-/// A block beyond this temperature whose heat still grows by 1 and more runs away [K].
-const RUNAWAY: f64 = 1300.0;
 
 /// Heat of a block by its mean temperature.
 #[derive(Debug, Clone, PartialEq)]
@@ -153,18 +151,6 @@ impl HeatSearch {
             let factor = (s[i] - moved[i]) / along;
             line.iter_mut().zip(&row).for_each(|(h, r)| *h += factor * r);
         }
-    }
-
-    /// Says so when a state shows heat that grows without end; `behind`: the heats are below what
-    /// the laws ask for.
-    pub fn runaway(&self, problem: &Problem, state: &State, behind: bool) -> Option<Runaway> {
-        let growth = self.growth.filter(|g| *g >= 1.0 && behind)?;
-        let hottest = hottest(problem, state)?;
-        (hottest.1 > RUNAWAY).then_some(Runaway {
-            growth,
-            block: hottest.0,
-            temperature: hottest.1,
-        })
     }
 }
 

@@ -28,6 +28,7 @@ mod probe;
 mod problem;
 mod radiant;
 mod radiation;
+mod renewal;
 mod residual;
 pub mod samples;
 mod settings;

@@ -3,17 +3,15 @@
 use crate::acceleration::Acceleration;
 use crate::balance::balance;
 use crate::fas::{COARSEST_CELLS, Stack};
-use crate::film::film_rise;
-use crate::following::Following;
-use crate::heat_law::{HeatSearch, block_heats, hottest};
 use crate::numbers::part_temperatures;
+use crate::renewal::Renewal;
 use crate::residual::Scales;
 use crate::settings::{DRIFT_BOUND, HEAT_BOUND, MASS_BOUND, SOLVED};
 use crate::simplec::Smoothing;
 use crate::sway::{self, Finding};
 use crate::{
-    Air, AirModel, Control, Problem, Progress, Residuals, Runaway, Settings, Solution, SolveError,
-    State, StopReason, Verdict,
+    Air, AirModel, Control, Problem, Progress, Residuals, Settings, Solution, SolveError, State,
+    StopReason, Verdict,
 };
 
 /// Residual that the nested start asks of the meshes before the finest.
@@ -27,19 +25,10 @@ const BRANCHES: usize = 4;
 /// Building up the sources: first share, largest and smallest factor between shares, most steps.
 const BUILD_UP: [f64; 3] = [1.0 / 1024.0, 8.0, 1.05];
 const BUILD_UP_STEPS: usize = 30;
-/// The air's constants are renewed while the film temperature moves by more than this [K].
-const FILM_BOUND: f64 = 0.02;
 /// Residual at which the film temperature of the finest mesh is first taken, and the reduction
 /// after which it is taken again.
 const FIRST_FILM_CHECK: f64 = 3e-2;
 const FILM_CHECKS: f64 = 0.03;
-/// Renewals on the coarsest mesh at the most: of the film temperature, of more that follows.
-const RENEWALS: usize = 8;
-const FOLLOWING_RENEWALS: usize = 40;
-/// Heats stand when they are off their answer by less than this share of them [-]; they are renewed
-/// from a residual of this share of what they are off by.
-const HEAT_STANDS: f64 = 5e-7;
-const HEAT_CLEAR: f64 = 0.03;
 /// Residual with which a stalled iteration is taken for a flow without a steady state, and the
 /// largest error of the heat balance with which following it in time can be worth while.
 const NO_STEADY: f64 = 1e-4;
@@ -92,12 +81,7 @@ struct Run<'a> {
     stack: Stack,
     history: Vec<Progress>,
     notes: Vec<String>,
-    film: f64,
-    /// Whether more than the air's constants follows the result.
-    follows: bool,
-    /// Heats that follow temperatures.
-    heats: HeatSearch,
-    runaway: Option<Runaway>,
+    renewal: Renewal,
 }
 
 /// How the cycles on one mesh ended.
@@ -123,20 +107,8 @@ impl<'a> Run<'a> {
             AirModel::Film { pressure } => Air::dry(d.ambient, pressure),
         };
         let stack = Stack::new(problem, &air, settings.convection, coarsest_cells);
-        let follows = Following::any(problem);
         let (history, notes) = (Vec::new(), Vec::new());
-        Run {
-            problem,
-            settings,
-            watch,
-            stack,
-            history,
-            notes,
-            film: 0.0,
-            follows,
-            heats: HeatSearch::default(),
-            runaway: None,
-        }
+        Run { problem, settings, watch, stack, history, notes, renewal: Renewal::new(problem) }
     }
 
     /// Ends the cycles on a finer mesh than before, where there is one; all else begins anew.
@@ -148,7 +120,7 @@ impl<'a> Run<'a> {
             return false;
         }
         self.stack = stack;
-        self.heats = HeatSearch::default();
+        self.renewal.restart();
         self.note("the coarsest mesh was too coarse for this flow: begun again on a finer".into());
         true
     }
@@ -251,8 +223,7 @@ impl<'a> Run<'a> {
         let mut fresh = from_rest;
         let mut end = 0.0;
         let mut converged = false;
-        let renewals = if self.follows { FOLLOWING_RENEWALS } else { RENEWALS };
-        for _ in 0..renewals {
+        for _ in 0..self.renewal.most() {
             let mut stop;
             (end, stop) = self.newton(l, target, fresh, 1.0)?;
             if !fresh && end > NESTED_TARGET && stop.is_none() {
@@ -272,14 +243,13 @@ impl<'a> Run<'a> {
                 break;
             }
             converged = false;
-            if self.runaway.is_some() {
+            if self.renewal.ran_away() {
                 break;
             }
         }
-        if !converged && self.runaway.is_none() && self.heats.climbs() {
-            self.runaway = self.given_up(l);
-        }
-        if self.runaway.is_some() {
+        // Heat still on its way up, or up to where no flow was found.
+        let lost = end > NESTED_TARGET && self.renewal.climb().is_some();
+        if lost || (!converged && self.renewal.climbs().is_some()) {
             self.lift_to_finest(l);
             return Ok(Some(StopReason::RanAway));
         }
@@ -403,11 +373,11 @@ impl<'a> Run<'a> {
             let control = (self.watch)(&row);
             self.history.push(row);
             // What follows the result may still be behind it when the residuals are done.
-            let behind = self.follows && largest <= self.settings.tolerance;
+            let behind = self.renewal.follows() && largest <= self.settings.tolerance;
             if finest && !done && (largest < film_check || behind) {
                 film_check = FILM_CHECKS * largest;
                 if self.renew(l, largest) {
-                    if self.runaway.is_some() {
+                    if self.renewal.ran_away() {
                         return Ok(Cycles::RanAway);
                     }
                     acceleration = Acceleration::new();
@@ -477,69 +447,10 @@ impl<'a> Run<'a> {
         (row, scales)
     }
 
-    /// Takes the air's constants at the film temperature of level `l`'s state, and what else
-    /// follows it; true when they changed.
-    ///
-    /// Heats are renewed where the temperatures tell more than the `residual` blurs.
+    /// Renews what follows level `l`'s state, whose residual is known; true when it changed.
     fn renew(&mut self, l: usize, residual: f64) -> bool {
-        let film = self.moved_film(l);
-        let heats = if self.follows { self.next_heats(l, residual) } else { None };
-        let moved = || self.follows && self.outer_moved(l);
-        if film.is_none() && heats.is_none() && !moved() {
-            return false;
-        }
-        let air = film.unwrap_or(self.stack.level(l).air);
-        let heats = heats.unwrap_or_else(|| self.stack.level(l).following.heats.clone());
-        self.stack.set_constants(self.problem, &air, l, &heats);
-        self.stack.pose(l);
-        true
-    }
-
-    /// Other heats to try, when those of level `l` are not what its temperatures ask for.
-    fn next_heats(&mut self, l: usize, residual: f64) -> Option<Vec<f64>> {
-        let problem = self.stack.problem(l).unwrap_or(self.problem);
-        let (used, state) = (&self.stack.level(l).following, self.stack.state(l));
-        let now = Following { heats: block_heats(problem, state), ..Following::default() };
-        if used.heats.is_empty() {
-            return None;
-        }
-        let gap = now.heat_gap(used);
-        let clear = residual <= (HEAT_CLEAR * gap).max(self.settings.tolerance);
-        if !clear || gap * self.heats.amplification() <= HEAT_STANDS {
-            return None;
-        }
-        let behind = now.heats.iter().sum::<f64>() > used.heats.iter().sum();
-        let next = self.heats.next(&used.heats, &now.heats);
-        self.runaway = self.heats.runaway(problem, state, behind);
-        Some(next)
-    }
-
-    /// What is known of heat that still grew when the renewals were used up.
-    fn given_up(&self, l: usize) -> Option<Runaway> {
-        let problem = self.stack.problem(l).unwrap_or(self.problem);
-        let (block, temperature) = hottest(problem, self.stack.state(l))?;
-        Some(Runaway { growth: self.heats.growth?, block, temperature })
-    }
-
-    /// The air at the film temperature of level `l`'s state, when that has moved.
-    fn moved_film(&mut self, l: usize) -> Option<Air> {
-        let d = self.problem.description();
-        let AirModel::Film { pressure } = d.air else { return None };
-        let problem = self.stack.problem(l).unwrap_or(self.problem);
-        let film = film_rise(problem, &self.stack.level(l).air, self.stack.state(l));
-        if !film.is_finite() || (film - self.film).abs() <= FILM_BOUND {
-            return None;
-        }
-        self.film = film;
-        Some(Air::dry(d.ambient + film, pressure))
-    }
-
-    /// Whether the outer faces at level `l`'s state are no longer what its equations hold.
-    fn outer_moved(&self, l: usize) -> bool {
-        let problem = self.stack.problem(l).unwrap_or(self.problem);
-        let (level, state) = (self.stack.level(l), self.stack.state(l));
-        let now = Following::at(problem, &level.air, state);
-        !now.outer_stands(&level.following, problem, state)
+        let tolerance = self.settings.tolerance;
+        self.renewal.renew(&mut self.stack, self.problem, l, residual, tolerance)
     }
 
     /// Carries an unfinished state of a coarser level up to the finest.
@@ -564,18 +475,18 @@ impl<'a> Run<'a> {
     /// The verdict; goes on to another steady flow where the one found is unstable against it.
     fn judge(&mut self, mut stop: StopReason) -> Result<(StopReason, Verdict), SolveError> {
         for _ in 0..BRANCHES {
+            // Heat in balance that would grow at the least disturbance is no answer either.
+            let runaway = match stop {
+                StopReason::Converged => self.renewal.climbs(),
+                StopReason::RanAway | StopReason::Stalled => self.renewal.climb(),
+                _ => None,
+            };
+            if let Some(runaway) = runaway {
+                return Ok((StopReason::RanAway, Verdict::RunsAway(runaway)));
+            }
             let verdict = match stop {
-                // Heat in balance that would grow at the least disturbance is no answer either.
-                StopReason::Converged if self.heats.climbs() => match self.given_up(0) {
-                    Some(runaway) => return Ok((StopReason::RanAway, Verdict::RunsAway(runaway))),
-                    None => Verdict::Settled,
-                },
-                StopReason::RanAway => match self.runaway {
-                    Some(runaway) => return Ok((stop, Verdict::RunsAway(runaway))),
-                    None => Verdict::Drifting,
-                },
                 StopReason::Converged => Verdict::Settled,
-                StopReason::Stalled => Verdict::Drifting,
+                StopReason::Stalled | StopReason::RanAway => Verdict::Drifting,
                 StopReason::IterationLimit | StopReason::Asked => Verdict::StoppedEarly,
             };
             // Only a solution has a stability.
@@ -630,7 +541,7 @@ impl<'a> Run<'a> {
         Solution {
             state: self.stack.state(0).clone(),
             air: self.stack.level(0).air,
-            heat_growth: self.heats.growth.filter(|_| stop != StopReason::RanAway),
+            heat_growth: self.renewal.growth().filter(|_| stop != StopReason::RanAway),
             stop,
             verdict,
             history: self.history,

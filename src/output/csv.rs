@@ -8,8 +8,9 @@ use ventrise_solver::{Progress, Sample};
 
 use crate::case::Case;
 
+use super::outer_heat::OuterHeat;
 use super::readings::Readings;
-use super::summary::{OuterHeat, Summary};
+use super::summary::Summary;
 
 /// A table under construction.
 struct Table(String);
