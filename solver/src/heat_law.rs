@@ -14,7 +14,7 @@ use crate::numbers::block_temperatures;
 use crate::{Problem, State};
 
 /// Steps below this share of the heat say nothing about slopes.
-const LEAST_STEP: f64 = 1e-5;
+const LEAST_STEP: f64 = 1e-3;
 /// Step along a growth of 1 and more, and the largest step, as shares of the heat.
 const CLIMB: f64 = 0.5;
 const LARGEST_STEP: f64 = 1.0;
@@ -96,6 +96,11 @@ impl HeatSearch {
     /// Whether heat grows faster with temperature than it is carried away.
     pub fn climbs(&self) -> bool {
         self.growth.is_some_and(|g| g >= 1.0)
+    }
+
+    /// What comes next is from another mesh or another flow: no slope to what was before.
+    pub fn turn(&mut self) {
+        self.last = None;
     }
 
     /// How far the answer is for each watt that the laws are off: 1/(1 − g).

@@ -30,18 +30,32 @@ pub(crate) struct Renewal {
     /// The latest growth of 1 and more that was seen.
     climb: Option<Runaway>,
     ran_away: bool,
+    /// The level that heats were last looked at on.
+    level: usize,
 }
 
 impl Renewal {
     pub fn new(problem: &Problem) -> Renewal {
         let follows = Following::any(problem);
-        Renewal { film: 0.0, follows, heats: HeatSearch::default(), climb: None, ran_away: false }
+        Renewal {
+            film: 0.0,
+            follows,
+            heats: HeatSearch::default(),
+            climb: None,
+            ran_away: false,
+            level: 0,
+        }
     }
 
     /// Forgets the search for heats, which begins anew.
     pub fn restart(&mut self) {
         self.heats = HeatSearch::default();
         self.ran_away = false;
+    }
+
+    /// Another flow on the same meshes comes next.
+    pub fn turn(&mut self) {
+        self.heats.turn();
     }
 
     /// Renewals on the coarsest mesh at the most.
@@ -134,6 +148,10 @@ impl Renewal {
         let clear = residual <= (HEAT_CLEAR * gap).max(tolerance);
         if !clear || gap * self.heats.amplification() <= HEAT_STANDS {
             return None;
+        }
+        if l != self.level {
+            self.level = l;
+            self.heats.turn();
         }
         let behind = now.heats.iter().sum::<f64>() > used.heats.iter().sum();
         let next = self.heats.next(&used.heats, &now.heats);

@@ -524,6 +524,7 @@ impl<'a> Run<'a> {
 
     /// Solves again, from a state on level `l`.
     fn go_on_from(&mut self, l: usize, state: &State) -> Result<StopReason, SolveError> {
+        self.renewal.turn();
         self.stack.set_state(l, state);
         self.stack.pose(l);
         let coarsest = self.stack.bottom();
