@@ -13,13 +13,14 @@ use ventrise_solver::{
 
 /// Every example with its hottest part, that part's rise [K] and the air drawn in [m³/h] on the
 /// example's own mesh, as its comments state them (0: no air passes).
-const EXAMPLES: [(&str, &str, f64, f64); 10] = [
+const EXAMPLES: [(&str, &str, f64, f64); 11] = [
     ("battery-locker", "pack", 24.6, 2.94),
     ("bench-supplies", "highest sink", 26.6, 3.87),
     ("dry-transformer", "inner winding", 41.3, 1.28),
     ("gateway", "radio chips", 38.0, 0.634),
     ("mast-radio", "radio", 35.3, 2.83),
     ("resistor-tray", "resistors", 33.6, 3.50),
+    ("roadside-box", "converter", 26.7, 0.0),
     ("sensor-box", "electronics", 30.2, 0.0),
     ("sensor-screen", "screen", 8.5, 2.26),
     ("telemetry-pillar", "modem", 22.2, 2.00),
@@ -149,6 +150,11 @@ fn mast_radio() {
 #[test]
 fn resistor_tray() {
     check("resistor-tray");
+}
+
+#[test]
+fn roadside_box() {
+    check("roadside-box");
 }
 
 #[test]

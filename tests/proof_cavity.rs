@@ -195,6 +195,7 @@ fn equal_rayleigh_and_prandtl_give_equal_nusselt_at_any_size() {
         joints: Vec::new(),
         sources: None,
         radiation: None,
+        heat_laws: Vec::new(),
     })
     .unwrap();
     let solution = solved(&problem, 1e-9);

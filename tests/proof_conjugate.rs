@@ -118,6 +118,7 @@ fn two_closed_cavities_share_a_metal_partition() {
         joints: Vec::new(),
         sources: None,
         radiation: None,
+        heat_laws: Vec::new(),
     })
     .unwrap();
     let solution = solved(&problem, 1e-8);

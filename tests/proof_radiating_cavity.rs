@@ -64,6 +64,7 @@ fn nusselt(row: &Row, cells: usize) -> ([f64; 2], [f64; 2], f64) {
         parts: Vec::new(),
         joints: Vec::new(),
         sources: None,
+        heat_laws: Vec::new(),
         radiation: Some(Surfaces {
             blocks: Vec::new(),
             sides: [SideSurface::Wall(row.emissivity); 4],

@@ -58,6 +58,7 @@ fn made_up() -> (Case, Problem, Solution) {
         state,
         air,
         stop: StopReason::Converged,
+        heat_growth: None,
         verdict: Verdict::Settled,
         history: vec![row(1), row(2)],
         notes: vec!["a note of the solver".into()],

@@ -8,7 +8,9 @@
 use ventrise_mesh::{AIR, Side};
 
 use crate::conduction::{side_area, side_cell, side_exchange};
-use crate::{Air, Problem, RadiantHeat, SideCondition, State, radiant_heat};
+use crate::heat_law::block_heats;
+use crate::outer::{Outer, OuterFlow};
+use crate::{Air, Problem, RadiantHeat, SideCondition, State, radiant::radiant_heat_with};
 
 /// Speed below which air counts as being at rest [m/s].
 pub const REST_SPEED: f64 = 1e-12;
@@ -39,6 +41,8 @@ pub struct SideFlow {
     pub conduction: f64,
     /// Air and heat through the side where it is open.
     pub open: OpeningFlow,
+    /// How the conducted heat leaves the outer face, where the side has one.
+    pub outer: Option<OuterFlow>,
 }
 
 impl SideFlow {
@@ -127,10 +131,18 @@ pub fn slot_flows(problem: &Problem, air: &Air, state: &State) -> Vec<OpeningFlo
 /// Conduction (with what a wall takes up by radiation) and open flow through every side outside its
 /// slots, by [`Side::index`].
 pub fn side_flows(problem: &Problem, air: &Air, state: &State) -> [SideFlow; 4] {
-    sides_with(problem, air, state, &radiant_heat(problem, air, &state.t).unwrap_or_default())
+    let outer = Outer::at(problem, air, &state.t);
+    let radiant = radiant_heat_with(problem, air, &outer, &state.t).unwrap_or_default();
+    sides_with(problem, air, state, &outer, &radiant)
 }
 
-fn sides_with(problem: &Problem, air: &Air, state: &State, radiant: &RadiantHeat) -> [SideFlow; 4] {
+fn sides_with(
+    problem: &Problem,
+    air: &Air,
+    state: &State,
+    outer: &Outer,
+    radiant: &RadiantHeat,
+) -> [SideFlow; 4] {
     Side::ALL.map(|side| {
         let slots = problem.mesh().slots(side);
         let is_open = problem.description().sides[side.index()] == SideCondition::Open;
@@ -142,9 +154,10 @@ fn sides_with(problem: &Problem, air: &Air, state: &State, radiant: &RadiantHeat
         } else {
             OpeningFlow::default()
         };
-        let conduction = (0..slots.len()).map(|n| side_face_heat(problem, air, state, side, n));
+        let conduction =
+            (0..slots.len()).map(|n| side_face_heat(problem, air, outer, state, side, n));
         let conduction = conduction.sum::<f64>() + radiant.sides[side.index()];
-        SideFlow { conduction, open }
+        SideFlow { conduction, open, outer: outer.flow(problem, side) }
     })
 }
 
@@ -152,33 +165,41 @@ fn sides_with(problem: &Problem, air: &Air, state: &State, radiant: &RadiantHeat
 pub(crate) fn side_face_heat(
     problem: &Problem,
     air: &Air,
+    outer: &Outer,
     state: &State,
     side: Side,
     n: usize,
 ) -> f64 {
-    let exchange = side_exchange(problem, air, side, n);
+    let exchange = side_exchange(problem, air, outer, side, n);
     let (i, j) = side_cell(problem, side, n);
     let rise = state.t[problem.mesh().cell(i, j)];
     exchange.conductance * (rise - exchange.rise) - exchange.heat
 }
 
 /// Heat and air in against out. Every block, every side's conduction, every open side and every
-/// slot counts as going in or coming out by the sign of its own total.
+/// slot counts as going in or coming out by the sign of its own total; of an outer face its film,
+/// its radiation and the sun each.
 pub fn balance(problem: &Problem, air: &Air, state: &State) -> Balance {
     let d = problem.description();
     let slots = slot_flows(problem, air, state);
-    let radiant = radiant_heat(problem, air, &state.t).unwrap_or_default();
-    let sides = sides_with(problem, air, state, &radiant);
+    let outer = Outer::at(problem, air, &state.t);
+    let radiant = radiant_heat_with(problem, air, &outer, &state.t).unwrap_or_default();
+    let sides = sides_with(problem, air, state, &outer, &radiant);
     let (mut heat_in, mut heat_out) = (0.0, 0.0);
     let mut count_out = |heat: f64| {
         heat_in += (-heat).max(0.0);
         heat_out += heat.max(0.0);
     };
-    d.blocks.iter().for_each(|block| count_out(-block.heat));
+    block_heats(problem, state).iter().for_each(|heat| count_out(-heat));
     if let Some(sources) = &d.sources {
         count_out(-sources.heat.iter().sum::<f64>());
     }
-    sides.iter().for_each(|side| count_out(side.conduction));
+    for side in &sides {
+        match &side.outer {
+            Some(outer) => [outer.film, outer.radiation, -outer.sun].map(&mut count_out),
+            None => [count_out(side.conduction), (), ()],
+        };
+    }
     count_out(radiant.openings);
     let openings = || slots.iter().chain(sides.iter().map(|side| &side.open));
     openings().for_each(|opening| count_out(opening.heat));
@@ -188,7 +209,7 @@ pub fn balance(problem: &Problem, air: &Air, state: &State) -> Balance {
     Balance {
         heat_in,
         heat_out,
-        heat_error: relative_gap(heat_in, heat_out, heat_round_off(problem, air, state)),
+        heat_error: relative_gap(heat_in, heat_out, heat_round_off(problem, air, &outer, state)),
         mass_in: air.density * volume_in,
         mass_out: air.density * volume_out,
         mass_error: relative_gap(volume_in, volume_out, REST_SPEED * area),
@@ -202,13 +223,13 @@ fn relative_gap(a: f64, b: f64, nothing: f64) -> f64 {
 }
 
 /// Size of the heat flows that round-off alone makes at the edge [W].
-fn heat_round_off(problem: &Problem, air: &Air, state: &State) -> f64 {
+fn heat_round_off(problem: &Problem, air: &Air, outer: &Outer, state: &State) -> f64 {
     let mut sum = 0.0;
     for side in Side::ALL {
         for n in 0..problem.mesh().slots(side).len() {
             let (i, j) = side_cell(problem, side, n);
             let rise = state.t[problem.mesh().cell(i, j)].abs();
-            let exchange = side_exchange(problem, air, side, n);
+            let exchange = side_exchange(problem, air, outer, side, n);
             sum += exchange.conductance * (rise + exchange.rise.abs());
         }
     }

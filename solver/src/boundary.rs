@@ -21,8 +21,36 @@ pub enum SideCondition {
         /// Outside temperature [K].
         temperature: f64,
     },
+    /// No-slip wall whose outer face is a surface of its own.
+    Outside(Outside),
     /// Adiabatic no-slip wall sliding along itself (model problems) [m/s], positive along x or y.
     Sliding(f64),
+}
+
+/// The film on an outer face.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub enum OuterFilm {
+    /// A given coefficient [W/(m²·K)].
+    Given(f64),
+    /// Still air, which the side warms: see [`crate::still_air_film`].
+    StillAir,
+}
+
+/// What surrounds the outer face of a side: film · (T_s − air) + radiation − sun leaves there.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Outside {
+    /// The film.
+    pub film: OuterFilm,
+    /// Temperature of the outside air [K].
+    pub air: f64,
+    /// Emissivity of the outer face [-]; 0: it does not radiate.
+    pub emissivity: f64,
+    /// Radiant temperature of the surroundings [K].
+    pub surroundings: f64,
+    /// Heat of the sun that the outer face absorbs [W/m²].
+    pub sun: f64,
+    /// Resistance of the wall between the section's edge and the outer face [K·m²/W].
+    pub wall: f64,
 }
 
 impl SideCondition {

@@ -32,6 +32,7 @@ pub(crate) fn bare(mesh: Mesh) -> Description {
         joints: Vec::new(),
         sources: None,
         radiation: None,
+        heat_laws: Vec::new(),
     }
 }
 

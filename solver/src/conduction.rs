@@ -5,6 +5,7 @@
 
 use ventrise_mesh::{AIR, Side};
 
+use crate::outer::Outer;
 use crate::{Air, Problem, SideCondition};
 
 /// Conductance between two cell centres [W/K], two half cells in series:
@@ -87,19 +88,31 @@ pub(crate) fn side_area(problem: &Problem, side: Side, n: usize) -> f64 {
     }
 }
 
-/// Conduction through boundary face `n` of a side; nothing through slots and open sides.
-pub(crate) fn side_exchange(problem: &Problem, air: &Air, side: Side, n: usize) -> SideExchange {
+/// From the centre of the cell beside boundary face `n` of a side to the face [K·m²/W].
+pub(crate) fn half_resistance(problem: &Problem, air: &Air, side: Side, n: usize) -> f64 {
     let mesh = problem.mesh();
-    let d = problem.description();
-    if mesh.slots(side)[n].is_some() {
-        return SideExchange::default();
-    }
     let (i, j) = side_cell(problem, side, n);
     let k = cell_conductivity(problem, air, mesh.cell(i, j));
-    let half = match side {
+    match side {
         Side::Left | Side::Right => 0.5 * mesh.dx(i) / k[0],
         Side::Bottom | Side::Top => 0.5 * mesh.dy(j) / k[1],
-    };
+    }
+}
+
+/// Conduction through boundary face `n` of a side; nothing through slots and open sides. `outer`
+/// holds the outer faces, where sides have them.
+pub(crate) fn side_exchange(
+    problem: &Problem,
+    air: &Air,
+    outer: &Outer,
+    side: Side,
+    n: usize,
+) -> SideExchange {
+    let d = problem.description();
+    if problem.mesh().slots(side)[n].is_some() {
+        return SideExchange::default();
+    }
+    let half = half_resistance(problem, air, side, n);
     let area = side_area(problem, side, n);
     match d.sides[side.index()] {
         SideCondition::Temperature(t) => {
@@ -110,6 +123,9 @@ pub(crate) fn side_exchange(problem: &Problem, air: &Air, side: Side, n: usize) 
             rise: temperature - d.ambient,
             heat: 0.0,
         },
+        SideCondition::Outside(_) => {
+            outer.face(side, n).map_or_else(SideExchange::default, |face| face.exchange)
+        }
         SideCondition::Flux(q) => SideExchange { heat: q * area, ..Default::default() },
         _ => SideExchange::default(),
     }

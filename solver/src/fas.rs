@@ -9,6 +9,7 @@
 //! brandt-1977 (full approximation scheme), van-doormaal-1984 (SIMPLEC).
 
 use crate::acceleration::Acceleration;
+use crate::following::Following;
 use crate::level::Level;
 use crate::linear::multigrid::Link;
 use crate::newton::{Aim, Newton};
@@ -84,14 +85,38 @@ impl Stack {
         Stack { levels, coarse_problems, transfers, work, bottom, newton, smoothing }
     }
 
-    /// Takes other constants for the air on every mesh.
-    pub fn set_air(&mut self, problem: &Problem, air: &Air) {
-        for (l, level) in self.levels.iter_mut().enumerate() {
+    /// Takes other constants for the air and `heats` of the blocks on every mesh, and what else
+    /// follows the state of level `from`.
+    pub fn set_constants(&mut self, problem: &Problem, air: &Air, from: usize, heats: &[f64]) {
+        let mut following = self.following(problem, air, from);
+        following.iter_mut().for_each(|f| f.heats = heats.to_vec());
+        for ((l, level), following) in self.levels.iter_mut().enumerate().zip(following) {
             let problem = if l == 0 { problem } else { &self.coarse_problems[l - 1] };
             let slack = level.slack;
-            *level = Level::new(problem, air, level.convection);
+            *level = Level::with(problem, air, level.convection, following);
             level.slack = slack;
         }
+    }
+
+    /// What follows the state of level `from`, on every mesh: on coarser ones with the state
+    /// restricted, on finer ones, whose state is not known, with what it is on the whole.
+    fn following(&self, problem: &Problem, air: &Air, from: usize) -> Vec<Following> {
+        if !Following::any(problem) {
+            return vec![Following::default(); self.levels.len()];
+        }
+        let of = |l: usize| self.problem(l).unwrap_or(problem);
+        let mut state = self.work[from].state.clone();
+        let known = Following::at(of(from), air, &state);
+        let mut all: Vec<Following> = (0..from).map(|l| known.carried(of(l), air)).collect();
+        all.push(known);
+        for l in from..self.levels.len() - 1 {
+            let mut coarse = self.work[l + 1].state.clone();
+            let levels = (&self.levels[l], &self.levels[l + 1]);
+            self.transfers[l].restrict_state(levels.0, levels.1, &state, &mut coarse);
+            all.push(Following::at(of(l + 1), air, &coarse));
+            state = coarse;
+        }
+        all
     }
 
     /// Number of meshes.

@@ -4,6 +4,7 @@ use ventrise_mesh::Side;
 
 use crate::balance::slot_flows;
 use crate::conduction::{side_area, side_cell, side_exchange, x_conductance, y_conductance};
+use crate::outer::Outer;
 use crate::{Air, Problem, State};
 
 /// Heat and heat-weighted temperature of the places where air takes up or gives off heat.
@@ -66,6 +67,7 @@ pub(crate) fn film_rise(problem: &Problem, air: &Air, state: &State) -> f64 {
             }
         }
     }
+    let outer = Outer::at(problem, air, &state.t);
     for side in Side::ALL {
         for face in 0..mesh.slots(side).len() {
             let (i, j) = side_cell(problem, side, face);
@@ -73,7 +75,7 @@ pub(crate) fn film_rise(problem: &Problem, air: &Air, state: &State) -> f64 {
             if !fluid(n) {
                 continue;
             }
-            let exchange = side_exchange(problem, air, side, face);
+            let exchange = side_exchange(problem, air, &outer, side, face);
             let heat = exchange.conductance * (exchange.rise - state.t[n]) + exchange.heat;
             let distance = match side {
                 Side::Left | Side::Right => mesh.dx(i),

@@ -13,6 +13,7 @@
 use ventrise_mesh::{AIR, Geometry, Side};
 
 use crate::conduction::{side_area, side_cell, side_exchange, x_conductance, y_conductance};
+use crate::following::Following;
 use crate::radiant::Radiant;
 use crate::{Air, Convection, Problem, SideCondition, State};
 
@@ -41,6 +42,8 @@ pub(crate) struct Level {
     pub nx: usize,
     pub ny: usize,
     pub air: Air,
+    /// What else follows the result.
+    pub following: Following,
     pub gravity: [f64; 2],
     pub convection: Convection,
     /// Inverse of the largest flow over conductance of a face [-]; beyond that diffusion is added.
@@ -106,7 +109,17 @@ pub(crate) struct Edge {
 }
 
 impl Level {
+    /// Before anything is known of the result.
     pub fn new(problem: &Problem, air: &Air, convection: Convection) -> Level {
+        Level::with(problem, air, convection, Following::guess(problem))
+    }
+
+    pub fn with(
+        problem: &Problem,
+        air: &Air,
+        convection: Convection,
+        following: Following,
+    ) -> Level {
         let mesh = problem.mesh();
         let d = problem.description();
         let (nx, ny) = (mesh.nx(), mesh.ny());
@@ -194,7 +207,8 @@ impl Level {
             source: State::rest(mesh),
             closed_regions: Vec::new(),
             heat_in: 0.0,
-            radiant: Radiant::new(problem, air),
+            radiant: Radiant::new(problem, air, &following.outer),
+            following,
             fluid,
         };
         level.set_viscous(problem);
@@ -354,6 +368,8 @@ impl Level {
                 self.y_conductance[i + j * nx] = y_conductance(problem, &self.air, i, j);
             }
         }
+        let followed = self.following.heats.clone();
+        let heat = |block: usize| followed.get(block).copied().unwrap_or(d.blocks[block].heat);
         let mut volumes = vec![0.0; d.blocks.len()];
         for j in 0..ny {
             for i in 0..nx {
@@ -377,13 +393,13 @@ impl Level {
                 let region = mesh.regions()[n];
                 if region != AIR {
                     let block = region as usize;
-                    self.source.t[n] += d.blocks[block].heat * mesh.volume(i, j) / volumes[block];
+                    self.source.t[n] += heat(block) * mesh.volume(i, j) / volumes[block];
                 }
             }
         }
         for side in Side::ALL {
             for n in 0..mesh.slots(side).len() {
-                let exchange = side_exchange(problem, &self.air, side, n);
+                let exchange = side_exchange(problem, &self.air, &self.following.outer, side, n);
                 let (i, j) = side_cell(problem, side, n);
                 let cell = i + j * nx;
                 self.side_conductance[cell] += exchange.conductance;
@@ -399,7 +415,7 @@ impl Level {
         if let Some(s) = &d.sources {
             add(&mut self.source.t, &s.heat);
         }
-        self.heat_in = d.blocks.iter().map(|b| b.heat.abs()).sum();
+        self.heat_in = (0..d.blocks.len()).map(|b| heat(b).abs()).sum();
     }
 }
 

@@ -15,16 +15,20 @@ mod equations;
 mod error;
 mod fas;
 mod film;
+mod following;
+mod heat_law;
 mod level;
 mod linear;
 mod newton;
 mod numbers;
+mod outer;
 mod par;
 mod pieces;
 mod probe;
 mod problem;
 mod radiant;
 mod radiation;
+mod renewal;
 mod residual;
 pub mod samples;
 mod settings;
@@ -33,19 +37,22 @@ mod solution;
 mod solve;
 mod stability;
 mod state;
+mod still_air;
 mod sway;
 mod transfer;
 mod transient;
 
 pub use air::{Air, AirModel, standard_pressure};
 pub use balance::{Balance, OpeningFlow, REST_SPEED, SideFlow, balance, side_flows, slot_flows};
-pub use boundary::{SideCondition, Slot};
+pub use boundary::{OuterFilm, Outside, SideCondition, Slot};
 pub use contacts::{Contact, contacts};
 pub use error::{ProblemError, SolveError};
+pub use heat_law::{HeatLaw, Runaway, block_heats};
 pub use numbers::{
     Numbers, PartTemperature, block_temperatures, cell_velocities, heat_fluxes, numbers,
     part_temperatures,
 };
+pub use outer::OuterFlow;
 pub use pieces::Pieces;
 pub use probe::{Sample, Sampler};
 pub use problem::{Block, Description, Joint, Problem, Solid, Sources};
@@ -58,3 +65,4 @@ pub use settings::{Convection, DRIFT_BOUND, HEAT_BOUND, MASS_BOUND, SOLVED, Sett
 pub use solution::{Control, Progress, Residuals, Solution, StopReason, Verdict};
 pub use solve::solve;
 pub use state::State;
+pub use still_air::{Facing, still_air_film};

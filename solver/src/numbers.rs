@@ -4,6 +4,7 @@ use ventrise_mesh::{AIR, Side};
 
 use crate::balance::{side_face_heat, slot_flows};
 use crate::conduction::{side_area, side_cell, x_conductance, y_conductance};
+use crate::outer::Outer;
 use crate::{Air, Problem, SideCondition, State};
 
 /// Temperatures of a group of blocks, as rises above ambient, and its heat.
@@ -105,9 +106,10 @@ pub fn cell_velocities(problem: &Problem, state: &State) -> Vec<[f64; 2]> {
 pub fn heat_fluxes(problem: &Problem, air: &Air, state: &State) -> Vec<[f64; 2]> {
     let mesh = problem.mesh();
     let (nx, ny) = (mesh.nx(), mesh.ny());
+    let outer = Outer::at(problem, air, &state.t);
     let edge = |side: Side, n: usize| {
         let area = side_area(problem, side, n);
-        let out = side_face_heat(problem, air, state, side, n);
+        let out = side_face_heat(problem, air, &outer, state, side, n);
         let outward = if matches!(side, Side::Left | Side::Bottom) { -1.0 } else { 1.0 };
         if area > 0.0 { outward * out / area } else { 0.0 } // the axis has no area
     };

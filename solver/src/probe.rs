@@ -10,6 +10,7 @@ use ventrise_mesh::{AIR, Side};
 
 use crate::balance::side_face_heat;
 use crate::conduction::{cell_conductivity, side_area};
+use crate::outer::Outer;
 use crate::{Air, Problem, SideCondition, State};
 
 /// The fields at one place.
@@ -35,11 +36,12 @@ impl Sample {
 }
 
 /// Reads values off a solution.
-#[derive(Debug, Clone, Copy)]
+#[derive(Debug, Clone)]
 pub struct Sampler<'a> {
     problem: &'a Problem,
     air: &'a Air,
     state: &'a State,
+    outer: Outer,
 }
 
 /// A place within its cell: offsets from the centre in half cells, −1 to 1.
@@ -51,7 +53,8 @@ struct Place {
 impl<'a> Sampler<'a> {
     /// A sampler of a solution's fields.
     pub fn new(problem: &'a Problem, air: &'a Air, state: &'a State) -> Self {
-        Sampler { problem, air, state }
+        let outer = Outer::at(problem, air, &state.t);
+        Sampler { problem, air, state, outer }
     }
 
     /// The fields at a place [m]; `None` outside the section.
@@ -143,7 +146,7 @@ impl<'a> Sampler<'a> {
     fn side_rise(&self, side: Side, n: usize, (i, j): (usize, usize), axis: usize) -> f64 {
         let rise = self.state.t[self.problem.mesh().cell(i, j)];
         let area = side_area(self.problem, side, n);
-        let out = side_face_heat(self.problem, self.air, self.state, side, n);
+        let out = side_face_heat(self.problem, self.air, &self.outer, self.state, side, n);
         if area > 0.0 { rise - out / area / self.half_conductance(i, j, axis) } else { rise }
     }
 

@@ -3,7 +3,10 @@
 use ventrise_mesh::{AIR, Coarsening, Geometry, Mesh, Side};
 
 use crate::radiant::RadiantMap;
-use crate::{AirModel, PATCH_COUNT, ProblemError, Radiation, SideCondition, Slot, Surfaces};
+use crate::{
+    AirModel, HeatLaw, OuterFilm, PATCH_COUNT, ProblemError, Radiation, SideCondition, Slot,
+    Surfaces,
+};
 
 /// A solid material.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -119,6 +122,8 @@ pub struct Description {
     pub parts: Vec<Vec<usize>>,
     /// Joints between touching blocks.
     pub joints: Vec<Joint>,
+    /// Heat that follows its block's temperature; a block has one law at most.
+    pub heat_laws: Vec<HeatLaw>,
     /// Extra sources, for manufactured solutions.
     pub sources: Option<Sources>,
     /// How the surfaces radiate; nothing: radiation is not modelled.
@@ -213,6 +218,21 @@ fn check(d: &Description) -> Result<(), ProblemError> {
         }
         number("heat", block.heat, true, "finite")?;
     }
+    for law in &d.heat_laws {
+        let count = d.blocks.len();
+        if law.block >= count {
+            return Err(ProblemError::Index { what: "block", index: law.block, count });
+        }
+        let points = law.points.len();
+        number("points of a heat law", points as f64, points >= 2, "two or more")?;
+        for [t, q] in &law.points {
+            number("temperature", *t, *t > 0.0, "positive")?;
+            number("heat", *q, *q >= 0.0, "zero or more")?;
+        }
+        for pair in law.points.windows(2) {
+            number("temperature", pair[1][0], pair[1][0] > pair[0][0], "rising")?;
+        }
+    }
     for joint in &d.joints {
         let r = joint.resistance;
         number("joint resistance", r, r >= 0.0, "zero or more")?;
@@ -249,12 +269,26 @@ fn check(d: &Description) -> Result<(), ProblemError> {
                 number("film coefficient", coefficient, coefficient > 0.0, "positive")?;
                 number("temperature", temperature, temperature > 0.0, "positive")?;
             }
+            SideCondition::Outside(o) => {
+                if let OuterFilm::Given(h) = o.film {
+                    number("film coefficient", h, h > 0.0, "positive")?;
+                }
+                number("temperature", o.air, o.air > 0.0, "positive")?;
+                number("temperature", o.surroundings, o.surroundings > 0.0, "positive")?;
+                let good = (0.0..=1.0).contains(&o.emissivity);
+                number("emissivity", o.emissivity, good, "from 0 to 1")?;
+                number("sun", o.sun, o.sun >= 0.0, "zero or more")?;
+                number("wall resistance", o.wall, o.wall >= 0.0, "zero or more")?;
+            }
             SideCondition::Sliding(u) => number("speed", u, true, "finite")?,
             _ => {}
         }
         way_out |= matches!(
             side,
-            SideCondition::Open | SideCondition::Temperature(_) | SideCondition::Film { .. }
+            SideCondition::Open
+                | SideCondition::Temperature(_)
+                | SideCondition::Film { .. }
+                | SideCondition::Outside(_)
         );
     }
     if way_out { Ok(()) } else { Err(ProblemError::NoWayOut) }

@@ -17,6 +17,7 @@ use std::sync::Arc;
 use ventrise_mesh::{Coarsening, Mesh, Side};
 
 use crate::conduction::cell_conductivity;
+use crate::outer::Outer;
 use crate::radiation::emissive_power;
 use crate::{Air, Backing, Owner, Problem, Radiation, STEFAN_BOLTZMANN, SideCondition};
 
@@ -148,7 +149,7 @@ pub struct RadiantHeat {
 }
 
 impl Radiant {
-    pub fn new(problem: &Problem, air: &Air) -> Option<Radiant> {
+    pub fn new(problem: &Problem, air: &Air, outer: &Outer) -> Option<Radiant> {
         let map = problem.radiant()?;
         let d = problem.description();
         let patches = map.radiation.patches();
@@ -170,11 +171,16 @@ impl Radiant {
                         let k = if f.upright { k[0] } else { k[1] };
                         (k * f.area / half(cell, f.upright), Some(cell), None, 0.0)
                     }
-                    Backing::Edge { side, .. } => {
+                    Backing::Edge { side, n } => {
                         let (g, t) = match d.sides[side.index()] {
                             SideCondition::Temperature(t) => (f64::INFINITY, t),
                             SideCondition::Film { coefficient, temperature } => {
                                 (coefficient * f.area, temperature)
+                            }
+                            SideCondition::Outside(_) => {
+                                outer.face(side, n).map_or((0.0, d.ambient), |o| {
+                                    (o.behind * f.area, d.ambient + o.exchange.rise)
+                                })
                             }
                             _ => (0.0, d.ambient),
                         };
@@ -247,6 +253,20 @@ impl Radiant {
         }
     }
 
+    /// Heat that the section's sides take up at their edge [W] at the cells' rises `t`; by
+    /// [`Side::index`] and face.
+    pub fn taken_up_at_sides(&self, problem: &Problem, t: &[f64]) -> [Vec<f64>; 4] {
+        let mut taken = Side::ALL.map(|side| vec![0.0; problem.mesh().slots(side).len()]);
+        let heat = self.patches(t).heat;
+        let faces = problem.radiant().map_or(&[][..], |map| &map.faces);
+        for (face, c) in faces.iter().zip(&self.couplings) {
+            if let Backing::Edge { side, n } = face.backing {
+                taken[side.index()][n] -= c.part * heat[c.patch];
+            }
+        }
+        taken
+    }
+
     /// Calls `each(air cell, solid cell, share of the solid, film [W/K])`: a change of the face's
     /// unradiated temperature changes its heat by the film times that change, other faces kept.
     pub fn films(&self, patches: &Patches, mut each: impl FnMut(usize, Option<usize>, f64, f64)) {
@@ -263,7 +283,17 @@ impl Radiant {
 
 /// Heat carried by radiation in a state; `None` where it is not modelled.
 pub fn radiant_heat(problem: &Problem, air: &Air, t: &[f64]) -> Option<RadiantHeat> {
-    let radiant = Radiant::new(problem, air)?;
+    radiant_heat_with(problem, air, &Outer::at(problem, air, t), t)
+}
+
+/// The same with the outer faces known.
+pub(crate) fn radiant_heat_with(
+    problem: &Problem,
+    air: &Air,
+    outer: &Outer,
+    t: &[f64],
+) -> Option<RadiantHeat> {
+    let radiant = Radiant::new(problem, air, outer)?;
     let heat = radiant.patches(t).heat;
     let blocks = problem.description().blocks.len();
     let mut found = RadiantHeat { blocks: vec![0.0; blocks], ..RadiantHeat::default() };

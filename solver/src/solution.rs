@@ -1,6 +1,6 @@
 //! What a run ends with.
 
-use crate::{Air, State};
+use crate::{Air, Runaway, State};
 
 /// Residuals relative to their scales [-].
 #[derive(Debug, Clone, Copy, PartialEq, Default)]
@@ -66,6 +66,8 @@ pub enum StopReason {
     Stalled,
     /// The caller said stop.
     Asked,
+    /// Heat that follows its block's temperature grows without end.
+    RanAway,
 }
 
 /// Physics and numerics in one word.
@@ -84,6 +86,8 @@ pub enum Verdict {
         /// Lowest and highest net flow in through every slot [m³/s] over them.
         slot_band: Vec<[f64; 2]>,
     },
+    /// No steady answer: heat grows faster with temperature than it is carried away.
+    RunsAway(Runaway),
     /// Temperatures still creep.
     Drifting,
     /// The limit or the caller ended it.
@@ -103,6 +107,8 @@ pub struct Solution {
     pub verdict: Verdict,
     /// One row per outer iteration.
     pub history: Vec<Progress>,
+    /// Where heat follows temperature: what one watt more makes more [-], below 1.
+    pub heat_growth: Option<f64>,
     /// Sentences worth telling (fallbacks taken, ...).
     pub notes: Vec<String>,
 }

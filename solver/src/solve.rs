@@ -3,8 +3,8 @@
 use crate::acceleration::Acceleration;
 use crate::balance::balance;
 use crate::fas::{COARSEST_CELLS, Stack};
-use crate::film::film_rise;
 use crate::numbers::part_temperatures;
+use crate::renewal::Renewal;
 use crate::residual::Scales;
 use crate::settings::{DRIFT_BOUND, HEAT_BOUND, MASS_BOUND, SOLVED};
 use crate::simplec::Smoothing;
@@ -25,8 +25,6 @@ const BRANCHES: usize = 4;
 /// Building up the sources: first share, largest and smallest factor between shares, most steps.
 const BUILD_UP: [f64; 3] = [1.0 / 1024.0, 8.0, 1.05];
 const BUILD_UP_STEPS: usize = 30;
-/// The air's constants are renewed while the film temperature moves by more than this [K].
-const FILM_BOUND: f64 = 0.02;
 /// Residual at which the film temperature of the finest mesh is first taken, and the reduction
 /// after which it is taken again.
 const FIRST_FILM_CHECK: f64 = 3e-2;
@@ -83,7 +81,7 @@ struct Run<'a> {
     stack: Stack,
     history: Vec<Progress>,
     notes: Vec<String>,
-    film: f64,
+    renewal: Renewal,
 }
 
 /// How the cycles on one mesh ended.
@@ -92,6 +90,7 @@ enum Cycles {
     Limit,
     Asked,
     Stalled,
+    RanAway,
     Broke { field: &'static str, cell: usize },
 }
 
@@ -108,7 +107,8 @@ impl<'a> Run<'a> {
             AirModel::Film { pressure } => Air::dry(d.ambient, pressure),
         };
         let stack = Stack::new(problem, &air, settings.convection, coarsest_cells);
-        Run { problem, settings, watch, stack, history: Vec::new(), notes: Vec::new(), film: 0.0 }
+        let (history, notes) = (Vec::new(), Vec::new());
+        Run { problem, settings, watch, stack, history, notes, renewal: Renewal::new(problem) }
     }
 
     /// Ends the cycles on a finer mesh than before, where there is one; all else begins anew.
@@ -120,6 +120,7 @@ impl<'a> Run<'a> {
             return false;
         }
         self.stack = stack;
+        self.renewal.restart();
         self.note("the coarsest mesh was too coarse for this flow: begun again on a finer".into());
         true
     }
@@ -139,7 +140,7 @@ impl<'a> Run<'a> {
             }
             // What a coarser mesh could not solve is no start for a finer one.
             from_rest = end > NESTED_TARGET;
-            self.renew_air(l);
+            self.renew(l, f64::INFINITY);
         }
         if !from_rest {
             self.stack.start_from_coarser(bottom);
@@ -174,9 +175,12 @@ impl<'a> Run<'a> {
                 }
                 Cycles::Stalled if l == 0 => return Ok(StopReason::Stalled),
                 Cycles::Limit if l == 0 => return Ok(StopReason::IterationLimit),
+                Cycles::RanAway => return Ok(StopReason::RanAway),
                 _ => {}
             }
-            self.renew_air(l);
+            if l > 0 {
+                self.renew(l, f64::INFINITY);
+            }
         }
         Ok(StopReason::Converged)
     }
@@ -189,7 +193,7 @@ impl<'a> Run<'a> {
             let ended = self.start_bottom(0, false)?;
             return Ok(ended.unwrap_or(StopReason::Converged));
         }
-        self.renew_air(0);
+        self.renew(0, f64::INFINITY);
         self.finest()
     }
 
@@ -200,6 +204,7 @@ impl<'a> Run<'a> {
             Cycles::Limit => Ok(StopReason::IterationLimit),
             Cycles::Asked => Ok(StopReason::Asked),
             Cycles::Stalled => Ok(StopReason::Stalled),
+            Cycles::RanAway => Ok(StopReason::RanAway),
             Cycles::Broke { .. } => {
                 self.note("the given start diverged: started again from rest".into());
                 self.start_from_rest()
@@ -207,7 +212,7 @@ impl<'a> Run<'a> {
         }
     }
 
-    /// Newton's method on the coarsest mesh of the cycles, with the film temperature.
+    /// Newton's method on the coarsest mesh of the cycles, with what follows the result.
     fn start_bottom(
         &mut self,
         l: usize,
@@ -218,7 +223,7 @@ impl<'a> Run<'a> {
         let mut fresh = from_rest;
         let mut end = 0.0;
         let mut converged = false;
-        for _ in 0..8 {
+        for _ in 0..self.renewal.most() {
             let mut stop;
             (end, stop) = self.newton(l, target, fresh, 1.0)?;
             if !fresh && end > NESTED_TARGET && stop.is_none() {
@@ -234,10 +239,19 @@ impl<'a> Run<'a> {
             }
             fresh = false;
             converged = end <= self.settings.tolerance.max(target);
-            if !self.renew_air(l) {
+            if !self.renew(l, end) {
                 break;
             }
             converged = false;
+            if self.renewal.ran_away() {
+                break;
+            }
+        }
+        // Heat still on its way up, or up to where no flow was found.
+        let lost = end > NESTED_TARGET && self.renewal.climb().is_some();
+        if lost || (!converged && self.renewal.climbs().is_some()) {
+            self.lift_to_finest(l);
+            return Ok(Some(StopReason::RanAway));
         }
         if finest {
             let parts = highest(self.problem, self.stack.state(l));
@@ -358,15 +372,20 @@ impl<'a> Run<'a> {
             let done = if finest { self.within_bounds(&row) } else { largest < NESTED_TARGET };
             let control = (self.watch)(&row);
             self.history.push(row);
-            if finest && !done && largest < film_check {
+            // What follows the result may still be behind it when the residuals are done.
+            let behind = self.renewal.follows() && largest <= self.settings.tolerance;
+            if finest && !done && (largest < film_check || behind) {
                 film_check = FILM_CHECKS * largest;
-                if self.renew_air(l) {
+                if self.renew(l, largest) {
+                    if self.renewal.ran_away() {
+                        return Ok(Cycles::RanAway);
+                    }
                     acceleration = Acceleration::new();
                     continue;
                 }
             }
             if done {
-                if !(finest && self.renew_air(l)) {
+                if !(finest && self.renew(l, largest)) {
                     return Ok(Cycles::Reached);
                 }
                 acceleration = Acceleration::new();
@@ -428,20 +447,10 @@ impl<'a> Run<'a> {
         (row, scales)
     }
 
-    /// Takes the air's constants at the film temperature of level `l`'s state; true when they
-    /// changed.
-    fn renew_air(&mut self, l: usize) -> bool {
-        let d = self.problem.description();
-        let AirModel::Film { pressure } = d.air else { return false };
-        let problem = self.stack.problem(l).unwrap_or(self.problem);
-        let film = film_rise(problem, &self.stack.level(l).air, self.stack.state(l));
-        if !film.is_finite() || (film - self.film).abs() <= FILM_BOUND {
-            return false;
-        }
-        self.film = film;
-        self.stack.set_air(self.problem, &Air::dry(d.ambient + film, pressure));
-        self.stack.pose(l);
-        true
+    /// Renews what follows level `l`'s state, whose residual is known; true when it changed.
+    fn renew(&mut self, l: usize, residual: f64) -> bool {
+        let tolerance = self.settings.tolerance;
+        self.renewal.renew(&mut self.stack, self.problem, l, residual, tolerance)
     }
 
     /// Carries an unfinished state of a coarser level up to the finest.
@@ -466,9 +475,18 @@ impl<'a> Run<'a> {
     /// The verdict; goes on to another steady flow where the one found is unstable against it.
     fn judge(&mut self, mut stop: StopReason) -> Result<(StopReason, Verdict), SolveError> {
         for _ in 0..BRANCHES {
+            // Heat in balance that would grow at the least disturbance is no answer either.
+            let runaway = match stop {
+                StopReason::Converged => self.renewal.climbs(),
+                StopReason::RanAway | StopReason::Stalled => self.renewal.climb(),
+                _ => None,
+            };
+            if let Some(runaway) = runaway {
+                return Ok((StopReason::RanAway, Verdict::RunsAway(runaway)));
+            }
             let verdict = match stop {
                 StopReason::Converged => Verdict::Settled,
-                StopReason::Stalled => Verdict::Drifting,
+                StopReason::Stalled | StopReason::RanAway => Verdict::Drifting,
                 StopReason::IterationLimit | StopReason::Asked => Verdict::StoppedEarly,
             };
             // Only a solution has a stability.
@@ -506,6 +524,7 @@ impl<'a> Run<'a> {
 
     /// Solves again, from a state on level `l`.
     fn go_on_from(&mut self, l: usize, state: &State) -> Result<StopReason, SolveError> {
+        self.renewal.turn();
         self.stack.set_state(l, state);
         self.stack.pose(l);
         let coarsest = self.stack.bottom();
@@ -523,6 +542,7 @@ impl<'a> Run<'a> {
         Solution {
             state: self.stack.state(0).clone(),
             air: self.stack.level(0).air,
+            heat_growth: self.renewal.growth().filter(|_| stop != StopReason::RanAway),
             stop,
             verdict,
             history: self.history,

@@ -6,6 +6,7 @@
 
 use ventrise_mesh::AIR;
 
+use crate::following::Following;
 use crate::level::Level;
 use crate::linear::multigrid::Link;
 use crate::simplec::{self, Smoothing, Work};
@@ -40,7 +41,7 @@ pub(crate) struct Transient {
 impl Transient {
     /// From a state at rest in time, with steps of `step` [s].
     pub fn new(problem: &Problem, air: &Air, scheme: Convection, start: &State, step: f64) -> Self {
-        let mut level = Level::new(problem, air, scheme);
+        let mut level = Level::with(problem, air, scheme, Following::at(problem, air, start));
         let (nx, ny) = (level.nx, level.ny);
         let density = air.density / step;
         let mut rate = start.clone();

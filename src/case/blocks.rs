@@ -2,7 +2,11 @@
 
 use std::ops::Range;
 
+use ventrise_solver::HeatLaw;
+
 use super::error::{CaseError, Cause};
+use super::heat::{read_curve, read_junction, read_limit};
+use super::model::{Ambient, HeatCurve, Junction, LimitAt};
 use super::parse::{Located, Reader, Scope};
 use super::units::Dimension;
 use super::vocabulary::{BLOCK, REPEAT};
@@ -23,7 +27,10 @@ pub(super) struct Draft {
     pub x: Option<Located<[f64; 2]>>,
     pub y: Option<Located<[f64; 2]>>,
     pub heat: f64,
+    pub curve: Option<HeatCurve>,
+    pub junction: Option<Junction>,
     pub limit: Option<Located<f64>>,
+    pub limit_at: LimitAt,
     pub emissivity: Option<f64>,
     pub repeat: Option<Repeat>,
 }
@@ -38,12 +45,16 @@ pub(super) struct Repeat {
 }
 
 /// Reads the `[[block]]` tables.
-pub(super) fn read_blocks(reader: &mut Reader, top: &Scope) -> Vec<Draft> {
+pub(super) fn read_blocks(
+    reader: &mut Reader,
+    top: &Scope,
+    ambient: Option<&Ambient>,
+) -> Vec<Draft> {
     let scopes = reader.tables(top, "block");
-    scopes.into_iter().map(|scope| read_block(reader, scope)).collect()
+    scopes.into_iter().map(|scope| read_block(reader, scope, ambient)).collect()
 }
 
-fn read_block(reader: &mut Reader, mut scope: Scope) -> Draft {
+fn read_block(reader: &mut Reader, mut scope: Scope, ambient: Option<&Ambient>) -> Draft {
     let name = reader.text(&scope, "name");
     if let Some(name) = &name {
         scope.place = format!("block \"{}\"", name.value);
@@ -70,7 +81,9 @@ fn read_block(reader: &mut Reader, mut scope: Scope) -> Draft {
             reader.warn(&scope, heat.span.clone(), "heat below zero: the block is cooled");
         }
     }
-    let limit = reader.temperature(&scope, "limit");
+    let curve = read_curve(reader, &scope, heat.as_ref());
+    let junction = read_junction(reader, &scope);
+    let (limit, limit_at) = read_limit(reader, &scope);
     if let Some(limit) = &limit
         && !scope.has("name")
         && !scope.has("part")
@@ -89,8 +102,17 @@ fn read_block(reader: &mut Reader, mut scope: Scope) -> Draft {
         material,
         x,
         y,
-        heat: heat.map_or(0.0, |h| h.value),
+        heat: match (&curve, heat) {
+            (Some(HeatCurve::Points(points)), _) => {
+                let law = HeatLaw { block: 0, points: points.clone() };
+                law.heat(ambient.map_or(points[0][0], |a| a.temperature))
+            }
+            (_, heat) => heat.map_or(0.0, |h| h.value),
+        },
+        curve,
+        junction,
         limit,
+        limit_at,
         emissivity,
         repeat,
     }

@@ -9,7 +9,7 @@ use super::blocks::Draft;
 use super::edge::{ProbeDraft, Sides, SlotDraft};
 use super::error::{CaseError, Cause, nearest};
 use super::materials;
-use super::model::{Block, Case, Material, Part, ProbeShape, Section, Slot, side_name};
+use super::model::{Block, Case, LimitAt, Material, Part, ProbeShape, Section, Slot, side_name};
 use super::overlap;
 use super::parse::{Located, Reader, Scope};
 use super::units::rounded;
@@ -58,8 +58,10 @@ pub(super) fn assemble(
         let part_name = draft.part.as_ref().or(draft.name.as_ref()).map(|n| n.value.clone());
         let part = part_name.map(|name| {
             *parts.entry(name.clone()).or_insert_with(|| {
-                let limit = limits.get(&name).copied();
-                bodies.parts.push(Part { name, blocks: Vec::new(), limit, heat: 0.0 });
+                let (limit, limit_at) = limits
+                    .get(&name)
+                    .map_or((None, LimitAt::Part), |(limit, at)| (Some(*limit), *at));
+                bodies.parts.push(Part { name, blocks: Vec::new(), limit, limit_at, heat: 0.0 });
                 bodies.parts.len() - 1
             })
         });
@@ -95,6 +97,8 @@ pub(super) fn assemble(
                     material: material.unwrap_or(0),
                     part,
                     heat: draft.heat,
+                    curve: draft.curve.clone(),
+                    junction: draft.junction,
                     emissivity: draft.emissivity,
                 },
                 place,
@@ -139,14 +143,14 @@ fn names(reader: &mut Reader, drafts: &[Draft]) {
 }
 
 /// The limit of every part; reported when two blocks of one part disagree.
-fn limits(reader: &mut Reader, drafts: &[Draft]) -> HashMap<String, f64> {
-    let mut limits: HashMap<String, (f64, String)> = HashMap::new();
+fn limits(reader: &mut Reader, drafts: &[Draft]) -> HashMap<String, (f64, LimitAt)> {
+    let mut limits: HashMap<String, ((f64, LimitAt), String)> = HashMap::new();
     for draft in drafts {
         let Some(part) = draft.part.as_ref().or(draft.name.as_ref()) else { continue };
         let Some(limit) = &draft.limit else { continue };
         let typed = reader.typed(&limit.span);
         match limits.get(&part.value) {
-            Some((other, other_typed)) if *other != limit.value => {
+            Some((other, other_typed)) if *other != (limit.value, draft.limit_at) => {
                 let message = format!(
                     "limit = {typed}, but another block of part \"{}\" has limit = {other_typed}",
                     part.value
@@ -157,11 +161,26 @@ fn limits(reader: &mut Reader, drafts: &[Draft]) -> HashMap<String, f64> {
             }
             Some(_) => {}
             None => {
-                limits.insert(part.value.clone(), (limit.value, typed));
+                junction_in(reader, drafts, draft, &part.value);
+                limits.insert(part.value.clone(), ((limit.value, draft.limit_at), typed));
             }
         }
     }
     limits.into_iter().map(|(part, (limit, _))| (part, limit)).collect()
+}
+
+/// Reports a limit at a junction that no block of the part has.
+fn junction_in(reader: &mut Reader, drafts: &[Draft], draft: &Draft, part: &str) {
+    let belongs = |d: &&Draft| d.part.as_ref().or(d.name.as_ref()).is_some_and(|n| n.value == part);
+    let known = drafts.iter().filter(belongs).any(|d| d.junction.is_some());
+    if let (LimitAt::Junction, false, Some(limit)) = (draft.limit_at, known, &draft.limit) {
+        let message =
+            format!("the limit holds at the junction, but no block of \"{part}\" has one");
+        let error = CaseError::new(Cause::Missing, &draft.place, message).at(limit.span.clone());
+        reader.report(
+            error.hint("write theta-jc = \"1.5 K/W\" or psi-jt in the block with the heat"),
+        );
+    }
 }
 
 /// An own material that repeats one of the library, number by number, keeps its source.
@@ -409,7 +428,9 @@ pub(super) fn way_out(
     let mut way_out = !slots.is_empty();
     for side in Side::ALL {
         match sides.conditions[side.index()] {
-            SideCondition::Temperature(_) | SideCondition::Film { .. } => way_out = true,
+            SideCondition::Temperature(_)
+            | SideCondition::Film { .. }
+            | SideCondition::Outside(_) => way_out = true,
             SideCondition::Open => {
                 let length = side_length(section, side);
                 let covered: f64 = blocks

@@ -1,7 +1,7 @@
 //! What a case may be but is hardly meant to be: sentences, no refusals.
 
 use ventrise_mesh::Side;
-use ventrise_solver::SideCondition;
+use ventrise_solver::{OuterFilm, SideCondition};
 
 use super::estimate::Estimate;
 use super::model::{Case, side_name};
@@ -23,7 +23,8 @@ pub(super) fn doubts(case: &Case) -> Vec<String> {
     let fluxes = case.sides.iter().any(|s| matches!(s, SideCondition::Flux(q) if *q != 0.0));
     let driven =
         case.sides.iter().any(|s| matches!(s, SideCondition::Temperature(t) if *t != ambient));
-    if case.blocks.iter().all(|b| b.heat == 0.0) && !fluxes && !driven {
+    let sunlit = case.sides.iter().any(|s| matches!(s, SideCondition::Outside(o) if o.sun > 0.0));
+    if case.blocks.iter().all(|b| b.heat == 0.0) && !fluxes && !driven && !sunlit {
         doubts.push("there is no heat at all: the air will stay at rest".to_string());
     }
     for side in Side::ALL {
@@ -49,6 +50,7 @@ pub(super) fn doubts(case: &Case) -> Vec<String> {
             ));
         }
     }
+    doubts.extend(Side::ALL.into_iter().filter_map(|side| conducting_wall(case, side)));
     let open = case.sides.contains(&SideCondition::Open);
     if let Some(doubt) = trapped(case) {
         doubts.push(doubt);
@@ -67,6 +69,38 @@ pub(super) fn doubts(case: &Case) -> Vec<String> {
     doubts
 }
 
+/// A film with radiation beside it, upright, some 10 K above still air [W/(m²·K)].
+const USUAL_FILM: f64 = 10.0;
+/// Share of a side's length beyond which conduction along its wall matters.
+const FAR: f64 = 0.1;
+
+/// A side's wall that would carry heat along it, which the model leaves out: √(k·t/h) says how far.
+fn conducting_wall(case: &Case, side: Side) -> Option<String> {
+    let wall = case.outer_sides[side.index()].as_ref()?.wall.as_ref()?;
+    let (along, length) = match side {
+        Side::Left | Side::Right => (wall.conductivity[1], case.section.height),
+        Side::Bottom | Side::Top => (wall.conductivity[0], case.section.width),
+    };
+    let film = match case.sides[side.index()] {
+        SideCondition::Outside(o) => match o.film {
+            OuterFilm::Given(h) => h,
+            OuterFilm::StillAir => USUAL_FILM,
+        },
+        _ => return None,
+    };
+    let reach = (along * wall.thickness / film).sqrt();
+    (reach > FAR * length).then(|| {
+        format!(
+            "the wall of the {} side conducts heat across only; along it, {} would carry heat some \
+             {:.0} mm, and hot places of the wall are told hotter than they are; draw the wall as \
+             blocks to have both",
+            side_name(side),
+            wall.material,
+            1e3 * reach
+        )
+    })
+}
+
 /// Heat that has no steady way out although there are openings: warm air cannot leave downwards
 /// nor cold air upwards, still layers of it grow without end, and an opening lets no heat through
 /// by conduction.
@@ -82,10 +116,12 @@ fn trapped(case: &Case) -> Option<String> {
     });
     let sources: Vec<f64> = heats.chain(fluxes).collect();
     let (heated, cooled) = (sources.iter().any(|q| *q > 0.0), sources.iter().any(|q| *q < 0.0));
-    let held = case
-        .sides
-        .iter()
-        .any(|s| matches!(s, SideCondition::Temperature(_) | SideCondition::Film { .. }));
+    let held = case.sides.iter().any(|s| {
+        matches!(
+            s,
+            SideCondition::Temperature(_) | SideCondition::Film { .. } | SideCondition::Outside(_)
+        )
+    });
     let openings: Vec<Side> = Side::ALL.into_iter().filter(is_opening).collect();
     let [only] = openings.as_slice() else { return None };
     if held {

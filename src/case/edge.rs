@@ -7,7 +7,8 @@ use ventrise_mesh::{Geometry, Side};
 use ventrise_solver::SideCondition;
 
 use super::error::{CaseError, Cause};
-use super::model::{Ambient, Probe, ProbeShape, Section, Slot, side_name};
+use super::model::{Ambient, Material, OuterSide, Probe, ProbeShape, Section, Slot, side_name};
+use super::outside::{read_film, read_outside, refuse_outer_keys};
 use super::parse::{Located, Reader, Scope};
 use super::units::Dimension;
 use super::vocabulary::{PROBE, SIDE, SIDE_NAMES, SIDE_WORDS, SIDES, SLOT};
@@ -92,8 +93,13 @@ pub(super) struct Sides {
     pub conditions: [SideCondition; 4],
     /// Of their inner faces, where written.
     pub emissivities: [Option<f64>; 4],
+    /// Their outer faces, where written.
+    pub outer: [Option<OuterSide>; 4],
     pub spans: [Option<Range<usize>>; 4],
 }
+
+/// Keys of a side that say what it is; the others go with one of these.
+const CONDITIONS: [&str; 3] = ["temperature", "flux", "film"];
 
 /// Reads `[sides]`.
 pub(super) fn read_sides(
@@ -101,9 +107,11 @@ pub(super) fn read_sides(
     top: &Scope,
     section: Option<&Section>,
     ambient: Option<&Ambient>,
+    own: &[Located<Material>],
 ) -> Option<Sides> {
     let mut conditions = [SideCondition::Adiabatic; 4];
     let mut emissivities = [None; 4];
+    let mut outer = [None, None, None, None];
     let mut spans = [None, None, None, None];
     let mut whole = true;
     if top.has("sides") {
@@ -112,10 +120,11 @@ pub(super) fn read_sides(
         for side in Side::ALL.into_iter().filter(|s| scope.has(side_name(*s))) {
             let key = side_name(side);
             spans[side.index()] = Some(scope.span_of(key));
-            match read_side(reader, &scope, key, ambient) {
-                Some((condition, emissivity)) => {
+            match read_side(reader, &scope, side, ambient, own) {
+                Some((condition, emissivity, face)) => {
                     conditions[side.index()] = condition;
                     emissivities[side.index()] = emissivity;
+                    outer[side.index()] = face;
                 }
                 None => whole = false,
             }
@@ -124,7 +133,7 @@ pub(super) fn read_sides(
     } else if section.is_some_and(|s| s.geometry == Geometry::Axisymmetric) {
         conditions[Side::Left.index()] = SideCondition::Symmetry;
     }
-    whole.then_some(Sides { conditions, emissivities, spans })
+    whole.then_some(Sides { conditions, emissivities, outer, spans })
 }
 
 /// The left side of an axisymmetric section is its axis.
@@ -152,12 +161,17 @@ fn axis(
     conditions[left] = SideCondition::Symmetry;
 }
 
+/// A side's condition, the emissivity of its inner face, its outer face.
+type SideRead = (SideCondition, Option<f64>, Option<OuterSide>);
+
 fn read_side(
     reader: &mut Reader,
     scope: &Scope,
-    key: &str,
+    side: Side,
     ambient: Option<&Ambient>,
-) -> Option<(SideCondition, Option<f64>)> {
+    own: &[Located<Material>],
+) -> Option<SideRead> {
+    let key = side_name(side);
     let value = scope.get(key)?;
     let DeValue::Table(table) = value.get_ref() else {
         if !matches!(value.get_ref(), DeValue::String(_)) {
@@ -172,9 +186,9 @@ fn read_side(
         }
         let word = reader.text(scope, key)?;
         return match word.value.as_str() {
-            "adiabatic" => Some((SideCondition::Adiabatic, None)),
-            "symmetry" => Some((SideCondition::Symmetry, None)),
-            "open" => Some((SideCondition::Open, None)),
+            "adiabatic" => Some((SideCondition::Adiabatic, None, None)),
+            "symmetry" => Some((SideCondition::Symmetry, None, None)),
+            "open" => Some((SideCondition::Open, None, None)),
             "temperature" | "flux" | "film" => {
                 let message = format!("{key} = \"{}\" needs its number", word.value);
                 let error = CaseError::new(Cause::Kind, &scope.place, message).at(word.span);
@@ -197,10 +211,12 @@ fn read_side(
     let inner = Scope::new(table, value.span(), &format!("sides, {key}"));
     reader.check_keys(&inner, &SIDE);
     let emissivity = reader.emissivity(&inner);
-    let conditions = || SIDE.names().filter(|k| *k != "emissivity");
-    let given: Vec<&str> = conditions().filter(|k| inner.has(k)).collect();
+    let given: Vec<&str> = CONDITIONS.into_iter().filter(|k| inner.has(k)).collect();
+    if !inner.has("film") {
+        refuse_outer_keys(reader, &inner);
+    }
     if given.is_empty() && inner.has("emissivity") {
-        return Some((SideCondition::Adiabatic, emissivity));
+        return Some((SideCondition::Adiabatic, emissivity, None));
     }
     if given.len() != 1 {
         let (cause, message) = if given.is_empty() {
@@ -213,8 +229,7 @@ fn read_side(
     }
     let temperature = reader.temperature(&inner, "temperature");
     let flux = reader.quantity(&inner, "flux", Dimension::Flux);
-    let bound = (1e-3..=1e6, "from 0.001 W/(m2 K) to 1e6 W/(m2 K)");
-    let film = reader.bounded(&inner, "film", Dimension::Film, bound);
+    let film = read_film(reader, &inner);
     if let Some(temperature) = &temperature {
         let good = temperature.value <= 2273.15;
         reader.within(&inner, "temperature", temperature, good, "at most 2000 degC");
@@ -223,15 +238,13 @@ fn read_side(
         let good = flux.value == 0.0 || (1e-6..=1e7).contains(&flux.value.abs());
         reader.within(&inner, "flux", flux, good, "0 W/m2, or from 1e-6 W/m2 to 1e7 W/m2 in size");
     }
-    let condition = match (temperature, flux, film) {
-        (Some(t), None, None) => Some(SideCondition::Temperature(t.value)),
-        (None, Some(q), None) => Some(SideCondition::Flux(q.value)),
-        (None, None, Some(h)) => {
-            Some(SideCondition::Film { coefficient: h.value, temperature: ambient?.temperature })
-        }
-        _ => None,
+    let (condition, outer) = match (temperature, flux, film) {
+        (Some(t), None, None) => (SideCondition::Temperature(t.value), None),
+        (None, Some(q), None) => (SideCondition::Flux(q.value), None),
+        (None, None, Some(film)) => read_outside(reader, &inner, side, film, ambient?, own),
+        _ => return None,
     };
-    Some((condition?, emissivity))
+    Some((condition, emissivity, outer))
 }
 
 /// A `[[probe]]` table as read.

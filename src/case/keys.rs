@@ -172,20 +172,40 @@ mod tests {
         toml::from_str(&super::super::vocabulary::example()).unwrap()
     }
 
-    /// Every table with the way to it.
+    /// Every table with that way to it along which the examples show most of its keys.
     fn tables() -> Vec<(Vec<&'static str>, &'static Table)> {
         let mut all: Vec<(Vec<&str>, &Table)> = vec![(Vec::new(), &TOP)];
+        let mut missed: BTreeSet<&str> = BTreeSet::new();
         let mut next = 0;
         while next < all.len() {
             let (way, table) = all[next].clone();
             for key in table.keys {
-                if let Some(t) = key.kind.table() {
+                let Some(t) = key.kind.table() else { continue };
+                let is_written = at(&mut document(), &way).get(key.name).is_some_and(has_table);
+                if is_written {
                     all.push(([way.as_slice(), &[key.name]].concat(), t));
+                } else {
+                    missed.insert(t.header);
                 }
             }
             next += 1;
         }
-        all
+        all.iter().for_each(|(_, table)| _ = missed.remove(table.header));
+        assert!(missed.is_empty(), "no example of {missed:?}");
+        let shown = |way: &[&'static str]| at(&mut document(), way).len();
+        let mut fullest: Vec<(Vec<&str>, &Table)> = Vec::new();
+        for (way, table) in all {
+            match fullest.iter_mut().find(|(_, t)| t.header == table.header) {
+                Some(known) if shown(&known.0) < shown(&way) => known.0 = way,
+                Some(_) => {}
+                None => fullest.push((way, table)),
+            }
+        }
+        fullest
+    }
+
+    fn has_table(value: &Value) -> bool {
+        value.is_table() || value.as_array().is_some_and(|l| l.last().is_some_and(Value::is_table))
     }
 
     /// The table at the end of a way; of a list the last entry (the examples' fullest).
@@ -331,7 +351,9 @@ mod tests {
     fn words_and_ranges_are_the_readers() {
         for (way, table) in tables() {
             for key in table.keys {
-                let temperature = matches!(key.kind, Kind::Quantity(Dimension::Temperature, _));
+                let is_temperature =
+                    |k: &&Kind| matches!(k, Kind::Quantity(Dimension::Temperature, _));
+                let temperature = key.kind.all().iter().any(is_temperature);
                 let values: Vec<Value> = match &key.kind {
                     Kind::Pair([Kind::Quantity(dimension, _), _], _) => {
                         vec![Value::Array(vec![text(7.0, *dimension); 2])]
@@ -355,7 +377,7 @@ mod tests {
                     }
                 }
                 if temperature {
-                    let range = key.kind.range().unwrap();
+                    let range = key.kind.range().unwrap_or_default();
                     told.retain(|b| range.contains(b) || !ANY_TEMPERATURE.contains(&b.as_str()));
                 }
                 let mut known: Vec<String> = key.kind.range().into_iter().collect();

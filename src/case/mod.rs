@@ -9,12 +9,14 @@ mod doubts;
 mod edge;
 mod error;
 mod estimate;
+mod heat;
 mod joints;
 pub mod judgement;
 mod keys;
 pub mod materials;
 mod meshing;
 mod model;
+mod outside;
 mod overlap;
 mod parse;
 mod read;
@@ -30,8 +32,8 @@ mod vocabulary;
 pub use error::{CaseError, CaseErrors, Cause};
 pub use estimate::Estimate;
 pub use model::{
-    AirChoice, Ambient, Block, Case, Material, MeshChoice, Part, Probe, ProbeShape, Section, Slot,
-    SolveChoice, side_name,
+    AirChoice, Ambient, Block, Case, HeatCurve, Junction, JunctionBy, LimitAt, Material,
+    MeshChoice, OuterSide, Part, Probe, ProbeShape, Section, Slot, SolveChoice, Wall, side_name,
 };
 pub use reference::reference;
 pub use schema::schema;

@@ -75,8 +75,69 @@ pub struct Block {
     pub part: Option<usize>,
     /// Heat released in the whole block [W]; below zero when it is cooled.
     pub heat: f64,
+    /// How the heat follows the block's mean temperature; `heat` then is that at `heat-at`, or at
+    /// ambient.
+    pub curve: Option<HeatCurve>,
+    /// The way to a junction in it.
+    pub junction: Option<Junction>,
     /// Emissivity of its surface in place of the material's, as the case writes it.
     pub emissivity: Option<f64>,
+}
+
+/// Heat that follows temperature.
+#[derive(Debug, Clone, PartialEq)]
+pub enum HeatCurve {
+    /// heat·(1 + slope·(T − at)).
+    Slope {
+        /// Relative change [1/K].
+        slope: f64,
+        /// Temperature at which the heat is given [K].
+        at: f64,
+    },
+    /// Temperatures [K], rising, and heats [W], straight between and beyond.
+    Points(Vec<[f64; 2]>),
+}
+
+impl HeatCurve {
+    /// Two or more points of the curve of a block with this heat [K], [W].
+    pub fn points(&self, heat: f64) -> Vec<[f64; 2]> {
+        match self {
+            HeatCurve::Points(points) => points.clone(),
+            // Down to half of the heat at the most: no point may lie below zero.
+            HeatCurve::Slope { slope, at } => {
+                let step = if *slope < 0.0 { -0.5 / slope } else { 100.0 };
+                vec![[*at, heat], [at + step, heat * (1.0 + slope * step)]]
+            }
+        }
+    }
+}
+
+/// A resistance from the hottest place of a block to a junction in it.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Junction {
+    /// Which of the data sheet's numbers it is.
+    pub by: JunctionBy,
+    /// Junction above the block's hottest place, over the block's heat [K/W].
+    pub resistance: f64,
+}
+
+/// The data sheet's numbers for the way to the junction.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum JunctionBy {
+    /// Junction to case, all heat through the case.
+    ThetaJc,
+    /// Junction to top of case, heat going where it goes on the standard's board.
+    PsiJt,
+}
+
+/// Where a limit holds.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
+pub enum LimitAt {
+    /// At the part's hottest place.
+    #[default]
+    Part,
+    /// At the hottest junction in it.
+    Junction,
 }
 
 /// A joint between two touching blocks.
@@ -97,8 +158,30 @@ pub struct Part {
     pub blocks: Vec<usize>,
     /// Highest allowed temperature [K].
     pub limit: Option<f64>,
+    /// Where it holds.
+    pub limit_at: LimitAt,
     /// Heat of all its blocks [W].
     pub heat: f64,
+}
+
+/// What the case says about the outer face of a side, beside what its condition holds.
+#[derive(Debug, Clone, PartialEq)]
+pub struct OuterSide {
+    /// The wall between the section's edge and the outer face.
+    pub wall: Option<Wall>,
+    /// Sun on it [W/m²] and the share absorbed.
+    pub sun: Option<(f64, f64)>,
+}
+
+/// A wall too thin to be drawn as blocks: a resistance across.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Wall {
+    /// Name of its material.
+    pub material: String,
+    /// Thickness [m].
+    pub thickness: f64,
+    /// Conductivity along x and y [W/(m·K)].
+    pub conductivity: [f64; 2],
 }
 
 /// An opening in the section's edge.
@@ -188,6 +271,7 @@ pub struct Case {
     pub(super) slots: Vec<Slot>,
     pub(super) sides: [SideCondition; 4],
     pub(super) side_emissivities: [Option<f64>; 4],
+    pub(super) outer_sides: [Option<OuterSide>; 4],
     pub(super) probes: Vec<Probe>,
     pub(super) mesh: MeshChoice,
     pub(super) solve: SolveChoice,
@@ -259,6 +343,11 @@ impl Case {
     /// Emissivities of the sides' inner faces as the case writes them, by [`Side::index`].
     pub fn side_emissivities(&self) -> &[Option<f64>; 4] {
         &self.side_emissivities
+    }
+
+    /// What the case says about the sides' outer faces, by [`Side::index`].
+    pub fn outer_sides(&self) -> &[Option<OuterSide>; 4] {
+        &self.outer_sides
     }
 
     /// Whether radiation is modelled: the case writes an emissivity somewhere.

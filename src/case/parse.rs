@@ -8,6 +8,7 @@ use toml::de::{DeTable, DeValue};
 use super::error::{CaseError, Cause, nearest, one_of};
 use super::keys::Table;
 use super::units::{self, Dimension, UnitError};
+use super::vocabulary::NEVER;
 
 /// Highest temperature that a case may name, 3000 °C [K]: a slip of the unit, or no housing.
 const HOTTEST: f64 = 3273.15;
@@ -102,7 +103,9 @@ impl<'t> Reader<'t> {
                 DeValue::Table(_) | DeValue::Array(_) => name.to_string(),
                 _ => format!("{name} = {typed}"),
             };
-            let error = if table.later.contains(&name) {
+            let error = if let Some((_, reason, instead)) = NEVER.iter().find(|n| n.0 == name) {
+                CaseError::new(Cause::Conflict, &scope.place, *reason).hint(*instead)
+            } else if table.later.contains(&name) {
                 CaseError::new(
                     Cause::NotYet,
                     &scope.place,
@@ -149,7 +152,7 @@ impl<'t> Reader<'t> {
         good
     }
 
-    fn wrong_kind(&mut self, scope: &Scope, key: &str, value: &Spanned<DeValue>, wanted: &str) {
+    pub fn wrong_kind(&mut self, scope: &Scope, key: &str, value: &Spanned<DeValue>, wanted: &str) {
         let typed = self.typed(&value.span());
         let kind = kind_name(value.get_ref());
         let message = format!("{key} = {typed} is {kind}; {wanted}");
@@ -255,9 +258,14 @@ impl<'t> Reader<'t> {
 
     /// An emissivity from 0 to 1.
     pub fn emissivity(&mut self, scope: &Scope) -> Option<f64> {
-        let value = self.number(scope, "emissivity")?;
+        self.share(scope, "emissivity")
+    }
+
+    /// A plain number from 0 to 1.
+    pub fn share(&mut self, scope: &Scope, key: &str) -> Option<f64> {
+        let value = self.number(scope, key)?;
         let good = (0.0..=1.0).contains(&value.value);
-        self.within(scope, "emissivity", &value, good, "from 0 to 1").then_some(value.value)
+        self.within(scope, key, &value, good, "from 0 to 1").then_some(value.value)
     }
 
     /// A whole number in a range.
@@ -390,7 +398,7 @@ impl<'t> Reader<'t> {
         None
     }
 
-    fn quantity_of(
+    pub fn quantity_of(
         &mut self,
         scope: &Scope,
         key: &str,

@@ -116,9 +116,9 @@ fn read_case(reader: &mut Reader, top: &Scope, text: &str, file: &str) -> Option
     let ambient = read_ambient(reader, top);
     let air = read_air(reader, top, ambient.as_ref());
     let own = read_materials(reader, top);
-    let drafts = read_blocks(reader, top);
+    let drafts = read_blocks(reader, top, ambient.as_ref());
     let slots = read_slots(reader, top);
-    let sides = read_sides(reader, top, section.as_ref(), ambient.as_ref());
+    let sides = read_sides(reader, top, section.as_ref(), ambient.as_ref(), &own);
     let probes = read_probes(reader, top);
     let mesh = read_mesh(reader, top, section.as_ref());
     let solve = read_solve(reader, top);
@@ -146,6 +146,7 @@ fn read_case(reader: &mut Reader, top: &Scope, text: &str, file: &str) -> Option
         slots: slots.into_iter().filter_map(|s| s.finish()).collect(),
         sides: sides.conditions,
         side_emissivities: sides.emissivities,
+        outer_sides: sides.outer,
         probes: probes.into_iter().filter_map(|p| p.finish()).collect(),
         mesh: mesh?,
         solve: solve?,

@@ -3,9 +3,9 @@
 use std::fmt::Write as _;
 
 use ventrise_mesh::{Geometry, Side, Spacing};
-use ventrise_solver::SideCondition;
+use ventrise_solver::{OuterFilm, Outside, SideCondition};
 
-use super::model::{AirChoice, Case, ProbeShape, side_name};
+use super::model::{AirChoice, Block, Case, HeatCurve, JunctionBy, LimitAt, ProbeShape, side_name};
 use super::setup::spacing;
 use super::units::{Dimension, number, write};
 
@@ -163,7 +163,7 @@ impl Case {
             lines.text("material", &self.materials[block.material].name);
             lines.lengths("x", block.rectangle.x);
             lines.lengths("y", block.rectangle.y);
-            lines.quantity("heat", block.heat, Dimension::Power);
+            self.write_heat(lines, block);
             let own = block.emissivity.or(self.materials[block.material].emissivity);
             if self.radiates()
                 && let Some(emissivity) = self.emissivity(block)
@@ -172,8 +172,41 @@ impl Case {
                 lines.line(&format!("emissivity = {}", number(emissivity)));
             }
             if let Some(limit) = block.part.and_then(|p| self.parts[p].limit) {
-                lines.quantity("limit", limit, Dimension::Temperature);
+                match block.part.map(|p| self.parts[p].limit_at) {
+                    Some(LimitAt::Junction) => {
+                        let limit = quoted(&write(limit, "degC"));
+                        let at = quoted("junction");
+                        lines.line(&format!("limit = {{ temperature = {limit}, at = {at} }}"));
+                    }
+                    _ => lines.quantity("limit", limit, Dimension::Temperature),
+                }
             }
+        }
+    }
+
+    fn write_heat(&self, lines: &mut Lines, block: &Block) {
+        match &block.curve {
+            Some(HeatCurve::Points(points)) => {
+                let pair = |[t, q]: &[f64; 2]| {
+                    format!("[{}, {}]", quoted(&write(*t, "degC")), quoted(&write(*q, "W")))
+                };
+                let pairs: Vec<String> = points.iter().map(pair).collect();
+                lines.line(&format!("heat-points = [{}]", pairs.join(", ")));
+            }
+            curve => {
+                lines.quantity("heat", block.heat, Dimension::Power);
+                if let Some(HeatCurve::Slope { slope, at }) = curve {
+                    lines.quantity("heat-slope", *slope, Dimension::Slope);
+                    lines.quantity("heat-at", *at, Dimension::Temperature);
+                }
+            }
+        }
+        if let Some(junction) = block.junction {
+            let key = match junction.by {
+                JunctionBy::ThetaJc => "theta-jc",
+                JunctionBy::PsiJt => "psi-jt",
+            };
+            lines.quantity(key, junction.resistance, Dimension::Resistance);
         }
     }
 
@@ -193,6 +226,34 @@ impl Case {
             lines.line(&format!("between = [{}, {}]", quoted(names[0]), quoted(names[1])));
             lines.quantity("resistance", joint.resistance, Dimension::AreaResistance);
         }
+    }
+
+    /// A side with an outer face; `with` is what its inner face adds.
+    fn outside(&self, side: Side, outside: &Outside, with: &str) -> String {
+        let film = match outside.film {
+            OuterFilm::Given(h) => quoted(&write(h, "W/(m2 K)")),
+            OuterFilm::StillAir => quoted("still air"),
+        };
+        let mut keys = format!("film = {film}{with}");
+        let mut add = |key: &str, value: String| {
+            let written = write!(keys, ", {key} = {value}");
+            debug_assert!(written.is_ok());
+        };
+        if outside.emissivity > 0.0 {
+            add("outer-emissivity", number(outside.emissivity));
+            add("surroundings", quoted(&write(outside.surroundings, "degC")));
+        }
+        let outer = self.outer_sides[side.index()].as_ref();
+        if let Some((sun, absorptance)) = outer.and_then(|o| o.sun) {
+            add("sun", quoted(&write(sun, "W/m2")));
+            add("absorptance", number(absorptance));
+        }
+        if let Some(wall) = outer.and_then(|o| o.wall.as_ref()) {
+            let [material, thickness] =
+                [quoted(&wall.material), quoted(&write(wall.thickness, "mm"))];
+            add("wall", format!("{{ material = {material}, thickness = {thickness} }}"));
+        }
+        format!("{{ {keys} }}")
     }
 
     fn write_edge(&self, lines: &mut Lines) {
@@ -225,6 +286,7 @@ impl Case {
                 SideCondition::Film { coefficient, .. } => {
                     format!("{{ film = {}{with} }}", quoted(&write(coefficient, "W/(m2 K)")))
                 }
+                SideCondition::Outside(outside) => self.outside(side, &outside, &with),
             };
             lines.line(&format!("{} = {value}", side_name(side)));
         }

@@ -2,7 +2,7 @@
 
 use ventrise_mesh::{Generated, Layout, Mesh, MeshError, Side, SlotSpan, Spacing, generate};
 use ventrise_solver::{
-    AirModel, Block, Description, Joint, Problem, ProblemError, Settings, SideCondition,
+    AirModel, Block, Description, HeatLaw, Joint, Problem, ProblemError, Settings, SideCondition,
     SideSurface, Slot, Solid, Surfaces,
 };
 
@@ -105,6 +105,10 @@ pub fn problem(case: &Case, mesh: Mesh) -> Result<Problem, ProblemError> {
             .joints()
             .iter()
             .map(|j| Joint { blocks: j.blocks, resistance: j.resistance })
+            .collect(),
+        heat_laws: (case.blocks().iter().enumerate())
+            .filter_map(|(n, b)| Some((n, b, b.curve.as_ref()?)))
+            .map(|(n, b, curve)| HeatLaw { block: n, points: curve.points(b.heat) })
             .collect(),
         sources: None,
         radiation: surfaces(case),

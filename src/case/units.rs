@@ -42,6 +42,8 @@ pub enum Dimension {
     Diffusivity,
     /// Thermal expansion coefficient [1/K].
     Expansion,
+    /// Relative change by temperature [1/K].
+    Slope,
     /// Time [s].
     Time,
     /// Share of a whole [-].
@@ -68,6 +70,7 @@ impl Dimension {
             Dimension::Viscosity => "dynamic viscosity",
             Dimension::Diffusivity => "kinematic viscosity",
             Dimension::Expansion => "expansion coefficient",
+            Dimension::Slope => "change by temperature",
             Dimension::Time => "time",
             Dimension::Share => "percentage",
         }
@@ -101,6 +104,7 @@ impl Dimension {
             Dimension::Viscosity => "Pa s",
             Dimension::Diffusivity => "m2/s",
             Dimension::Expansion => "1/K",
+            Dimension::Slope => "%/K",
             Dimension::Time => "s",
             Dimension::Share => "%",
         }
@@ -199,6 +203,7 @@ const UNITS: &[Unit] = &[
     unit(&["Pa s", "Pas", "kg/(m s)"], Dimension::Viscosity, 1.0, 1.0),
     unit(&["m2/s"], Dimension::Diffusivity, 1.0, 1.0),
     unit(&["1/K", "/K", "K-1", "per K"], Dimension::Expansion, 1.0, 1.0),
+    unit(&["%/K"], Dimension::Slope, 1.0, 1e2),
     unit(&["s"], Dimension::Time, 1.0, 1.0),
     unit(&["min"], Dimension::Time, 60.0, 1.0),
     unit(&["h"], Dimension::Time, 3600.0, 1.0),

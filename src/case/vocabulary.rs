@@ -8,6 +8,8 @@ use super::units::Dimension;
 
 /// Names of the sides.
 pub(super) const SIDE_NAMES: [&str; 4] = ["left", "right", "bottom", "top"];
+/// Where a limit may hold.
+pub(super) const LIMIT_PLACES: [&str; 2] = ["part", "junction"];
 /// Conditions of a side that need no number.
 pub(super) const SIDE_WORDS: [&str; 3] = ["adiabatic", "symmetry", "open"];
 
@@ -134,15 +136,43 @@ pub(super) const BLOCK: Table = Table {
         key("x", Pair(&LENGTHS, "a smaller and a larger length"), Required, "from and to along x"),
         key("y", Pair(&LENGTHS, "a smaller and a larger length"), Required, "from and to along y"),
         key("heat", Quantity(Dimension::Power, "0 W, or from 1e-9 W to 1000 kW in size"), Default("\"0 W\""), "heat released in the block, over the depth or the full revolution; below zero it is cooled"),
-        key("limit", Quantity(Dimension::Temperature, "at most 3000 degC"), Without("not judged"), "highest temperature allowed in its part; the blocks of a part have one limit between them"),
+        key("heat-slope", Quantity(Dimension::Slope, "from -10 %/K to 10 %/K"), Without("constant heat"), "change of its heat per kelvin of its mean temperature, such as 0.39 %/K of copper windings"),
+        key("heat-at", Quantity(Dimension::Temperature, "at most 3000 degC"), Without("-"), "temperature at which it releases just its heat"),
+        key("heat-points", List(&Pair(&[Quantity(Dimension::Temperature, ""), Quantity(Dimension::Power, "")], "")), Without("-"), "its heat at rising mean temperatures, instead of heat; straight between the points, constant beyond"),
+        key("limit", Either(&[Quantity(Dimension::Temperature, "at most 3000 degC"), Inner(&LIMIT)]), Without("not judged"), "highest temperature allowed in its part; the blocks of a part have one limit between them"),
+        key("theta-jc", Quantity(Dimension::Resistance, "from 0.0001 K/W to 10000 K/W"), Without("no junction"), "resistance from the junction to the block, for parts cooled at their case"),
+        key("psi-jt", Quantity(Dimension::Resistance, "from 0.0001 K/W to 10000 K/W"), Without("no junction"), "junction above the top of the block per watt, for parts cooled through their board"),
         key("emissivity", Number(0.0, 1.0, "from 0 to 1"), Without("its material's"), "emissivity of its surface"),
         key("repeat", Inner(&REPEAT), Without("one block"), "a pattern of copies"),
     ],
     later: &[],
-    rules: &[Rule::Only("limit", &["name", "part"])],
+    rules: &[
+        Rule::Only("limit", &["name", "part"]),
+        Rule::Only("heat-slope", &["heat-at"]),
+        Rule::Only("heat-at", &["heat-slope"]),
+        Rule::Only("heat-slope", &["heat"]),
+        Rule::Never("heat-points", &["heat", "heat-slope", "heat-at"]),
+        Rule::Only("theta-jc", &["heat", "heat-points"]),
+        Rule::Only("psi-jt", &["heat", "heat-points"]),
+        Rule::Never("theta-jc", &["psi-jt"]),
+    ],
     example: "[[block]]\nname = \"rectifier\"\npart = \"power\"\nmaterial = \"copper\"\nx = [\"30 mm\", \"32 mm\"]\ny = [\"100 mm\", \"130 mm\"]\nheat = \"6 W\"\nlimit = \"95 degC\"\n\n\
               [[block]]\nname = \"sink\"\npart = \"power\"\nmaterial = \"aluminium, anodised\"\nx = [\"32 mm\", \"36 mm\"]\ny = [\"60 mm\", \"200 mm\"]\n\n\
-              [[block]]\nname = \"card\"\nmaterial = \"board, 6 layers\"\nx = [\"60 mm\", \"61.6 mm\"]\ny = [\"80 mm\", \"180 mm\"]\nheat = \"2 W\"\nlimit = \"80 degC\"\nrepeat = { count = 3, step-x = \"18 mm\" }\n",
+              [[block]]\nname = \"card\"\nmaterial = \"board, 6 layers\"\nx = [\"60 mm\", \"61.6 mm\"]\ny = [\"80 mm\", \"180 mm\"]\nheat = \"2 W\"\ntheta-jc = \"4 K/W\"\nlimit = { temperature = \"110 degC\", at = \"junction\" }\nrepeat = { count = 3, step-x = \"18 mm\" }\n",
+};
+
+#[rustfmt::skip]
+pub(super) const LIMIT: Table = Table {
+    header: "limit",
+    what: "a limit",
+    says: "A limit with the place where it holds.",
+    keys: &[
+        key("temperature", Quantity(Dimension::Temperature, "at most 3000 degC"), Required, "highest temperature allowed"),
+        key("at", Word(&LIMIT_PLACES), Default("\"part\""), "where: anywhere in the part, or at the junctions that theta-jc or psi-jt give"),
+    ],
+    later: &[],
+    rules: &[],
+    example: "",
 };
 
 #[rustfmt::skip]
@@ -205,7 +235,7 @@ pub(super) const SIDES: Table = Table {
     ],
     later: &[],
     rules: &[],
-    example: "[sides]\nleft = { temperature = \"45 degC\", emissivity = 0.9 }\nright = { film = \"8 W/(m2 K)\", emissivity = 0.9 }\nbottom = { emissivity = 0.9 }\ntop = { emissivity = 0.9 }\n",
+    example: "[sides]\nleft = { temperature = \"45 degC\", emissivity = 0.9 }\nright = { film = \"still air\", emissivity = 0.9, wall = { material = \"PC/ABS\", thickness = \"2 mm\" }, outer-emissivity = 0.9, surroundings = \"35 degC\", sun = \"600 W/m2\", absorptance = 0.5 }\nbottom = { emissivity = 0.9 }\ntop = { emissivity = 0.9 }\n",
 };
 
 #[rustfmt::skip]
@@ -217,13 +247,48 @@ pub(super) const SIDE: Table = Table {
     keys: &[
         key("temperature", Quantity(Dimension::Temperature, "at most 2000 degC"), Without("-"), "a wall at this temperature"),
         key("flux", Quantity(Dimension::Flux, "0 W/m2, or from 1e-6 W/m2 to 1e7 W/m2 in size"), Without("-"), "a wall through which so much heat enters; below zero it leaves"),
-        key("film", Quantity(Dimension::Film, "from 0.001 W/(m2 K) to 1e6 W/(m2 K)"), Without("-"), "a thin wall with this film coefficient to ambient outside, radiation of its outer face included"),
+        key("film", Either(&[Word(&["still air"]), Quantity(Dimension::Film, "from 0.001 W/(m2 K) to 1e6 W/(m2 K)")]), Without("-"), "a thin wall with this film coefficient to ambient outside; \"still air\": that of still air at a surface of its height, place and temperature"),
         key("emissivity", Number(0.0, 1.0, "from 0 to 1"), Without("white, if anything radiates"), "emissivity of the inner face"),
+        key("wall", Inner(&WALL), Without("no resistance"), "what the wall is made of, across; heat along it is left out"),
+        key("outer-emissivity", Number(0.0, 1.0, "from 0 to 1"), Without("no radiation of its own"), "emissivity of the outer face, which radiates beside the film"),
+        key("surroundings", Quantity(Dimension::Temperature, "from -150 degC to 2000 degC"), Without("ambient"), "temperature of what the outer face sees"),
+        key("sun", Quantity(Dimension::Flux, "from 0 W/m2 to 2000 W/m2"), Without("none"), "sunshine on the outer face"),
+        key("absorptance", Number(0.0, 1.0, "from 0 to 1"), Without("-"), "share of the sunshine that the outer face takes up"),
     ],
     later: &[],
-    rules: &[Rule::AtMostOne(&["temperature", "flux", "film"]), Rule::AnyOf(&["temperature", "flux", "film", "emissivity"])],
+    rules: &[
+        Rule::AtMostOne(&["temperature", "flux", "film"]),
+        Rule::AnyOf(&["temperature", "flux", "film", "emissivity"]),
+        Rule::Only("wall", &["film"]),
+        Rule::Only("outer-emissivity", &["film"]),
+        Rule::Only("surroundings", &["outer-emissivity"]),
+        Rule::Only("sun", &["absorptance"]),
+        Rule::Only("absorptance", &["sun"]),
+        Rule::Only("sun", &["film"]),
+    ],
     example: "",
 };
+
+#[rustfmt::skip]
+pub(super) const WALL: Table = Table {
+    header: "wall",
+    what: "a wall",
+    says: "The wall of a side.",
+    keys: &[
+        key("material", Text, Required, "name of a built-in material or of one of your own"),
+        key("thickness", Quantity(Dimension::Length, "from 0.001 mm to 100 mm"), Required, "its thickness"),
+    ],
+    later: &[],
+    rules: &[],
+    example: "",
+};
+
+/// Keys that one looks for and that cannot be: the reason, and what to write instead.
+pub(super) const NEVER: [(&str, &str, &str); 1] = [(
+    "theta-ja",
+    "theta-ja holds for the standard's board in still air, not for this housing",
+    "write theta-jc or psi-jt; the way on to ambient is what is computed here",
+)];
 
 #[rustfmt::skip]
 pub(super) const PROBE: Table = Table {

@@ -8,6 +8,7 @@ use ventrise_solver::{Progress, Sample};
 
 use crate::case::Case;
 
+use super::outer_heat::OuterHeat;
 use super::readings::Readings;
 use super::summary::Summary;
 
@@ -86,7 +87,9 @@ pub fn history(case: &Case, ambient: f64, rows: &[Progress]) -> String {
 
 /// `parts.csv`.
 pub fn parts(summary: &Summary) -> String {
-    let mut table = Table::new(&[
+    // A column of junctions only where there are any.
+    let junctions = summary.parts.iter().any(|p| p.junction_c.is_some());
+    let columns = [
         "part",
         "heat_w",
         "min_c",
@@ -95,11 +98,14 @@ pub fn parts(summary: &Summary) -> String {
         "limit_c",
         "margin_k",
         "resistance_k_w",
-    ]);
+        "junction_c",
+    ];
+    let mut table = Table::new(&columns[..if junctions { 9 } else { 8 }]);
     for p in &summary.parts {
         let values = [p.min_c, p.mean_c, p.max_c, p.limit_c, p.margin_k, p.resistance_k_w];
         let start = [quoted(&p.name), number(p.heat_w)];
-        table.row(start.into_iter().chain(values.map(perhaps)));
+        let junction = junctions.then(|| perhaps(p.junction_c));
+        table.row(start.into_iter().chain(values.map(perhaps)).chain(junction));
     }
     table.0
 }
@@ -133,7 +139,9 @@ pub fn slots(summary: &Summary) -> String {
 
 /// `sides.csv`.
 pub fn sides(summary: &Summary) -> String {
-    let mut table = Table::new(&[
+    // Columns of outer faces only where there are any.
+    let outer = summary.sides.iter().any(|s| s.outer.is_some());
+    let columns = [
         "side",
         "heat_w",
         "conduction_w",
@@ -141,11 +149,29 @@ pub fn sides(summary: &Summary) -> String {
         "in_m3_s",
         "out_m3_s",
         "out_mean_c",
-    ]);
+        "film_w",
+        "radiation_w",
+        "sun_w",
+        "surface_mean_c",
+        "surface_max_c",
+        "film_w_m2_k",
+    ];
+    let mut table = Table::new(if outer { &columns } else { &columns[..7] });
     for s in &summary.sides {
         let values = [s.heat_w, s.conduction_w, s.convection_w, s.in_m3_s, s.out_m3_s];
         let name = std::iter::once(s.name.to_string());
-        table.row(name.chain(values.map(number)).chain([perhaps(s.out_mean_c)]));
+        let o = s.outer.as_ref();
+        let of = |value: fn(&OuterHeat) -> f64| perhaps(o.map(value));
+        let rest = [
+            of(|o| o.film_w),
+            of(|o| o.radiation_w),
+            of(|o| o.sun_w),
+            of(|o| o.surface_mean_c),
+            of(|o| o.surface_max_c),
+            of(|o| o.film_w_m2_k),
+        ];
+        let rest = rest.into_iter().filter(|_| outer);
+        table.row(name.chain(values.map(number)).chain([perhaps(s.out_mean_c)]).chain(rest));
     }
     table.0
 }

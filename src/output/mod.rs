@@ -5,6 +5,7 @@ use std::io;
 pub mod by_hand;
 mod csv;
 pub mod folder;
+pub mod outer_heat;
 pub mod overview;
 pub mod pictures;
 pub mod readings;
@@ -16,6 +17,7 @@ pub mod table;
 pub mod told;
 pub mod vtk;
 mod vtr;
+mod warnings;
 pub mod words;
 
 pub use crate::case::side_name;

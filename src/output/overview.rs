@@ -3,9 +3,10 @@
 use std::io::{self, Write};
 
 use ventrise_mesh::{Crossed, Crossing, GapEnd, Generated, Geometry, MeshError, Side};
-use ventrise_solver::SideCondition;
+use ventrise_solver::{OuterFilm, Outside, SideCondition};
 
 use crate::case::setup::layout;
+use crate::case::units::rounded;
 use crate::case::{AirChoice, Case, Estimate, ProbeShape, judgement};
 use crate::memory;
 
@@ -303,6 +304,25 @@ fn more(out: &mut dyn Write, count: usize) -> io::Result<()> {
     if count > LISTED { writeln!(out, "  and {} more", count - LISTED) } else { Ok(()) }
 }
 
+fn outside(o: &Outside) -> String {
+    let mut text = match o.film {
+        OuterFilm::Given(h) => format!("film {h} W/(m2 K)"),
+        OuterFilm::StillAir => "still air".into(),
+    };
+    text.push_str(&format!(" at {} degC", fixed(celsius(o.air), 1)));
+    if o.wall > 0.0 {
+        text.push_str(&format!(", wall {} K m2/W", rounded(o.wall, 3)));
+    }
+    if o.emissivity > 0.0 {
+        let surroundings = fixed(celsius(o.surroundings), 1);
+        text.push_str(&format!(", radiates {} to {surroundings} degC", o.emissivity));
+    }
+    if o.sun > 0.0 {
+        text.push_str(&format!(", absorbs {} W/m2", rounded(o.sun, 4)));
+    }
+    text
+}
+
 fn condition(condition: &SideCondition) -> String {
     match condition {
         SideCondition::Adiabatic => "adiabatic".into(),
@@ -313,6 +333,7 @@ fn condition(condition: &SideCondition) -> String {
         SideCondition::Film { coefficient, temperature } => {
             format!("film {coefficient} W/(m2 K) to {} degC", fixed(celsius(*temperature), 1))
         }
+        SideCondition::Outside(o) => outside(o),
         SideCondition::Sliding(speed) => format!("sliding at {speed} m/s"),
     }
 }

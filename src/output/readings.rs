@@ -3,8 +3,8 @@
 use ventrise_mesh::AIR;
 use ventrise_solver::{
     Balance, Numbers, OpeningFlow, PartTemperature, Problem, RadiantHeat, STEFAN_BOLTZMANN, Sample,
-    Sampler, SideFlow, Solution, balance, block_temperatures, cell_velocities, heat_fluxes,
-    numbers, part_temperatures, radiant_heat, side_flows, slot_flows,
+    Sampler, SideFlow, Solution, balance, block_heats, block_temperatures, cell_velocities,
+    heat_fluxes, numbers, part_temperatures, radiant_heat, side_flows, slot_flows,
 };
 
 use crate::case::{Case, ProbeShape};
@@ -56,6 +56,8 @@ pub struct Readings {
     pub parts: Vec<Option<PartTemperature>>,
     /// Blocks, in the case's order.
     pub blocks: Vec<Option<PartTemperature>>,
+    /// Heat of the blocks at the result [W], in the case's order.
+    pub heats: Vec<f64>,
     /// Slots, in the case's order.
     pub slots: Vec<OpeningFlow>,
     /// Sides.
@@ -90,6 +92,7 @@ impl Run<'_> {
             ambient: celsius(problem.description().ambient),
             parts: part_temperatures(problem, state),
             blocks: block_temperatures(problem, state),
+            heats: block_heats(problem, state),
             slots: slot_flows(problem, air, state),
             sides: side_flows(problem, air, state),
             balance: balance(problem, air, state),

@@ -32,6 +32,7 @@ pub fn report(
     writeln!(out)?;
     parts(out, summary, readings)?;
     slots(out, summary)?;
+    outer(out, summary)?;
     heat(out, summary)?;
     balances(out, summary, readings)?;
     writeln!(out, "Verdict: {}", verdict(summary))?;
@@ -90,21 +91,27 @@ fn parts(out: &mut dyn Write, summary: &Summary, readings: &Readings) -> io::Res
     parts.sort_by(|a, b| key(a).total_cmp(&key(b)));
     let w = name_width(parts.iter().map(|p| p.name.as_str()));
     let cold = parts.iter().any(|p| is_cold(p.min_c, readings));
-    let row = |heat: String, min: String, rest: [String; 3]| {
+    let junctions = parts.iter().any(|p| p.junction_c.is_some());
+    let row = |heat: String, min: String, rest: [String; 4]| {
         let min = cold.then_some(min);
-        columns(&std::iter::once(heat).chain(min).chain(rest).collect::<Vec<_>>())
+        let [max, junction, limit, margin] = rest;
+        let rest = [Some(max), junctions.then_some(junction), Some(limit), Some(margin)];
+        let cells = std::iter::once(Some(heat)).chain([min]).chain(rest).flatten();
+        columns(&cells.collect::<Vec<_>>())
     };
-    let rest = ["max degC", "limit degC", "margin K"].map(String::from);
+    let rest = ["max degC", "junction", "limit degC", "margin K"].map(String::from);
     writeln!(out, "{:w$}{}", "Part", row("heat W".into(), "min degC".into(), rest))?;
     let scale = parts.iter().fold(0.0_f64, |scale, p| scale.max(p.heat_w.abs()));
     for part in parts {
-        let rest = [part.max_c, part.limit_c, part.margin_k].map(|value| shown(value, 1));
+        let rest = [part.max_c, part.junction_c, part.limit_c, part.margin_k];
+        let rest = rest.map(|value| shown(value, 1));
         let cells = row(sized(part.heat_w, 2, scale), shown(part.min_c, 1), rest);
         let over = if part.margin_k.is_some_and(|m| m < 0.0) { "  over its limit" } else { "" };
         let band = part.band_c.map_or_else(String::new, |b| {
             format!("  sways from {} to {}", fixed(b[0], 1), fixed(b[1], 1))
         });
-        writeln!(out, "{}{cells}{over}{band}", in_column(&part.name, w))?;
+        let at = if part.limit_at.is_some() { "  at the junction" } else { "" };
+        writeln!(out, "{}{cells}{over}{at}{band}", in_column(&part.name, w))?;
     }
     writeln!(out)
 }
@@ -135,6 +142,26 @@ fn slots(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
     }
     for (name, side) in &open {
         row(name, [side.in_m3_s, side.out_m3_s], side.out_mean_c, side.convection_w)?;
+    }
+    writeln!(out)
+}
+
+/// Sides with an outer face.
+fn outer(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
+    let sides: Vec<_> = summary.sides.iter().filter_map(|s| Some((s, s.outer.as_ref()?))).collect();
+    if sides.is_empty() {
+        return Ok(());
+    }
+    let header = ["film W", "radiated W", "sun W", "mean degC", "max degC", "W/(m2 K)"];
+    let w = *NAME_WIDTH.start();
+    writeln!(out, "{:w$}{}", "Outer face", columns(&header.map(String::from)))?;
+    let scale = heat_scale(summary);
+    for (side, o) in sides {
+        let heat = [o.film_w, o.radiation_w, -o.sun_w].map(|heat| sized(heat, 2, scale));
+        let rest = [o.surface_mean_c, o.surface_max_c].map(|c| fixed(c, 1));
+        let film = std::iter::once(sized(o.film_w_m2_k, 2, 0.0));
+        let cells: Vec<String> = heat.into_iter().chain(rest).chain(film).collect();
+        writeln!(out, "{}{}", in_column(&format!("{} side", side.name), w), columns(&cells))?;
     }
     writeln!(out)
 }
@@ -185,6 +212,13 @@ fn balances(out: &mut dyn Write, summary: &Summary, readings: &Readings) -> io::
             b.mass_error
         )?;
     }
+    if let Some(growth) = summary.heat_growth {
+        writeln!(
+            out,
+            "Heat           follows temperature: one watt more makes {} W more",
+            fixed(growth, 2)
+        )?;
+    }
     if let Some(warmest) = air.max_temperature_c {
         let coldest = air.min_temperature_c.filter(|c| is_cold(Some(*c), readings));
         let coldest = coldest.map(|c| format!("coldest {} degC, ", fixed(c, 1)));
@@ -211,6 +245,18 @@ fn balances(out: &mut dyn Write, summary: &Summary, readings: &Readings) -> io::
 
 /// The verdict in a sentence.
 fn verdict(summary: &Summary) -> String {
+    if let Some(runaway) = &summary.runaway {
+        return format!(
+            "runs away. At {} degC{} one watt more of heat makes {} W more: the heat grows faster \
+             with temperature than the housing carries it away, and no steady temperature was \
+             found. Lower the heat or its slope, or give it a better way out.",
+            fixed(runaway.given_up_at_c, 0),
+            runaway.block.as_ref().map_or(String::new(), |name| {
+                format!(" in \"{}\"", shortened(name, *NAME_WIDTH.end()))
+            }),
+            fixed(runaway.growth, 2)
+        );
+    }
     if !summary.solved {
         let r = &summary.residuals;
         let worst = r.mass.max(r.momentum_x).max(r.momentum_y).max(r.energy);

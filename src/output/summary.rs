@@ -4,28 +4,22 @@
 //! it leaves the section. A value that does not exist (no limit, no outflow) is `null`.
 
 use serde::Serialize;
-use ventrise_mesh::{AIR, Side};
-use ventrise_solver::{SOLVED, Sample, Solution, StopReason, Verdict, contacts};
+use ventrise_mesh::Side;
+use ventrise_solver::{SOLVED, Sample, Solution, StopReason, Verdict};
 
-use crate::case::{Case, ProbeShape};
+use crate::case::{Case, LimitAt, ProbeShape};
 
 use super::by_hand::ByHand;
+use super::outer_heat::OuterHeat;
 use super::readings::{Interruption, Readings, Run};
 use super::side_name;
+use super::warnings::warnings;
 
 /// Spread of temperatures beyond which the linear density law is off by more than a tenth [K]:
 /// D. D. Gray, A. Giorgini, Int. J. Heat Mass Transfer 19 (1976) 545-551, air at 15 °C and 1 atm.
 pub const BOUSSINESQ_SPREAD: f64 = 28.6;
 /// Reynolds number of a duct beyond which flow may turn turbulent (common practice, no source).
 pub const TURBULENT_REYNOLDS: f64 = 2300.0;
-
-/// Radiation left out that is worth a warning, as a share of the heat put in.
-const LEAST_RADIATION: f64 = 0.01;
-/// Heat flux across touching blocks from which on a joint without resistance is worth a warning:
-/// every K cm²/W would cost half a kelvin [W/m²].
-const JOINT_FLUX: f64 = 5e3;
-/// View factors that add up to one within this are as good as the stated 0.1 %.
-const WORST_VIEW_DEFECT: f64 = 2e-3;
 
 /// The whole summary; fields in the order of the file.
 #[derive(Debug, Clone, Serialize)]
@@ -37,12 +31,18 @@ pub struct Summary {
     /// Whether the equations are met well enough for the numbers to mean anything; if not, they are
     /// the last attempt and no margin is given.
     pub solved: bool,
-    /// `settled`, `swaying`, `drifting` or `stopped early`.
+    /// `settled`, `swaying`, `runs away`, `drifting` or `stopped early`.
     pub verdict: &'static str,
     /// What ended the iteration early: `signal`, `time limit`, `iteration limit` or `stalled`
     /// (residuals no longer fell).
     #[serde(skip_serializing_if = "Option::is_none")]
     pub stopped_by: Option<&'static str>,
+    /// Where heat follows temperature: how much more one watt more makes of itself [-].
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub heat_growth: Option<f64>,
+    /// About heat that has no steady answer.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub runaway: Option<HeatRunaway>,
     /// About a swaying flow.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub sway: Option<Sway>,
@@ -98,6 +98,17 @@ pub struct Sway {
     pub period_s: Option<f64>,
     /// Growth rate about the steady solution [1/s].
     pub growth_per_s: Option<f64>,
+}
+
+/// Heat that grows faster with temperature than it is carried away.
+#[derive(Debug, Clone, Serialize)]
+pub struct HeatRunaway {
+    /// How much more one watt more makes of itself [-], 1 or more.
+    pub growth: f64,
+    /// The block that was hottest when it was given up, if it has a name.
+    pub block: Option<String>,
+    /// Its mean temperature then [°C].
+    pub given_up_at_c: f64,
 }
 
 /// Size of the mesh.
@@ -205,11 +216,17 @@ pub struct Part {
     pub mean_c: Option<f64>,
     /// Highest temperature [°C].
     pub max_c: Option<f64>,
+    /// Temperature of the hottest junction in it [°C].
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub junction_c: Option<f64>,
     /// Lowest and highest `max_c` over the last oscillations of a swaying flow [°C].
     #[serde(skip_serializing_if = "Option::is_none")]
     pub band_c: Option<[f64; 2]>,
     /// Limit [°C].
     pub limit_c: Option<f64>,
+    /// `junction` where the limit holds there.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub limit_at: Option<&'static str>,
     /// Limit minus highest temperature (of the band, when swaying) [K].
     pub margin_k: Option<f64>,
     /// Highest rise over heat [K/W].
@@ -256,6 +273,9 @@ pub struct SideHeat {
     pub out_m3_s: f64,
     /// Mean temperature of the air that leaves, when the side is open [°C].
     pub out_mean_c: Option<f64>,
+    /// How the conducted heat leaves the outer face, where the side has one.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub outer: Option<OuterHeat>,
 }
 
 /// A probe: a point, or a line with its extremes.
@@ -317,6 +337,15 @@ impl Summary {
             solved: solved(solution),
             verdict: verdict_word(&solution.verdict),
             stopped_by: stopped_by(run),
+            heat_growth: solution.heat_growth,
+            runaway: match solution.verdict {
+                Verdict::RunsAway(r) => Some(HeatRunaway {
+                    growth: r.growth,
+                    block: case.blocks().get(r.block).and_then(|b| b.name.clone()),
+                    given_up_at_c: super::readings::celsius(r.temperature),
+                }),
+                _ => None,
+            },
             sway: match solution.verdict {
                 Verdict::Swaying { period, growth, .. } => {
                     Some(Sway { period_s: period, growth_per_s: growth })
@@ -401,12 +430,16 @@ pub fn verdict_word(verdict: &Verdict) -> &'static str {
     match verdict {
         Verdict::Settled => "settled",
         Verdict::Swaying { .. } => "swaying",
+        Verdict::RunsAway(_) => "runs away",
         Verdict::Drifting => "drifting",
         Verdict::StoppedEarly => "stopped early",
     }
 }
 
 fn solved(solution: &Solution) -> bool {
+    if matches!(solution.verdict, Verdict::RunsAway(_)) {
+        return false;
+    }
     let bounded = matches!(&solution.verdict, Verdict::Swaying { band, .. } if !band.is_empty());
     bounded || solution.history.last().is_some_and(|row| row.residuals.largest() <= SOLVED)
 }
@@ -417,7 +450,7 @@ fn stopped_by(run: &Run) -> Option<&'static str> {
         (Some(Interruption::TimeLimit), _) => Some("time limit"),
         (None, StopReason::IterationLimit) => Some("iteration limit"),
         (None, StopReason::Stalled) => Some("stalled"),
-        (None, StopReason::Converged | StopReason::Asked) => None,
+        (None, StopReason::Converged | StopReason::Asked | StopReason::RanAway) => None,
     }
 }
 
@@ -428,14 +461,27 @@ fn parts(case: &Case, readings: &Readings, solution: &Solution) -> Vec<Part> {
         _ => None,
     };
     let part = |(n, part): (usize, &crate::case::Part)| {
-        let found = readings.parts.get(n).copied().flatten();
+        let runs_away = matches!(verdict, Verdict::RunsAway(_));
+        let found = readings.parts.get(n).copied().flatten().filter(|_| !runs_away);
         let celsius = |rise: f64| readings.ambient + rise;
         let max_c = found.map(|f| celsius(f.max));
         let limit_c = part.limit.map(super::readings::celsius);
+        let follows = part.blocks.iter().any(|b| case.blocks()[*b].curve.is_some());
+        let heat =
+            if follows { part.blocks.iter().map(|b| readings.heats[*b]).sum() } else { part.heat };
+        let junction_c = hottest_junction(case, readings, part).filter(|_| !runs_away);
         let hottest = max_c.map(|max| band(n).map_or(max, |b| max.max(b[1])));
+        let hottest = match part.limit_at {
+            LimitAt::Part => hottest,
+            // A junction sways with its part.
+            LimitAt::Junction => {
+                let sway = hottest.zip(max_c).map_or(0.0, |(high, max)| high - max);
+                junction_c.map(|t| t + sway)
+            }
+        };
         Part {
             name: part.name.clone(),
-            heat_w: part.heat,
+            heat_w: heat,
             radiated_w: readings
                 .radiant
                 .as_ref()
@@ -443,16 +489,29 @@ fn parts(case: &Case, readings: &Readings, solution: &Solution) -> Vec<Part> {
             min_c: found.map(|f| celsius(f.min)),
             mean_c: found.map(|f| celsius(f.mean)),
             max_c,
+            junction_c,
             band_c: band(n),
             limit_c,
+            limit_at: (part.limit_at == LimitAt::Junction).then_some("junction"),
             margin_k: limit_c
                 .zip(hottest)
                 .filter(|_| solved)
                 .map(|(limit, hottest)| limit - hottest),
-            resistance_k_w: found.filter(|_| part.heat > 0.0).map(|f| f.max / part.heat),
+            resistance_k_w: found.filter(|_| heat > 0.0).map(|f| f.max / heat),
         }
     };
     case.parts().iter().enumerate().map(part).collect()
+}
+
+/// Temperature of the hottest junction in a part [°C]: the hottest place of its block, and the
+/// block's heat over the way from there.
+fn hottest_junction(case: &Case, readings: &Readings, part: &crate::case::Part) -> Option<f64> {
+    let of = |b: &usize| {
+        let junction = case.blocks()[*b].junction?;
+        let hottest = readings.ambient + readings.blocks[*b]?.max;
+        Some(hottest + junction.resistance * readings.heats[*b])
+    };
+    part.blocks.iter().filter_map(of).max_by(f64::total_cmp)
 }
 
 fn slots(case: &Case, readings: &Readings, verdict: &Verdict) -> Vec<Slot> {
@@ -486,6 +545,7 @@ fn sides(readings: &Readings) -> Vec<SideHeat> {
             in_m3_s: flow.open.inflow,
             out_m3_s: flow.open.outflow,
             out_mean_c: flow.open.out_mean_rise.map(|rise| readings.ambient + rise),
+            outer: flow.outer.map(|o| OuterHeat::of(&o, readings.ambient)),
         }
     };
     Side::ALL.map(side).to_vec()
@@ -519,81 +579,13 @@ fn probes(case: &Case, readings: &Readings) -> Vec<Probe> {
 }
 
 fn blocks(case: &Case, readings: &Readings) -> Vec<Block> {
-    let block = |(block, found): (&crate::case::Block, &Option<_>)| Block {
+    let block = |((block, found), heat): ((&crate::case::Block, &Option<_>), f64)| Block {
         name: block.name.clone(),
         part: block.part.map(|p| case.parts()[p].name.clone()),
         material: case.materials()[block.material].name.clone(),
-        heat_w: block.heat,
+        heat_w: heat,
         max_c: found.map(|f: ventrise_solver::PartTemperature| readings.ambient + f.max),
     };
-    case.blocks().iter().zip(&readings.blocks).map(block).collect()
-}
-
-fn warnings(run: &Run, readings: &Readings) -> Vec<String> {
-    let mut warnings = run.case.warnings();
-    warnings.extend_from_slice(run.mesh_notes);
-    warnings.extend_from_slice(&run.solution.notes);
-    let numbers = &readings.numbers;
-    let regions = run.problem.mesh().regions();
-    if let Some(rise) = numbers.max_air_rise
-        && regions.contains(&AIR)
-        && rise > BOUSSINESQ_SPREAD
-    {
-        warnings.push(format!(
-            "the air gets {rise:.0} K above ambient; the linear density law is within a tenth up \
-             to {BOUSSINESQ_SPREAD} K"
-        ));
-    }
-    let heat = readings.balance.heat_in;
-    if let Some(left_out) = run.radiation_left_out().filter(|q| *q > LEAST_RADIATION * heat) {
-        let rise = readings.parts.iter().flatten().map(|p| p.max).fold(0.0, f64::max);
-        warnings.push(format!(
-            "radiation is not modelled, since the case gives no emissivity: the blocks' surfaces \
-             would radiate up to {left_out:.2} W, and the hottest part may read up to {:.1} K too \
-             high. Give materials, blocks or sides an emissivity to model it",
-            rise * left_out / (left_out + heat)
-        ));
-    }
-    if let Some(radiation) = run.problem.radiation() {
-        let correction = radiation.correction();
-        if correction.defect > WORST_VIEW_DEFECT {
-            warnings.push(format!(
-                "view factors of a surface added up to one within {:.1e} only before they were \
-                 corrected; mirror sides opposite each other are followed so far and no further",
-                correction.defect
-            ));
-        }
-    }
-    for contact in contacts(run.problem, &run.solution.air, &run.solution.state) {
-        let flux = contact.heat.abs() / contact.area;
-        if !contact.has_joint && flux > JOINT_FLUX {
-            let of = |b: usize| match &run.case.blocks()[b].name {
-                Some(name) => format!("\"{name}\""),
-                None => format!("block {}", b + 1),
-            };
-            warnings.push(format!(
-                "between {} and {} {:.1} W cross {:.1} cm2 and no joint is given: every K cm2/W \
-                 would cost {:.1} K",
-                of(contact.blocks[0]),
-                of(contact.blocks[1]),
-                contact.heat.abs(),
-                1e4 * contact.area,
-                1e-4 * flux
-            ));
-        }
-    }
-    if numbers.vent_reynolds > TURBULENT_REYNOLDS {
-        warnings.push(format!(
-            "the Reynolds number in a slot is {:.0}; the laminar model holds up to about \
-             {TURBULENT_REYNOLDS}",
-            numbers.vent_reynolds
-        ));
-    }
-    for (slot, flow) in run.case.slots().iter().zip(&readings.slots) {
-        let smaller = flow.inflow.min(flow.outflow);
-        if smaller > 0.02 * flow.inflow.max(flow.outflow) {
-            warnings.push(format!("slot \"{}\" breathes in and out at once", slot.name));
-        }
-    }
-    warnings
+    let heats = readings.heats.iter().copied();
+    case.blocks().iter().zip(&readings.blocks).zip(heats).map(block).collect()
 }

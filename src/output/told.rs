@@ -17,11 +17,14 @@ pub struct Told {
     /// Whether the equations are met well enough for the numbers to mean anything.
     #[serde(default = "yes")]
     pub solved: bool,
-    /// `settled`, `swaying`, `drifting` or `stopped early`.
+    /// `settled`, `swaying`, `runs away`, `drifting` or `stopped early`.
     pub verdict: String,
     /// What ended it early.
     #[serde(default)]
     pub stopped_by: Option<String>,
+    /// About heat that has no steady answer.
+    #[serde(default)]
+    pub runaway: Option<ToldRunaway>,
     /// About a sway.
     #[serde(default)]
     pub sway: Option<ToldSway>,
@@ -181,6 +184,12 @@ pub struct ToldPart {
     /// Highest temperature [°C].
     #[serde(default)]
     pub max_c: Option<f64>,
+    /// Hottest junction [°C].
+    #[serde(default)]
+    pub junction_c: Option<f64>,
+    /// `junction` where the limit holds there.
+    #[serde(default)]
+    pub limit_at: Option<String>,
     /// Lowest and highest of `max_c` in a sway [°C].
     #[serde(default)]
     pub band_c: Option<[f64; 2]>,
@@ -193,6 +202,25 @@ pub struct ToldPart {
     /// Rise over heat [K/W].
     #[serde(default)]
     pub resistance_k_w: Option<f64>,
+}
+
+impl ToldPart {
+    /// The temperature that the limit judges [°C].
+    pub fn judged_c(&self) -> Option<f64> {
+        if self.limit_at.is_some() { self.junction_c } else { self.max_c }
+    }
+}
+
+/// Heat that has no steady answer.
+#[derive(Debug, Clone, Deserialize)]
+pub struct ToldRunaway {
+    /// How much more one watt more makes of itself [-].
+    pub growth: f64,
+    /// The hottest block.
+    #[serde(default)]
+    pub block: Option<String>,
+    /// Where it was given up [°C].
+    pub given_up_at_c: f64,
 }
 
 /// A slot.
@@ -223,6 +251,23 @@ pub struct ToldSlot {
     pub area_m2: Option<f64>,
 }
 
+/// What leaves an outer face.
+#[derive(Debug, Clone, Deserialize)]
+pub struct ToldOuter {
+    /// Heat that the outside air takes [W].
+    pub film_w: f64,
+    /// Heat radiated [W].
+    pub radiation_w: f64,
+    /// Heat of the sun absorbed [W].
+    pub sun_w: f64,
+    /// Mean temperature [°C].
+    pub surface_mean_c: f64,
+    /// Highest temperature [°C].
+    pub surface_max_c: f64,
+    /// Film coefficient used [W/(m²·K)].
+    pub film_w_m2_k: f64,
+}
+
 /// A side.
 #[derive(Debug, Clone, Deserialize)]
 pub struct ToldSide {
@@ -234,6 +279,9 @@ pub struct ToldSide {
     /// Heat with air [W].
     #[serde(default)]
     pub convection_w: f64,
+    /// Its outer face, where it has one.
+    #[serde(default)]
+    pub outer: Option<ToldOuter>,
     /// Air in [m³/s].
     #[serde(default)]
     pub in_m3_s: f64,

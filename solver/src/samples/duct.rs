@@ -9,6 +9,7 @@ use super::lines::{Grading, graded, joined, uniform};
 use super::read::{extreme, interpolate};
 use super::{AMBIENT, SampleError, empty_layout, plain, solid, unit_air};
 use crate::conduction::side_exchange;
+use crate::outer::Outer;
 use crate::{Air, Block, Problem, SideCondition, Slot, State};
 
 /// Cross-section of a duct.
@@ -171,7 +172,7 @@ impl Duct {
         let mut flux = 0.0;
         let mut area = 0.0;
         for (side, i) in [(Side::Left, 0), (Side::Right, nx - 1)] {
-            let exchange = side_exchange(problem, air, side, j);
+            let exchange = side_exchange(problem, air, &Outer::default(), side, j);
             if exchange.conductance > 0.0 {
                 flux += exchange.conductance * (exchange.rise - state.t[mesh.cell(i, j)]);
                 area += crate::conduction::side_area(problem, side, j);

@@ -67,6 +67,7 @@ fn plain(layout: &Layout, x: Vec<f64>, y: Vec<f64>, air: Air) -> Result<Descript
         joints: Vec::new(),
         sources: None,
         radiation: None,
+        heat_laws: Vec::new(),
     })
 }
 

@@ -5,6 +5,7 @@
 use ventrise_mesh::{Mesh, Side};
 
 use crate::conduction::{side_area, side_cell, side_exchange, x_conductance};
+use crate::outer::Outer;
 use crate::{Air, Problem, SideCondition, State};
 
 /// A highest (or lowest) value and where it is.
@@ -42,7 +43,7 @@ pub fn wall_flux(problem: &Problem, air: &Air, state: &State, side: Side) -> Wal
     let mut wall = WallHeat { total: 0.0, local: Vec::new() };
     for n in 0..mesh.slots(side).len() {
         let (i, j) = side_cell(problem, side, n);
-        let exchange = side_exchange(problem, air, side, n);
+        let exchange = side_exchange(problem, air, &Outer::default(), side, n);
         let heat =
             exchange.conductance * (exchange.rise - state.t[mesh.cell(i, j)]) + exchange.heat;
         let at = match side {

@@ -244,7 +244,7 @@ pub fn side_line(svg: &mut Svg, ends: [[f64; 2]; 2], out: [f64; 2], condition: S
         SideCondition::Open => svg.line(a, b, plain(1.0).dashed("3 4")),
         SideCondition::Adiabatic | SideCondition::Sliding(_) => svg.line(a, b, plain(1.8)),
         SideCondition::Temperature(_) => svg.line(a, b, plain(4.0)),
-        SideCondition::Film { .. } | SideCondition::Flux(_) => {
+        SideCondition::Film { .. } | SideCondition::Outside(_) | SideCondition::Flux(_) => {
             svg.line(a, b, plain(1.8));
             let length = (b[0] - a[0]).hypot(b[1] - a[1]);
             let apart = if matches!(condition, SideCondition::Flux(_)) { 9.0 } else { 6.0 };

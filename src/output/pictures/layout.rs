@@ -1,7 +1,7 @@
 //! `layout.svg`: the section to scale, with everything that the case names and the mesh.
 
 use ventrise_mesh::{Geometry, Side};
-use ventrise_solver::SideCondition;
+use ventrise_solver::{OuterFilm, SideCondition};
 
 use crate::case::units::rounded;
 use crate::case::{Case, ProbeShape, Slot, side_name};
@@ -312,6 +312,18 @@ fn told(condition: &SideCondition) -> String {
             number(coefficient),
             degrees(temperature)
         ),
+        SideCondition::Outside(o) => {
+            let film = match o.film {
+                OuterFilm::Given(h) => format!("a film of {} W/(m² K) to", number(h)),
+                OuterFilm::StillAir => "still air of".into(),
+            };
+            let sun = if o.sun > 0.0 {
+                format!(", {} W/m² of sun absorbed", number(o.sun))
+            } else {
+                String::new()
+            };
+            format!("wall with {film} {}{sun}", degrees(o.air))
+        }
         SideCondition::Sliding(speed) => format!("wall sliding at {} m/s", number(speed)),
     }
 }

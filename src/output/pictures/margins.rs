@@ -19,20 +19,21 @@ const MOST: usize = 24;
 pub fn draw(results: &Results) -> Option<String> {
     let ambient = results.ambient();
     let mut parts: Vec<&ToldPart> =
-        results.told.parts.iter().filter(|p| p.max_c.is_some()).collect();
+        results.told.parts.iter().filter(|p| p.judged_c().is_some()).collect();
     if parts.is_empty() {
         return None;
     }
     // The least margin first, parts without limit by their temperature last.
-    let key =
-        |p: &ToldPart| (p.margin_k.unwrap_or(f64::INFINITY), -p.max_c.unwrap_or(f64::NEG_INFINITY));
+    let key = |p: &ToldPart| {
+        (p.margin_k.unwrap_or(f64::INFINITY), -p.judged_c().unwrap_or(f64::NEG_INFINITY))
+    };
     parts.sort_by(|a, b| {
         let (a, b) = (key(a), key(b));
         a.0.total_cmp(&b.0).then(a.1.total_cmp(&b.1))
     });
     let left_out = parts.len().saturating_sub(MOST);
     parts.truncate(MOST);
-    let values = parts.iter().flat_map(|p| [p.max_c, p.limit_c]).flatten();
+    let values = parts.iter().flat_map(|p| [p.judged_c(), p.limit_c]).flatten();
     let bands = parts.iter().filter_map(|p| p.band_c).flatten();
     let [low, high] = range(values.chain(bands).chain([ambient]))?;
     let room = (high - low).max(1.0);
@@ -74,7 +75,7 @@ pub fn draw(results: &Results) -> Option<String> {
 }
 
 fn row(svg: &mut Svg, part: &ToldPart, ambient: f64, top: f64, at: &dyn Fn(f64) -> f64) {
-    let Some(max) = part.max_c else { return };
+    let Some(max) = part.judged_c() else { return };
     let over = part.margin_k.is_some_and(|m| m < 0.0);
     let hottest = decimal(max, 1);
     let (said, colour) = match (part.margin_k, part.limit_c) {

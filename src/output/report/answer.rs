@@ -3,7 +3,7 @@
 use serde::Serialize;
 
 use crate::output::results::Results;
-use crate::output::told::ToldPart;
+use crate::output::told::{ToldPart, ToldRunaway};
 use crate::output::words::fixed;
 
 use super::rows::number;
@@ -35,6 +35,9 @@ pub fn question(results: &Results) -> String {
 /// The answer.
 pub fn answer(results: &Results) -> Answer {
     let told = &results.told;
+    if let Some(runaway) = &told.runaway {
+        return runs_away(runaway);
+    }
     if !told.solved {
         return unsolved(results);
     }
@@ -45,7 +48,8 @@ pub fn answer(results: &Results) -> Answer {
     };
     let over = judged.filter(|(_, margin, _)| *margin < 0.0).count();
     let hottest = limit - margin;
-    let place = format!("“{}” reaches {} °C", part.name, fixed(hottest, 1));
+    let at = if part.limit_at.is_some() { " at the junction" } else { "" };
+    let place = format!("“{}” reaches {} °C{at}", part.name, fixed(hottest, 1));
     let of = format!("its limit of {} °C", fixed(limit, 1));
     let sentence = if margin < 0.0 {
         let others = match over {
@@ -69,6 +73,18 @@ pub fn answer(results: &Results) -> Answer {
     };
     let (tone, word) = if margin < 0.0 { ("over", "No") } else { ("kept", "Yes") };
     Answer { tone, word, sentence: format!("{sentence}{sways}.") }
+}
+
+/// The answer when heat grows without end.
+fn runs_away(runaway: &ToldRunaway) -> Answer {
+    let block = runaway.block.as_ref().map_or(String::new(), |name| format!(" in “{name}”"));
+    let sentence = format!(
+        "There is no steady temperature: at {} °C{block} one watt more of heat makes {} W more, \
+         faster than the housing carries it away.",
+        fixed(runaway.given_up_at_c, 0),
+        fixed(runaway.growth, 2)
+    );
+    Answer { tone: "over", word: "Runs away", sentence }
 }
 
 /// The answer when the equations are not met.

@@ -97,6 +97,7 @@ fn page(results: &Results, pictures: &[Picture]) -> Result<String, minijinja::Er
         pictures => pictures.iter().filter(|p| p.file != FIRST).map(shown).collect::<Vec<_>>(),
         paths => rows::paths(results),
         paths_note => rows::paths_note(results),
+        outer => rows::outer(results),
         slots => rows::slots(results),
         probes => rows::probes(results),
         state => rows::state(results),

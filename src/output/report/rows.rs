@@ -6,7 +6,7 @@ use ventrise_solver::{HEAT_BOUND, MASS_BOUND};
 use crate::case::units::rounded;
 use crate::output::results::Results;
 use crate::output::summary::{BOUSSINESQ_SPREAD, TURBULENT_REYNOLDS};
-use crate::output::told::ToldPart;
+use crate::output::told::{ToldOuter, ToldPart};
 use crate::output::words::{fixed, grouped, mm, sized};
 
 /// Seconds in an hour: flows are shown per hour.
@@ -65,6 +65,7 @@ pub fn margins(results: &Results) -> Table {
     let key = |p: &ToldPart| p.margin_k.unwrap_or(f64::INFINITY);
     parts.sort_by(|a, b| key(a).total_cmp(&key(b)));
     let radiates = parts.iter().any(|p| p.radiated_w.is_some());
+    let junctions = parts.iter().any(|p| p.junction_c.is_some());
     let row = |p: &&ToldPart| {
         let judged = match (p.margin_k, p.limit_c) {
             (Some(margin), _) if margin < 0.0 => "over",
@@ -80,18 +81,22 @@ pub fn margins(results: &Results) -> Table {
             None => perhaps(p.max_c, 1),
         };
         let radiated = radiates.then(|| of_size(p.radiated_w, 2));
+        let at = if p.limit_at.is_some() { " (junction)" } else { "" };
         let numbers = [
-            max,
-            perhaps(p.limit_c, 1),
+            format!("{}{at}", perhaps(p.limit_c, 1)),
             perhaps(p.margin_k, 1),
             perhaps(p.resistance_k_w, 2),
             judged.into(),
         ];
-        [p.name.clone(), number(p.heat_w)].into_iter().chain(radiated).chain(numbers).collect()
+        let junction = junctions.then(|| perhaps(p.junction_c, 1));
+        let start = [p.name.clone(), number(p.heat_w)].into_iter().chain(radiated);
+        start.chain([max]).chain(junction).chain(numbers).collect()
     };
     let radiated = radiates.then_some("Radiated, W");
     let header = ["Part", "Heat, W"].into_iter().chain(radiated);
-    let rest = ["Hottest, °C", "Limit, °C", "Margin, K", "K/W", "Limit is"];
+    let junction = junctions.then_some("Junction, °C");
+    let header = header.chain(["Hottest, °C"]).chain(junction);
+    let rest = ["Limit, °C", "Margin, K", "K/W", "Limit is"];
     Table {
         header: header.chain(rest).collect(),
         rows: parts.iter().map(row).collect(),
@@ -107,7 +112,14 @@ pub fn paths(results: &Results) -> Vec<Path> {
         found.push((format!("with air through “{}”", slot.name), slot.heat_w));
     }
     for side in &told.sides {
-        found.push((format!("through the {} side", side.name), side.conduction_w));
+        match &side.outer {
+            Some(o) => {
+                found.push((format!("by the film of the {} side", side.name), o.film_w));
+                found.push((format!("radiated by the {} side outside", side.name), o.radiation_w));
+                found.push((format!("sun absorbed by the {} side", side.name), -o.sun_w));
+            }
+            None => found.push((format!("through the {} side", side.name), side.conduction_w)),
+        }
         found.push((format!("with air through the open {} side", side.name), side.convection_w));
     }
     // Slots and sides are told one by one; what else there is has its own name.
@@ -143,6 +155,39 @@ pub fn paths_note(results: &Results) -> String {
         of_size(b.heat_in_w, 3),
         of_size(b.heat_out_w, 3)
     )
+}
+
+/// Outer faces of sides.
+pub fn outer(results: &Results) -> Table {
+    let told = &results.told;
+    let b = &told.balance;
+    let all_heat = b.heat_in_w.unwrap_or(0.0).abs().max(b.heat_out_w.unwrap_or(0.0).abs());
+    let row = |(name, o): (&String, &ToldOuter)| {
+        let heat = [o.film_w, o.radiation_w, o.sun_w].map(|watts| sized(watts, 3, all_heat));
+        let rest =
+            [fixed(o.surface_mean_c, 1), fixed(o.surface_max_c, 1), sized(o.film_w_m2_k, 3, 0.0)];
+        std::iter::once(name.clone()).chain(heat).chain(rest).collect()
+    };
+    Table {
+        header: vec![
+            "Outer face",
+            "Film, W",
+            "Radiated, W",
+            "Sun absorbed, W",
+            "Mean, °C",
+            "Hottest, °C",
+            "Film, W/(m² K)",
+        ],
+        rows: told
+            .sides
+            .iter()
+            .filter_map(|s| Some((&s.name, s.outer.as_ref()?)))
+            .map(row)
+            .collect(),
+        note: "Film and radiation leave the face, the sun's heat enters it; the rest comes from \
+               inside. Temperatures are for information, no statement of conformity."
+            .into(),
+    }
 }
 
 /// Slots and open sides.
