@@ -13,6 +13,7 @@ mod conduction;
 mod contacts;
 mod equations;
 mod error;
+mod fan;
 mod fas;
 mod film;
 mod level;
@@ -36,15 +37,17 @@ mod state;
 mod sway;
 mod transfer;
 mod transient;
+mod vent;
 
 pub use air::{Air, AirModel, standard_pressure};
 pub use balance::{Balance, OpeningFlow, REST_SPEED, SideFlow, balance, side_flows, slot_flows};
 pub use boundary::{SideCondition, Slot};
 pub use contacts::{Contact, contacts};
 pub use error::{ProblemError, SolveError};
+pub use fan::{Fan, FanPoint, fan_points};
 pub use numbers::{
     Numbers, PartTemperature, block_temperatures, cell_velocities, heat_fluxes, numbers,
-    part_temperatures,
+    part_temperatures, slot_reynolds,
 };
 pub use pieces::Pieces;
 pub use probe::{Sample, Sampler};
@@ -54,7 +57,8 @@ pub use radiation::{
     Backing, Correction, Face, Owner, PATCH_COUNT, Patch, Radiation, RadiationError,
     RadiationSource, STEFAN_BOLTZMANN, SideSurface, Surfaces,
 };
-pub use settings::{Convection, DRIFT_BOUND, HEAT_BOUND, MASS_BOUND, SOLVED, Settings};
+pub use settings::{Convection, DRIFT_BOUND, FAN_BOUND, HEAT_BOUND, MASS_BOUND, SOLVED, Settings};
 pub use solution::{Control, Progress, Residuals, Solution, StopReason, Verdict};
 pub use solve::solve;
 pub use state::State;
+pub use vent::{LossLaw, Vent, VentKind};

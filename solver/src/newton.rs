@@ -320,6 +320,15 @@ impl Newton {
                 }
             });
         }
+        // Fans: every face of the slot answers to the flow through all of them.
+        for fan in &level.fans {
+            let numbers = if fan.along_x { &numbers.u } else { &numbers.v };
+            fan.each_pair(state, |row, column, slope| {
+                if let (Some(row), Some(column)) = (numbers[row], numbers[column]) {
+                    matrix.add_triplet(row as usize, column as usize, slope);
+                }
+            });
+        }
         // One pressure of every closed region keeps its value.
         for row in pinned {
             matrix.add_triplet(row as usize, row as usize, 1.0);

@@ -10,9 +10,11 @@ pub(crate) fn evaluate(level: &Level, state: &State, rhs: &State, out: &mut Stat
     if let Some(radiant) = &level.radiant {
         radiant.add(&radiant.patches(&state.t), &mut out.t);
     }
+    level.fans.iter().for_each(|fan| fan.add_lack(state, out));
 }
 
-/// The same without radiation, which couples all surfaces: what remains couples neighbours only.
+/// The same without radiation, which couples all surfaces, and without what fans lack at a flow,
+/// which couples all faces of a slot: what remains couples neighbours only.
 /// One pass: what a row reads stays near for all four equations.
 pub(crate) fn evaluate_local(level: &Level, state: &State, rhs: &State, out: &mut State) {
     let (nx, ny) = (level.nx, level.ny);

@@ -7,14 +7,30 @@ use ventrise_mesh::{Geometry, Side};
 use ventrise_solver::SideCondition;
 
 use super::error::{CaseError, Cause};
-use super::model::{Ambient, Probe, ProbeShape, Section, Slot, side_name};
+use super::model::{Ambient, Probe, ProbeShape, Resistance, Section, Slot, side_name};
 use super::parse::{Keys, Located, Reader, Scope};
 use super::units::Dimension;
+use super::vents::read_resistance;
 
 const SLOT: Keys = Keys {
     what: "a slot",
-    known: &["name", "side", "from", "to", "loss"],
-    later: &["fan", "free-area", "kind"],
+    known: &[
+        "name",
+        "side",
+        "from",
+        "to",
+        "loss",
+        "kind",
+        "free-area",
+        "blocked",
+        "gap",
+        "blade",
+        "hole",
+        "sheet",
+        "wire",
+        "opening",
+    ],
+    later: &["fan"],
 };
 
 const SIDE_NAMES: [&str; 4] = ["left", "right", "bottom", "top"];
@@ -28,7 +44,7 @@ pub(super) struct SlotDraft {
     pub side: Option<Located<Side>>,
     pub from: Option<Located<f64>>,
     pub to: Option<Located<f64>>,
-    pub loss: Option<f64>,
+    pub resistance: Option<Resistance>,
 }
 
 impl SlotDraft {
@@ -38,7 +54,7 @@ impl SlotDraft {
             name: self.name,
             side: self.side?.value,
             span: [self.from?.value, self.to?.value],
-            loss: self.loss?,
+            resistance: self.resistance?,
         })
     }
 }
@@ -52,10 +68,8 @@ pub(super) fn read_slots(reader: &mut Reader, top: &Scope) -> Vec<SlotDraft> {
             scope.place = format!("slot \"{}\"", name.value);
         }
         reader.check_keys(&scope, &SLOT);
-        for (key, example) in [("side", "\"bottom\""), ("loss", "1.5")] {
-            if !scope.has(key) {
-                reader.missing(&scope, key, example);
-            }
+        if !scope.has("side") {
+            reader.missing(&scope, "side", "\"bottom\"");
         }
         let side = reader.word(&scope, "side", &SIDE_NAMES, &[]).and_then(|word| {
             let side = Side::ALL.into_iter().find(|s| side_name(*s) == word.value)?;
@@ -70,10 +84,7 @@ pub(super) fn read_slots(reader: &mut Reader, top: &Scope) -> Vec<SlotDraft> {
             }
             _ => false,
         };
-        let loss = reader.number(&scope, "loss").filter(|loss| {
-            let good = (0.0..=1e6).contains(&loss.value);
-            reader.within(&scope, "loss", loss, good, "from 0 to 1e6")
-        });
+        let resistance = read_resistance(reader, &scope);
         if let Some(name) = &name
             && slots.iter().any(|s| s.name == name.value)
         {
@@ -87,7 +98,7 @@ pub(super) fn read_slots(reader: &mut Reader, top: &Scope) -> Vec<SlotDraft> {
             side,
             from: from.filter(|_| rising),
             to: to.filter(|_| rising),
-            loss: loss.map(|l| l.value),
+            resistance,
         });
     }
     slots

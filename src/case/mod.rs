@@ -21,10 +21,12 @@ pub mod setup;
 mod surfaces;
 mod tables;
 pub mod units;
+mod vents;
 
 pub use error::{CaseError, CaseErrors, Cause};
 pub use estimate::Estimate;
 pub use model::{
-    AirChoice, Ambient, Block, Case, Material, MeshChoice, Part, Probe, ProbeShape, Section, Slot,
-    SolveChoice, side_name,
+    AirChoice, Ambient, Block, Case, Material, MeshChoice, Part, Probe, ProbeShape, Resistance,
+    Section, Slot, SolveChoice, side_name,
 };
+pub use vents::kind_words;

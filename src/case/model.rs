@@ -3,7 +3,7 @@
 use std::ops::Range;
 
 use ventrise_mesh::{Geometry, Rectangle, Side};
-use ventrise_solver::{Air, Settings, SideCondition};
+use ventrise_solver::{Air, LossLaw, Settings, SideCondition, Vent};
 
 use super::error::CaseError;
 
@@ -110,8 +110,40 @@ pub struct Slot {
     pub side: Side,
     /// Extent along the side [m].
     pub span: [f64; 2],
-    /// Loss coefficient on the speed through the opening [-].
-    pub loss: f64,
+    /// What it costs the air to pass.
+    pub resistance: Resistance,
+}
+
+/// What it costs the air to pass a slot.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub enum Resistance {
+    /// Loss coefficient on the speed through the slot's whole area [-].
+    Loss(f64),
+    /// The vent that covers it.
+    Vent(Vent),
+}
+
+impl Resistance {
+    /// The loss law on the speed through the slot's whole area.
+    pub fn law(&self) -> LossLaw {
+        match self {
+            Resistance::Loss(loss) => LossLaw { loss: *loss, friction: 0.0 },
+            Resistance::Vent(vent) => vent.law(),
+        }
+    }
+
+    /// The vent, where there is one.
+    pub fn vent(&self) -> Option<&Vent> {
+        match self {
+            Resistance::Loss(_) => None,
+            Resistance::Vent(vent) => Some(vent),
+        }
+    }
+
+    /// Share of the slot's area that is free; all of it where a loss is given.
+    pub fn open_share(&self) -> f64 {
+        self.vent().map_or(1.0, Vent::open_share)
+    }
 }
 
 /// A named place whose values are reported.
@@ -313,7 +345,7 @@ impl Case {
         self.blocks.iter().map(|b| b.heat).sum()
     }
 
-    /// Area of a slot [m²]: over the depth, or around the full revolution.
+    /// Whole (gross) area of a slot [m²]: over the depth, or around the full revolution.
     pub fn slot_area(&self, slot: &Slot) -> f64 {
         let [from, to] = slot.span;
         match (self.section.geometry, slot.side) {

@@ -3,11 +3,12 @@
 use std::fmt::Write as _;
 
 use ventrise_mesh::{Geometry, Side, Spacing};
-use ventrise_solver::SideCondition;
+use ventrise_solver::{SideCondition, Vent};
 
-use super::model::{AirChoice, Case, ProbeShape, side_name};
+use super::model::{AirChoice, Case, ProbeShape, Resistance, side_name};
 use super::setup::spacing;
 use super::units::{Dimension, number, write};
+use super::vents::kind_words;
 
 /// Lines of a TOML text.
 #[derive(Default)]
@@ -35,6 +36,18 @@ impl Lines {
     fn lengths(&mut self, key: &str, lengths: [f64; 2]) {
         let [a, b] = lengths.map(|l| quoted(&write(l, "mm")));
         self.line(&format!("{key} = [{a}, {b}]"));
+    }
+}
+
+fn write_vent(lines: &mut Lines, vent: &Vent) {
+    let (kind, sizes) = kind_words(&vent.kind);
+    lines.text("kind", kind);
+    lines.quantity("free-area", vent.free_share, Dimension::Share);
+    if vent.blocked > 0.0 {
+        lines.quantity("blocked", vent.blocked, Dimension::Share);
+    }
+    for (key, size) in sizes {
+        lines.quantity(key, size, Dimension::Length);
     }
 }
 
@@ -202,7 +215,10 @@ impl Case {
             lines.text("side", side_name(slot.side));
             lines.quantity("from", slot.span[0], Dimension::Length);
             lines.quantity("to", slot.span[1], Dimension::Length);
-            lines.line(&format!("loss = {}", number(slot.loss)));
+            match &slot.resistance {
+                Resistance::Loss(loss) => lines.line(&format!("loss = {}", number(*loss))),
+                Resistance::Vent(vent) => write_vent(lines, vent),
+            }
         }
         lines.header("[sides]");
         for side in Side::ALL {

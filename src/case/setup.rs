@@ -98,7 +98,8 @@ pub fn problem(case: &Case, mesh: Mesh) -> Result<Problem, ProblemError> {
         gravity: [0.0, -GRAVITY],
         solids: case.materials().iter().map(solid).collect(),
         blocks: case.blocks().iter().map(|b| Block { solid: b.material, heat: b.heat }).collect(),
-        slots: case.slots().iter().map(|s| Slot { loss: s.loss, drive: 0.0 }).collect(),
+        slots: case.slots().iter().map(slot).collect(),
+        fans: Vec::new(),
         sides: *case.sides(),
         parts: case.parts().iter().map(|p| p.blocks.clone()).collect(),
         joints: case
@@ -109,6 +110,10 @@ pub fn problem(case: &Case, mesh: Mesh) -> Result<Problem, ProblemError> {
         sources: None,
         radiation: surfaces(case),
     })
+}
+
+fn slot(slot: &super::Slot) -> Slot {
+    Slot { law: slot.resistance.law(), ..Slot::with_loss(0.0) }
 }
 
 /// How the surfaces radiate; `None` where the case gives no emissivity.

@@ -10,6 +10,7 @@ pub mod readings;
 pub mod report;
 pub mod results;
 pub mod screen;
+pub mod slots;
 pub mod summary;
 pub mod table;
 pub mod told;

@@ -11,6 +11,7 @@ use crate::memory;
 
 use super::readings::celsius;
 use super::side_name;
+use super::slots::resistance_words;
 use super::words::{counted, fixed, grouped, mm, shortened, sized};
 
 /// Most columns of a name.
@@ -128,15 +129,20 @@ impl<'a> Overview<'a> {
     fn edge(&self, out: &mut dyn Write) -> io::Result<()> {
         writeln!(out, "Slots     {}", self.case.slots().len())?;
         for slot in self.case.slots() {
+            let gross = 1e4 * self.case.slot_area(slot);
+            let free = match slot.resistance.vent() {
+                Some(vent) => format!(" gross, {} cm2 free", fixed(gross * vent.open_share(), 2)),
+                None => String::new(),
+            };
             writeln!(
                 out,
-                "  {}: {}, {} to {} mm, {} cm2, loss {}",
+                "  {}: {}, {} to {} mm, {} cm2{free}, {}",
                 shortened(&slot.name, NAME),
                 side_name(slot.side),
                 mm(slot.span[0]),
                 mm(slot.span[1]),
-                fixed(1e4 * self.case.slot_area(slot), 2),
-                slot.loss
+                fixed(gross, 2),
+                resistance_words(&slot.resistance)
             )?;
         }
         let sides = Side::ALL.map(|side| {

@@ -4,7 +4,7 @@ use ventrise_mesh::AIR;
 use ventrise_solver::{
     Balance, Numbers, OpeningFlow, PartTemperature, Problem, RadiantHeat, STEFAN_BOLTZMANN, Sample,
     Sampler, SideFlow, Solution, balance, block_temperatures, cell_velocities, heat_fluxes,
-    numbers, part_temperatures, radiant_heat, side_flows, slot_flows,
+    numbers, part_temperatures, radiant_heat, side_flows, slot_flows, slot_reynolds,
 };
 
 use crate::case::{Case, ProbeShape};
@@ -58,6 +58,8 @@ pub struct Readings {
     pub blocks: Vec<Option<PartTemperature>>,
     /// Slots, in the case's order.
     pub slots: Vec<OpeningFlow>,
+    /// Reynolds number of every slot [-], in the case's order.
+    pub slot_reynolds: Vec<f64>,
     /// Sides.
     pub sides: [SideFlow; 4],
     /// Balance.
@@ -91,6 +93,7 @@ impl Run<'_> {
             parts: part_temperatures(problem, state),
             blocks: block_temperatures(problem, state),
             slots: slot_flows(problem, air, state),
+            slot_reynolds: slot_reynolds(problem, air, state),
             sides: side_flows(problem, air, state),
             balance: balance(problem, air, state),
             numbers: numbers(problem, air, state),

@@ -32,6 +32,7 @@ pub fn report(
     writeln!(out)?;
     parts(out, summary, readings)?;
     slots(out, summary)?;
+    vents(out, summary)?;
     heat(out, summary)?;
     balances(out, summary, readings)?;
     writeln!(out, "Verdict: {}", verdict(summary))?;
@@ -129,6 +130,29 @@ fn slots(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
     for (name, side) in &open {
         row(name, [side.in_m3_s, side.out_m3_s], side.out_mean_c, side.convection_w)?;
     }
+    writeln!(out)
+}
+
+/// Areas and losses of the slots, where a vent covers one of them.
+fn vents(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
+    if summary.slots.iter().all(|s| s.vent.is_none()) {
+        return Ok(());
+    }
+    let w = name_width(summary.slots.iter().map(|s| s.name.as_str()));
+    let header = ["gross cm2", "free cm2", "m/s", "loss K", "Re"].map(String::from);
+    writeln!(out, "{:w$}{}", "Vent", columns(&header))?;
+    for slot in &summary.slots {
+        let cells = [
+            fixed(1e4 * slot.area_m2, 2),
+            fixed(1e4 * slot.free_area_m2, 2),
+            sized(slot.speed_m_s, 3, 0.0),
+            shown(slot.loss, 2),
+            fixed(slot.reynolds, 0),
+        ];
+        let kind = slot.vent.unwrap_or("loss as given");
+        writeln!(out, "{}{}  {kind}", in_column(&slot.name, w), columns(&cells))?;
+    }
+    writeln!(out, "  m/s and K on the gross area; Re of gaps, holes or wires")?;
     writeln!(out)
 }
 

@@ -11,6 +11,7 @@ use crate::case::{Case, ProbeShape};
 
 use super::readings::{Interruption, Readings, Run};
 use super::side_name;
+use super::slots::{self, Slot, slots};
 
 /// Spread of temperatures beyond which the linear density law is off by more than a tenth [K]:
 /// D. D. Gray, A. Giorgini, Int. J. Heat Mass Transfer 19 (1976) 545-551, air at 15 °C and 1 atm.
@@ -213,29 +214,6 @@ pub struct Part {
     pub resistance_k_w: Option<f64>,
 }
 
-/// A slot.
-#[derive(Debug, Clone, Serialize)]
-pub struct Slot {
-    /// Name.
-    pub name: String,
-    /// Side it lies in.
-    pub side: &'static str,
-    /// Air that enters [m³/s].
-    pub in_m3_s: f64,
-    /// Air that leaves [m³/s].
-    pub out_m3_s: f64,
-    /// Mean temperature of the leaving air [°C].
-    pub out_mean_c: Option<f64>,
-    /// Mean pressure behind the slot [Pa].
-    pub mean_pressure_pa: f64,
-    /// Heat carried out [W].
-    pub heat_w: f64,
-    /// Free area [m²].
-    pub area_m2: f64,
-    /// Lowest and highest net flow in while the flow sways [m³/s].
-    pub net_in_band_m3_s: Option<[f64; 2]>,
-}
-
 /// A side.
 #[derive(Debug, Clone, Serialize)]
 pub struct SideHeat {
@@ -308,7 +286,7 @@ impl Summary {
         let last = solution.history.last().cloned().unwrap_or_default();
         let (air, numbers, balance) = (&solution.air, &readings.numbers, &readings.balance);
         let heat_of = |side: &ventrise_solver::SideFlow| side.heat();
-        Summary {
+        let mut summary = Summary {
             ventrise: env!("CARGO_PKG_VERSION"),
             case: CaseName { title: case.title().into(), sha256: case.sha256().into() },
             solved: solved(solution),
@@ -366,13 +344,15 @@ impl Summary {
                 radiation: readings.radiant.as_ref().map_or(0.0, |r| r.openings),
             },
             parts: parts(case, readings, solution),
-            slots: slots(case, readings, &solution.verdict),
+            slots: slots(case, air, readings, &solution.verdict),
             sides: sides(readings),
             probes: probes(case, readings),
             blocks: blocks(case, readings),
             materials: case.materials().iter().map(|m| m.name.clone()).collect(),
-            warnings: warnings(run, readings),
-        }
+            warnings: Vec::new(),
+        };
+        summary.warnings = warnings(run, readings, &summary.slots);
+        summary
     }
 
     /// The file's text.
@@ -451,26 +431,6 @@ fn parts(case: &Case, readings: &Readings, solution: &Solution) -> Vec<Part> {
     case.parts().iter().enumerate().map(part).collect()
 }
 
-fn slots(case: &Case, readings: &Readings, verdict: &Verdict) -> Vec<Slot> {
-    let band = |n: usize| match verdict {
-        Verdict::Swaying { slot_band, .. } => slot_band.get(n).copied(),
-        _ => None,
-    };
-    let slot =
-        |(n, (slot, flow)): (usize, (&crate::case::Slot, &ventrise_solver::OpeningFlow))| Slot {
-            name: slot.name.clone(),
-            side: side_name(slot.side),
-            in_m3_s: flow.inflow,
-            out_m3_s: flow.outflow,
-            out_mean_c: flow.out_mean_rise.map(|rise| readings.ambient + rise),
-            mean_pressure_pa: flow.mean_pressure,
-            heat_w: flow.heat,
-            area_m2: flow.area,
-            net_in_band_m3_s: band(n),
-        };
-    case.slots().iter().zip(&readings.slots).enumerate().map(slot).collect()
-}
-
 fn sides(readings: &Readings) -> Vec<SideHeat> {
     let side = |side: Side| {
         let flow = readings.sides[side.index()];
@@ -525,7 +485,7 @@ fn blocks(case: &Case, readings: &Readings) -> Vec<Block> {
     case.blocks().iter().zip(&readings.blocks).map(block).collect()
 }
 
-fn warnings(run: &Run, readings: &Readings) -> Vec<String> {
+fn warnings(run: &Run, readings: &Readings, slots: &[Slot]) -> Vec<String> {
     let mut warnings = run.case.warnings();
     warnings.extend_from_slice(run.mesh_notes);
     warnings.extend_from_slice(&run.solution.notes);
@@ -585,11 +545,6 @@ fn warnings(run: &Run, readings: &Readings) -> Vec<String> {
             numbers.vent_reynolds
         ));
     }
-    for (slot, flow) in run.case.slots().iter().zip(&readings.slots) {
-        let smaller = flow.inflow.min(flow.outflow);
-        if smaller > 0.02 * flow.inflow.max(flow.outflow) {
-            warnings.push(format!("slot \"{}\" breathes in and out at once", slot.name));
-        }
-    }
+    warnings.extend(slots::warnings(run.case, slots));
     warnings
 }

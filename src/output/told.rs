@@ -218,9 +218,24 @@ pub struct ToldSlot {
     /// Heat carried out [W].
     #[serde(default)]
     pub heat_w: f64,
-    /// Free area [m²].
+    /// Whole area [m²].
     #[serde(default)]
     pub area_m2: Option<f64>,
+    /// Free area [m²].
+    #[serde(default)]
+    pub free_area_m2: Option<f64>,
+    /// Mean speed through the whole area [m/s].
+    #[serde(default)]
+    pub speed_m_s: Option<f64>,
+    /// Loss coefficient on that speed.
+    #[serde(default)]
+    pub loss: Option<f64>,
+    /// Reynolds number.
+    #[serde(default)]
+    pub reynolds: Option<f64>,
+    /// Kind of the vent, if there is one.
+    #[serde(default)]
+    pub vent: Option<String>,
 }
 
 /// A side.

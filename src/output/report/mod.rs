@@ -98,6 +98,7 @@ fn page(results: &Results, pictures: &[Picture]) -> Result<String, minijinja::Er
         paths => rows::paths(results),
         paths_note => rows::paths_note(results),
         slots => rows::slots(results),
+        vents => rows::vents(results),
         probes => rows::probes(results),
         state => rows::state(results),
         validity => rows::validity(results),

@@ -197,6 +197,32 @@ pub fn slots(results: &Results) -> Table {
     }
 }
 
+/// Areas and losses of the slots; nothing where no vent covers one.
+pub fn vents(results: &Results) -> Table {
+    let slots = &results.told.slots;
+    if slots.iter().all(|s| s.vent.is_none()) {
+        return Table::default();
+    }
+    let row = |s: &crate::output::told::ToldSlot| {
+        vec![
+            s.name.clone(),
+            s.vent.clone().unwrap_or_else(|| "loss as given".into()),
+            perhaps(s.area_m2.map(|a| 1e4 * a), 1),
+            perhaps(s.free_area_m2.map(|a| 1e4 * a), 1),
+            of_size(s.speed_m_s, 3),
+            perhaps(s.loss, 2),
+            perhaps(s.reynolds, 0),
+        ]
+    };
+    Table {
+        header: vec!["Slot", "Vent", "Gross, cm²", "Free, cm²", "Speed, m/s", "Loss K", "Reynolds"],
+        rows: slots.iter().map(row).collect(),
+        note: "Speed: mean through the gross area, to which K refers. Reynolds number: of the \
+               vent's gaps, holes or wires; of the slot where a loss is given."
+            .into(),
+    }
+}
+
 /// Probes.
 pub fn probes(results: &Results) -> Table {
     let row = |p: &crate::output::told::ToldProbe| {
