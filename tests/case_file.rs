@@ -55,7 +55,7 @@ fn content(case: &Case) -> String {
         .map(|m| (&m.name, m.conductivity, m.density, m.specific_heat))
         .collect();
     format!(
-        "{:?} {:?} {:?} {:?} {materials:?} {:#?} {:?} {:?} {:?} {:?} {:?} {:?}",
+        "{:?} {:?} {:?} {:?} {materials:?} {:#?} {:?} {:?} {:?} {:?} {:?} {:?} {:?}",
         case.title(),
         case.section(),
         case.ambient(),
@@ -63,6 +63,7 @@ fn content(case: &Case) -> String {
         case.blocks(),
         case.parts(),
         case.slots(),
+        case.fans(),
         case.sides(),
         case.probes(),
         case.solve_choice(),

@@ -160,6 +160,20 @@ impl SlotFan {
         self.faces.iter().for_each(|(face, push)| source[*face] += push * pressure);
     }
 
+    /// Speed through the slot that it cannot exceed by itself [m/s]: that of P(0) without any loss,
+    /// or of free delivery.
+    pub fn largest_speed(&self) -> f64 {
+        let [pressure, _] = self.fan.pressure(0.0, self.density);
+        let free = self.fan.free_delivery().map_or(f64::INFINITY, |flow| flow / self.area);
+        (2.0 * pressure / self.density).sqrt().min(free)
+    }
+
+    /// Size of its force on the slot's air at a state [N].
+    pub fn force(&self, state: &State) -> f64 {
+        let [lack, _] = self.lack(state);
+        (self.fan.pressure(0.0, self.density)[0] + lack).abs() * self.area
+    }
+
     /// P(V̇) − P(0) [Pa] and its slope [Pa·s/m³] at a state.
     fn lack(&self, state: &State) -> [f64; 2] {
         let field = self.field(state);

@@ -93,6 +93,8 @@ pub(crate) struct Level {
     pub source: State,
     /// Running fans.
     pub fans: Vec<SlotFan>,
+    /// Largest speed that a pressure in a slot, or a fan, can drive [m/s]; zero without.
+    pub driven_speed: f64,
     /// For every air region without an opening: its cells.
     pub closed_regions: Vec<Vec<u32>>,
     /// Heat put in by blocks and sides [W].
@@ -192,6 +194,7 @@ impl Level {
             }),
             source: State::rest(mesh),
             fans: Vec::new(),
+            driven_speed: 0.0,
             closed_regions: Vec::new(),
             heat_in: 0.0,
             radiant: Radiant::new(problem, air),
@@ -203,6 +206,10 @@ impl Level {
         for fan in &level.fans {
             fan.add_shut_off(&mut level.source);
         }
+        let given = level.openings.iter().flatten().map(|o| o.drive.abs());
+        let given = given.map(|drive| (2.0 * drive / air.density).sqrt());
+        let speeds = given.chain(level.fans.iter().map(SlotFan::largest_speed));
+        level.driven_speed = speeds.fold(0.0, f64::max);
         level.closed_regions = closed_regions(&level);
         level
     }

@@ -24,7 +24,12 @@ pub(super) fn doubts(case: &Case) -> Vec<String> {
     let driven =
         case.sides.iter().any(|s| matches!(s, SideCondition::Temperature(t) if *t != ambient));
     if case.blocks.iter().all(|b| b.heat == 0.0) && !fluxes && !driven {
-        doubts.push("there is no heat at all: the air will stay at rest".to_string());
+        let air = if case.is_driven() {
+            "only the fan moves the air"
+        } else {
+            "the air will stay at rest"
+        };
+        doubts.push(format!("there is no heat at all: {air}"));
     }
     for side in Side::ALL {
         match case.sides[side.index()] {
@@ -50,7 +55,9 @@ pub(super) fn doubts(case: &Case) -> Vec<String> {
         }
     }
     let open = case.sides.contains(&SideCondition::Open);
-    if let Some(doubt) = trapped(case) {
+    if case.is_driven() {
+        // What follows is about draught alone.
+    } else if let Some(doubt) = trapped(case) {
         doubts.push(doubt);
     } else if !open && !case.slots.is_empty() {
         let heights: Vec<f64> = case.slots.iter().map(|s| case.slot_height(s)).collect();

@@ -7,7 +7,7 @@ use ventrise_mesh::{Geometry, Side};
 use ventrise_solver::SideCondition;
 
 use super::error::{CaseError, Cause};
-use super::model::{Ambient, Probe, ProbeShape, Resistance, Section, Slot, side_name};
+use super::model::{Ambient, Fan, Probe, ProbeShape, Resistance, Section, Slot, side_name};
 use super::parse::{Keys, Located, Reader, Scope};
 use super::units::Dimension;
 use super::vents::read_resistance;
@@ -29,8 +29,9 @@ const SLOT: Keys = Keys {
         "sheet",
         "wire",
         "opening",
+        "fan",
     ],
-    later: &["fan"],
+    later: &[],
 };
 
 const SIDE_NAMES: [&str; 4] = ["left", "right", "bottom", "top"];
@@ -45,16 +46,19 @@ pub(super) struct SlotDraft {
     pub from: Option<Located<f64>>,
     pub to: Option<Located<f64>>,
     pub resistance: Option<Resistance>,
+    /// Name of the fan in it.
+    pub fan: Option<Located<String>>,
 }
 
 impl SlotDraft {
-    /// The slot, when everything was read.
-    pub fn finish(self) -> Option<Slot> {
+    /// The slot, when everything was read; its fan is one of `fans`.
+    pub fn finish(self, fans: &[Fan]) -> Option<Slot> {
         Some(Slot {
             name: self.name,
             side: self.side?.value,
             span: [self.from?.value, self.to?.value],
             resistance: self.resistance?,
+            fan: self.fan.and_then(|fan| fans.iter().position(|f| f.name == fan.value)),
         })
     }
 }
@@ -85,6 +89,7 @@ pub(super) fn read_slots(reader: &mut Reader, top: &Scope) -> Vec<SlotDraft> {
             _ => false,
         };
         let resistance = read_resistance(reader, &scope);
+        let fan = reader.text(&scope, "fan");
         if let Some(name) = &name
             && slots.iter().any(|s| s.name == name.value)
         {
@@ -99,6 +104,7 @@ pub(super) fn read_slots(reader: &mut Reader, top: &Scope) -> Vec<SlotDraft> {
             from: from.filter(|_| rising),
             to: to.filter(|_| rising),
             resistance,
+            fan,
         });
     }
     slots

@@ -9,6 +9,7 @@ mod doubts;
 mod edge;
 mod error;
 mod estimate;
+mod fans;
 mod joints;
 pub mod materials;
 mod meshing;
@@ -26,7 +27,7 @@ mod vents;
 pub use error::{CaseError, CaseErrors, Cause};
 pub use estimate::Estimate;
 pub use model::{
-    AirChoice, Ambient, Block, Case, Material, MeshChoice, Part, Probe, ProbeShape, Resistance,
-    Section, Slot, SolveChoice, side_name,
+    AirChoice, Ambient, Block, Case, Fan, Material, MeshChoice, Part, Probe, ProbeShape,
+    Resistance, Section, Slot, SolveChoice, side_name,
 };
 pub use vents::kind_words;

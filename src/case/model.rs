@@ -112,6 +112,25 @@ pub struct Slot {
     pub span: [f64; 2],
     /// What it costs the air to pass.
     pub resistance: Resistance,
+    /// Fan in it, an index into [`Case::fans`].
+    pub fan: Option<usize>,
+}
+
+/// A fan.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Fan {
+    /// Name.
+    pub name: String,
+    /// Points (flow [m³/s], pressure [Pa]) at full speed.
+    pub curve: Vec<[f64; 2]>,
+    /// Density that the curve holds for [kg/m³].
+    pub density: f64,
+    /// Share of full speed; zero: it stands.
+    pub speed: f64,
+    /// Whether it blows into the section.
+    pub inward: bool,
+    /// Loss coefficient of the standing fan on the speed through the slot, when given [-].
+    pub stopped_loss: Option<f64>,
 }
 
 /// What it costs the air to pass a slot.
@@ -218,6 +237,7 @@ pub struct Case {
     pub(super) parts: Vec<Part>,
     pub(super) joints: Vec<Joint>,
     pub(super) slots: Vec<Slot>,
+    pub(super) fans: Vec<Fan>,
     pub(super) sides: [SideCondition; 4],
     pub(super) side_emissivities: [Option<f64>; 4],
     pub(super) probes: Vec<Probe>,
@@ -281,6 +301,16 @@ impl Case {
     /// Slots, in the order of the file.
     pub fn slots(&self) -> &[Slot] {
         &self.slots
+    }
+
+    /// Fans, in the order of the file.
+    pub fn fans(&self) -> &[Fan] {
+        &self.fans
+    }
+
+    /// Whether a fan turns in one of the slots.
+    pub fn is_driven(&self) -> bool {
+        self.slots.iter().filter_map(|s| s.fan).any(|f| self.fans[f].speed > 0.0)
     }
 
     /// Conditions of the sides, by [`Side::index`].

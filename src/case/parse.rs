@@ -154,7 +154,7 @@ impl<'t> Reader<'t> {
         good
     }
 
-    fn wrong_kind(&mut self, scope: &Scope, key: &str, value: &Spanned<DeValue>, wanted: &str) {
+    pub fn wrong_kind(&mut self, scope: &Scope, key: &str, value: &Spanned<DeValue>, wanted: &str) {
         let typed = self.typed(&value.span());
         let kind = kind_name(value.get_ref());
         let message = format!("{key} = {typed} is {kind}; {wanted}");
@@ -395,7 +395,7 @@ impl<'t> Reader<'t> {
         None
     }
 
-    fn quantity_of(
+    pub fn quantity_of(
         &mut self,
         scope: &Scope,
         key: &str,

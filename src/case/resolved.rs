@@ -5,7 +5,7 @@ use std::fmt::Write as _;
 use ventrise_mesh::{Geometry, Side, Spacing};
 use ventrise_solver::{SideCondition, Vent};
 
-use super::model::{AirChoice, Case, ProbeShape, Resistance, side_name};
+use super::model::{AirChoice, Case, Fan, ProbeShape, Resistance, side_name};
 use super::setup::spacing;
 use super::units::{Dimension, number, write};
 use super::vents::kind_words;
@@ -48,6 +48,22 @@ fn write_vent(lines: &mut Lines, vent: &Vent) {
     }
     for (key, size) in sizes {
         lines.quantity(key, size, Dimension::Length);
+    }
+}
+
+fn write_fan(lines: &mut Lines, fan: &Fan) {
+    lines.header("[[fan]]");
+    lines.text("name", &fan.name);
+    let point = |[flow, pressure]: &[f64; 2]| {
+        format!("[{}, {}]", quoted(&write(*flow, "m3/h")), quoted(&write(*pressure, "Pa")))
+    };
+    let points: Vec<String> = fan.curve.iter().map(point).collect();
+    lines.line(&format!("curve = [{}]", points.join(", ")));
+    lines.quantity("density", fan.density, Dimension::Density);
+    lines.quantity("speed", fan.speed, Dimension::Share);
+    lines.text("direction", if fan.inward { "in" } else { "out" });
+    if let Some(loss) = fan.stopped_loss {
+        lines.line(&format!("stopped-loss = {}", number(loss)));
     }
 }
 
@@ -219,7 +235,11 @@ impl Case {
                 Resistance::Loss(loss) => lines.line(&format!("loss = {}", number(*loss))),
                 Resistance::Vent(vent) => write_vent(lines, vent),
             }
+            if let Some(fan) = slot.fan {
+                lines.text("fan", &self.fans[fan].name);
+            }
         }
+        self.fans.iter().for_each(|fan| write_fan(lines, fan));
         lines.header("[sides]");
         for side in Side::ALL {
             let emissivity = self.side_emissivities[side.index()];

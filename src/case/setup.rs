@@ -2,7 +2,7 @@
 
 use ventrise_mesh::{Generated, Layout, Mesh, MeshError, Side, SlotSpan, Spacing, generate};
 use ventrise_solver::{
-    AirModel, Block, Description, Joint, Problem, ProblemError, Settings, SideCondition,
+    AirModel, Block, Description, Fan, Joint, Problem, ProblemError, Settings, SideCondition,
     SideSurface, Slot, Solid, Surfaces,
 };
 
@@ -99,7 +99,7 @@ pub fn problem(case: &Case, mesh: Mesh) -> Result<Problem, ProblemError> {
         solids: case.materials().iter().map(solid).collect(),
         blocks: case.blocks().iter().map(|b| Block { solid: b.material, heat: b.heat }).collect(),
         slots: case.slots().iter().map(slot).collect(),
-        fans: Vec::new(),
+        fans: case.fans().iter().map(super::Fan::curve_fan).collect(),
         sides: *case.sides(),
         parts: case.parts().iter().map(|p| p.blocks.clone()).collect(),
         joints: case
@@ -113,7 +113,20 @@ pub fn problem(case: &Case, mesh: Mesh) -> Result<Problem, ProblemError> {
 }
 
 fn slot(slot: &super::Slot) -> Slot {
-    Slot { law: slot.resistance.law(), ..Slot::with_loss(0.0) }
+    Slot { law: slot.resistance.law(), drive: 0.0, fan: slot.fan }
+}
+
+impl super::Fan {
+    /// The fan as the equations see it.
+    pub fn curve_fan(&self) -> Fan {
+        Fan {
+            curve: self.curve.clone(),
+            density: self.density,
+            speed: self.speed,
+            inward: self.inward,
+            stopped_loss: self.stopped_loss.unwrap_or(0.0),
+        }
+    }
 }
 
 /// How the surfaces radiate; `None` where the case gives no emissivity.

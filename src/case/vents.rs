@@ -4,7 +4,7 @@ use std::ops::RangeInclusive;
 
 use ventrise_solver::{Vent, VentKind};
 
-use super::error::{CaseError, Cause, one_of};
+use super::error::{CaseError, Cause};
 use super::model::Resistance;
 use super::parse::{Reader, Scope};
 use super::units::Dimension;
@@ -115,7 +115,7 @@ fn stranger(reader: &mut Reader, slot: &Scope, key: &str, owner: &str, kind: &st
     let keys = KINDS.iter().find(|k| k.0 == kind).map_or(&[][..], |k| k.1);
     let keys: Vec<&str> = keys.iter().map(|k| k.0).collect();
     let error = CaseError::new(Cause::Conflict, &slot.place, message).at(slot.span_of(key));
-    reader.report(error.hint(format!("the sizes of \"{kind}\" are {}", one_of(&keys))));
+    reader.report(error.hint(format!("the sizes of \"{kind}\": {}", keys.join(", "))));
 }
 
 /// Word of the case file for a kind of vent, and its sizes by key [m].

@@ -3,6 +3,7 @@
 use std::io;
 
 pub mod csv;
+pub mod fans;
 pub mod folder;
 pub mod overview;
 pub mod pictures;

@@ -5,6 +5,7 @@ use std::path::Path;
 
 use unicode_width::UnicodeWidthStr;
 
+use super::fans::cells as fan_cells;
 use super::readings::Readings;
 use super::summary::{Part, Summary};
 pub(super) use super::words::fixed;
@@ -33,6 +34,7 @@ pub fn report(
     parts(out, summary, readings)?;
     slots(out, summary)?;
     vents(out, summary)?;
+    fans(out, summary)?;
     heat(out, summary)?;
     balances(out, summary, readings)?;
     writeln!(out, "Verdict: {}", verdict(summary))?;
@@ -153,6 +155,23 @@ fn vents(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
         writeln!(out, "{}{}  {kind}", in_column(&slot.name, w), columns(&cells))?;
     }
     writeln!(out, "  m/s and K on the gross area; Re of gaps, holes or wires")?;
+    writeln!(out)
+}
+
+/// Where fans work.
+fn fans(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
+    if summary.fans.is_empty() {
+        return Ok(());
+    }
+    let w = name_width(summary.fans.iter().map(|f| f.name.as_str()));
+    let header = ["speed %", "m3/h", "Pa", "free m3/h", "of it %"].map(String::from);
+    writeln!(out, "{:w$}{}", "Fan", columns(&header))?;
+    for fan in &summary.fans {
+        let point = [fan.speed, fan.flow_m3_s, fan.pressure_pa];
+        let cells = fan_cells(point, [fan.free_delivery_m3_s, fan.free_delivery_share]);
+        let place = format!("{} at \"{}\"", fan.direction, fan.slot);
+        writeln!(out, "{}{}  {place}", in_column(&fan.name, w), columns(&cells))?;
+    }
     writeln!(out)
 }
 

@@ -9,6 +9,7 @@ use ventrise_solver::{SOLVED, Sample, Solution, StopReason, Verdict, contacts};
 
 use crate::case::{Case, ProbeShape};
 
+use super::fans::{self, Fan, fans};
 use super::readings::{Interruption, Readings, Run};
 use super::side_name;
 use super::slots::{self, Slot, slots};
@@ -68,6 +69,9 @@ pub struct Summary {
     pub parts: Vec<Part>,
     /// Slots, in the case's order.
     pub slots: Vec<Slot>,
+    /// Fans, in the case's order.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub fans: Vec<Fan>,
     /// Sides: left, right, bottom, top.
     pub sides: Vec<SideHeat>,
     /// Probes, in the case's order.
@@ -345,6 +349,7 @@ impl Summary {
             },
             parts: parts(case, readings, solution),
             slots: slots(case, air, readings, &solution.verdict),
+            fans: fans(case, readings),
             sides: sides(readings),
             probes: probes(case, readings),
             blocks: blocks(case, readings),
@@ -546,5 +551,6 @@ fn warnings(run: &Run, readings: &Readings, slots: &[Slot]) -> Vec<String> {
         ));
     }
     warnings.extend(slots::warnings(run.case, slots));
+    warnings.extend(fans::warnings(run.case, readings));
     warnings
 }

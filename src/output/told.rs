@@ -56,6 +56,9 @@ pub struct Told {
     /// Slots.
     #[serde(default)]
     pub slots: Vec<ToldSlot>,
+    /// Fans.
+    #[serde(default)]
+    pub fans: Vec<ToldFan>,
     /// Sides.
     #[serde(default)]
     pub sides: Vec<ToldSide>,
@@ -236,6 +239,34 @@ pub struct ToldSlot {
     /// Kind of the vent, if there is one.
     #[serde(default)]
     pub vent: Option<String>,
+}
+
+/// A fan.
+#[derive(Debug, Clone, Deserialize)]
+pub struct ToldFan {
+    /// Name.
+    pub name: String,
+    /// Its slot.
+    #[serde(default)]
+    pub slot: String,
+    /// `in` or `out`.
+    #[serde(default)]
+    pub direction: String,
+    /// Share of full speed.
+    #[serde(default)]
+    pub speed: f64,
+    /// Flow in its direction [m³/s].
+    #[serde(default)]
+    pub flow_m3_s: f64,
+    /// Pressure rise [Pa].
+    #[serde(default)]
+    pub pressure_pa: f64,
+    /// Flow without pressure rise [m³/s].
+    #[serde(default)]
+    pub free_delivery_m3_s: Option<f64>,
+    /// The flow as a share of it.
+    #[serde(default)]
+    pub free_delivery_share: Option<f64>,
 }
 
 /// A side.

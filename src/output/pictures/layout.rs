@@ -214,8 +214,9 @@ fn key(svg: &mut Svg, case: &Case, top: f64) -> f64 {
         });
     }
     for (n, slot) in case.slots().iter().enumerate().take(LISTED) {
+        let fan = slot.fan.map_or(String::new(), |f| format!(", fan {}", case.fans()[f].name));
         let text = format!(
-            "{}: {}, {} to {} mm, {} cm², {}",
+            "{}: {}, {} to {} mm, {} cm², {}{fan}",
             slot.name,
             side_name(slot.side),
             millimetres(slot.span[0]),

@@ -99,6 +99,7 @@ fn page(results: &Results, pictures: &[Picture]) -> Result<String, minijinja::Er
         paths_note => rows::paths_note(results),
         slots => rows::slots(results),
         vents => rows::vents(results),
+        fans => rows::fans(results),
         probes => rows::probes(results),
         state => rows::state(results),
         validity => rows::validity(results),

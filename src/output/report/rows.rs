@@ -4,6 +4,7 @@ use serde::Serialize;
 use ventrise_solver::{HEAT_BOUND, MASS_BOUND};
 
 use crate::case::units::rounded;
+use crate::output::fans;
 use crate::output::results::Results;
 use crate::output::summary::{BOUSSINESQ_SPREAD, TURBULENT_REYNOLDS};
 use crate::output::told::ToldPart;
@@ -219,6 +220,31 @@ pub fn vents(results: &Results) -> Table {
         rows: slots.iter().map(row).collect(),
         note: "Speed: mean through the gross area, to which K refers. Reynolds number: of the \
                vent's gaps, holes or wires; of the slot where a loss is given."
+            .into(),
+    }
+}
+
+/// Where fans work.
+pub fn fans(results: &Results) -> Table {
+    let row = |f: &crate::output::told::ToldFan| {
+        let point = [f.speed, f.flow_m3_s, f.pressure_pa];
+        let cells = fans::cells(point, [f.free_delivery_m3_s, f.free_delivery_share]);
+        let place = format!("{}, {}", f.slot, f.direction);
+        [f.name.clone(), place].into_iter().chain(cells).collect()
+    };
+    Table {
+        header: vec![
+            "Fan",
+            "Slot, direction",
+            "Speed, %",
+            "Flow, m³/h",
+            "Pressure, Pa",
+            "Free, m³/h",
+            "Of it, %",
+        ],
+        rows: results.told.fans.iter().map(row).collect(),
+        note: "The operating point on the curve at this speed and density of the air. Free: the \
+               flow without any pressure rise."
             .into(),
     }
 }
