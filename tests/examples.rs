@@ -13,7 +13,7 @@ use ventrise_solver::{
 
 /// Every example with its hottest part, that part's rise [K] and the air drawn in [m³/h] on the
 /// example's own mesh, as its comments state them (0: no air passes).
-const EXAMPLES: [(&str, &str, f64, f64); 10] = [
+const EXAMPLES: [(&str, &str, f64, f64); 11] = [
     ("battery-locker", "pack", 24.6, 2.94),
     ("bench-supplies", "highest sink", 26.6, 3.87),
     ("dry-transformer", "inner winding", 41.3, 1.28),
@@ -22,6 +22,7 @@ const EXAMPLES: [(&str, &str, f64, f64); 10] = [
     ("resistor-tray", "resistors", 33.6, 3.50),
     ("sensor-box", "electronics", 30.2, 0.0),
     ("sensor-screen", "screen", 8.5, 2.26),
+    ("signal-case", "cards", 23.8, 13.47),
     ("telemetry-pillar", "modem", 22.2, 2.00),
     ("wall-cabinet", "rectifier", 27.3, 4.88),
 ];
@@ -159,6 +160,11 @@ fn sensor_box() {
 #[test]
 fn sensor_screen() {
     check("sensor-screen");
+}
+
+#[test]
+fn signal_case() {
+    check("signal-case");
 }
 
 #[test]
