@@ -51,11 +51,9 @@ impl Acceleration {
             let len = fields(state).iter().map(|f| f.len()).sum();
             (vec![0.0; len], vec![0.0; len])
         };
-        difference(state, old_state, &mut slot.0);
-        difference(residual, old_residual, &mut slot.1);
+        advance(old_state, state, &mut slot.0);
+        advance(old_residual, residual, &mut slot.1);
         self.changes.push(slot);
-        old_state.clone_from(state);
-        old_residual.clone_from(residual);
         let weights = [scales.force, scales.force, scales.mass, scales.heat]
             .map(|s| if s > 0.0 { 1.0 / (s * s) } else { 0.0 });
         let Some(gamma) = self.coefficients(residual, &weights) else { return };
@@ -94,12 +92,20 @@ fn fields(state: &State) -> [&[f64]; 4] {
     [&state.u, &state.v, &state.p, &state.t]
 }
 
-fn difference(new: &State, old: &State, out: &mut [f32]) {
-    let mut start = 0;
-    for (new, old) in fields(new).into_iter().zip(fields(old)) {
-        let out = &mut out[start..start + new.len()];
-        start += new.len();
-        out.iter_mut().zip(new.iter().zip(old)).for_each(|(o, (n, p))| *o = (n - p) as f32);
+/// Makes `old` the same as `new`; what it takes goes to `change`.
+fn advance(old: &mut State, new: &State, change: &mut [f32]) {
+    let mut rest = change;
+    let pairs =
+        [(&mut old.u, &new.u), (&mut old.v, &new.v), (&mut old.p, &new.p), (&mut old.t, &new.t)];
+    for (old, new) in pairs {
+        let (change, others) = rest.split_at_mut(old.len());
+        rest = others;
+        par::each_pair(old, change, |start, old, change| {
+            for ((old, new), change) in old.iter_mut().zip(&new[start..]).zip(change) {
+                *change = (new - *old) as f32;
+                *old = *new;
+            }
+        });
     }
 }
 
@@ -107,8 +113,11 @@ fn add(state: &mut State, scale: f64, change: &[f32]) {
     let mut start = 0;
     for field in [&mut state.u, &mut state.v, &mut state.p, &mut state.t] {
         let change = &change[start..start + field.len()];
-        start += field.len();
-        field.iter_mut().zip(change).for_each(|(f, c)| *f += scale * f64::from(*c));
+        par::each_row(field, BLOCK, |k, field| {
+            let change = &change[k * BLOCK..];
+            field.iter_mut().zip(change).for_each(|(f, c)| *f += scale * f64::from(*c));
+        });
+        start += change.len();
     }
 }
 

@@ -15,14 +15,14 @@ use crate::newton::{Aim, Newton};
 use crate::residual::{self, Scales};
 use crate::simplec::{self, Smoothing, Work, smooth};
 use crate::transfer::Transfer;
-use crate::{Air, Control, Convection, Problem, Residuals, SolveError, State};
+use crate::{Air, Control, Convection, Problem, Residuals, SolveError, State, par};
 
 /// Cycles go down to the first mesh of at most so many cells, few enough for the direct solution.
 /// Where that mesh proves too coarse for the flow, the second number is tried.
 pub(crate) const COARSEST_CELLS: [usize; 2] = [2000, 6000];
 /// The nested start begins on a mesh of about so many cells, where a direct solution costs nearly
 /// nothing and many of them do no harm.
-const STARTING_CELLS: usize = 700;
+const STARTING_CELLS: usize = 200;
 /// Largest flow over conductance of a face on coarser meshes: found best of 2, 4 and none on
 /// housings whose cells are large for their speeds.
 const COARSE_PECLET: f64 = 4.0;
@@ -208,7 +208,7 @@ impl Stack {
             &self.levels[l + 1],
             state,
             &mut fine.state,
-            1.0,
+            true,
         );
     }
 
@@ -287,7 +287,7 @@ impl Stack {
             &self.levels[l + 1],
             start,
             &mut fine.state,
-            1.0,
+            false,
         );
         for _ in 0..smoothing.iterations[1] {
             smooth(&self.levels[l], &mut self.work[l], &smoothing);
@@ -296,10 +296,15 @@ impl Stack {
     }
 }
 
+/// Values of a field handled at once.
+const SPAN: usize = 4096;
+
 /// Applies `f(a, b)` place by place to all four fields.
-fn each_field(a: &mut State, b: &State, f: impl Fn(&mut f64, f64)) {
+fn each_field(a: &mut State, b: &State, f: impl Fn(&mut f64, f64) + Sync) {
     let pairs = [(&mut a.u, &b.u), (&mut a.v, &b.v), (&mut a.p, &b.p), (&mut a.t, &b.t)];
     for (a, b) in pairs {
-        a.iter_mut().zip(b).for_each(|(a, b)| f(a, *b));
+        par::each_row(a, SPAN, |k, a| {
+            a.iter_mut().zip(&b[k * SPAN..]).for_each(|(a, b)| f(a, *b));
+        });
     }
 }

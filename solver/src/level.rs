@@ -78,6 +78,8 @@ pub(crate) struct Level {
     pub x_conductance: Vec<f64>,
     pub y_conductance: Vec<f64>,
     pub side_conductance: Vec<f64>,
+    /// What the temperature of the cells beside every side leans to, by side.
+    pub edges: [Vec<Edge>; 4],
     /// Heat capacity of the cells [J/K].
     pub heat_capacity: Vec<f64>,
     /// Conductivities of the cells [W/(m·K)], for interpolation across interfaces.
@@ -101,6 +103,15 @@ pub(crate) struct Level {
     pub heat_in: f64,
     /// Radiation between surfaces, where it is modelled.
     pub radiant: Option<Radiant>,
+}
+
+/// A boundary face seen from its cell's centre.
+#[derive(Debug, Clone, Copy, Default)]
+pub(crate) struct Edge {
+    /// Share of the resistance to what lies outside that the half cell has; 0 where no heat passes.
+    pub share: f64,
+    /// Rise outside [K].
+    pub rise: f64,
 }
 
 impl Level {
@@ -181,6 +192,7 @@ impl Level {
             x_conductance: vec![0.0; (nx + 1) * ny],
             y_conductance: vec![0.0; nx * (ny + 1)],
             side_conductance: vec![0.0; nx * ny],
+            edges: Default::default(),
             heat_capacity: vec![0.0; nx * ny],
             conductivity: (0..nx * ny)
                 .map(|n| crate::conduction::cell_conductivity(problem, air, n).map(|k| k as f32))
@@ -399,6 +411,12 @@ impl Level {
                 let cell = i + j * nx;
                 self.side_conductance[cell] += exchange.conductance;
                 self.source.t[cell] += exchange.heat + exchange.conductance * exchange.rise;
+                let across = matches!(side, Side::Left | Side::Right);
+                let half = 0.5 * if across { self.dx[i] } else { self.dy[j] };
+                let k = f64::from(self.conductivity[cell][usize::from(!across)]);
+                let full = k * side_area(problem, side, n) / half; // none at an axis
+                let share = if full > 0.0 { exchange.conductance / full } else { 0.0 };
+                self.edges[side.index()].push(Edge { share, rise: exchange.rise });
             }
         }
         if let Some(s) = &d.sources {

@@ -4,13 +4,10 @@
 //! no slope at rest), so a pseudo-time term V·ρ/Δt is added to the air's equations and fades as the
 //! residual falls. Near it, a factorisation serves several steps.
 
-use faer::Mat;
-use faer::linalg::solvers::Solve;
-use faer::sparse::linalg::solvers::{Lu, SymbolicLu};
-use faer::sparse::{SparseColMatRef, SymbolicSparseColMatRef};
 use sprs::TriMat;
 
 use crate::level::Level;
+use crate::linear::direct::{Factors, Order, Singular};
 use crate::residual::{self, Scales};
 use crate::{Control, Residuals, SolveError, State};
 
@@ -21,25 +18,15 @@ pub(crate) struct Numbering {
     v: Vec<Option<u32>>,
     p: Vec<Option<u32>>,
     t: Vec<Option<u32>>,
+    /// Column and row of the cell that every unknown is counted to.
+    cells: Vec<(u32, u32)>,
     count: usize,
-}
-
-/// Factors of a system in the numbering's order.
-pub(crate) struct Factors(Lu<usize, f64>);
-
-impl Factors {
-    /// Solves in place.
-    pub fn solve(&self, values: &mut [f64]) {
-        let mut right = Mat::from_fn(values.len(), 1, |i, _| values[i]);
-        self.0.solve_in_place(&mut right);
-        values.iter_mut().enumerate().for_each(|(i, v)| *v = right[(i, 0)]);
-    }
 }
 
 /// Newton's method on one mesh, with its last factorisation.
 pub(crate) struct Newton {
     numbers: Numbering,
-    symbolic: Option<SymbolicLu<usize>>,
+    order: Option<Order>,
     factors: Option<Factors>,
     residual: State,
     trial: State,
@@ -66,7 +53,7 @@ impl Newton {
     pub fn new(level: &Level) -> Newton {
         Newton {
             numbers: Numbering::new(level),
-            symbolic: None,
+            order: None,
             factors: None,
             residual: rest(level),
             trial: rest(level),
@@ -198,21 +185,11 @@ impl Newton {
     }
 
     fn factors_of(&mut self, matrix: &TriMat<f64>) -> Result<Factors, SolveError> {
-        let matrix = matrix.to_csc::<usize>();
-        let failed = |reason: String| SolveError::Factorisation { reason };
-        let n = self.numbers.count;
-        let (starts, rows, values) =
-            (matrix.proper_indptr().to_vec(), matrix.indices(), matrix.data());
-        let symbol = SymbolicSparseColMatRef::new_checked(n, n, &starts, None, rows);
-        let symbolic = match self.symbolic.take() {
-            Some(s) => s,
-            None => SymbolicLu::try_new(symbol).map_err(|e| failed(format!("{e:?}")))?,
-        };
-        self.symbolic = Some(symbolic.clone());
+        let order = self.order.get_or_insert_with(|| Order::new(&self.numbers.cells, matrix));
         self.factorisations += 1;
-        let lu = Lu::try_new_with_symbolic(symbolic, SparseColMatRef::new(symbol, values))
-            .map_err(|e| failed(format!("{e:?}")))?;
-        Ok(Factors(lu))
+        order
+            .factorise(matrix)
+            .map_err(|e: Singular| SolveError::Factorisation { reason: e.to_string() })
     }
 
     /// Inertia ρ·V [kg] and heat capacity [J/K] of every unknown (zero for pressures).
@@ -444,17 +421,18 @@ impl Numbering {
             v: vec![None; level.v_open.len()],
             p: vec![None; nx * ny],
             t: vec![None; nx * ny],
+            cells: Vec::new(),
             count: 0,
         };
-        let mut count = 0;
-        let mut next = |there: bool| {
-            there.then(|| {
-                count += 1;
-                count - 1
-            })
-        };
+        let cells = &mut n.cells;
         for j in 0..=ny {
             for i in 0..=nx {
+                let mut next = |there: bool| {
+                    there.then(|| {
+                        cells.push((i.min(nx - 1) as u32, j.min(ny - 1) as u32));
+                        cells.len() as u32 - 1
+                    })
+                };
                 if j < ny {
                     let f = i + j * (nx + 1);
                     n.u[f] = next(level.u_open[f] > 0.0);
@@ -470,7 +448,7 @@ impl Numbering {
                 }
             }
         }
-        n.count = count as usize;
+        n.count = n.cells.len();
         n
     }
 

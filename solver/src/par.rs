@@ -66,6 +66,16 @@ pub(crate) fn each_row<T: Send>(
     each_rows([(out, width)], |j, [row]| work(j, row));
 }
 
+/// Calls `work(first place, shares)` for shares of two arrays of the same length.
+pub(crate) fn each_pair<A: Send, B: Send>(
+    a: &mut [A],
+    b: &mut [B],
+    work: impl Fn(usize, &mut [A], &mut [B]) + Sync + Send,
+) {
+    let shares = a.par_chunks_mut(GRAIN).zip(b.par_chunks_mut(GRAIN)).enumerate();
+    shares.for_each(|(k, (a, b))| work(k * GRAIN, a, b));
+}
+
 /// Sum of `part(j)` over rows 0..count, each row about `width` cells of work; added in row order.
 pub(crate) fn sum_rows<const N: usize>(
     count: usize,

@@ -18,7 +18,10 @@ pub struct Residuals {
 impl Residuals {
     /// The largest of the four.
     pub fn largest(&self) -> f64 {
-        self.mass.max(self.momentum_x).max(self.momentum_y).max(self.energy)
+        let all = [self.mass, self.momentum_x, self.momentum_y, self.energy];
+        // Not a number must not pass for small.
+        let nan = all.iter().any(|r| r.is_nan());
+        if nan { f64::NAN } else { all.into_iter().fold(0.0, f64::max) }
     }
 }
 

@@ -32,8 +32,6 @@ const FILM_BOUND: f64 = 0.02;
 /// after which it is taken again.
 const FIRST_FILM_CHECK: f64 = 3e-2;
 const FILM_CHECKS: f64 = 0.03;
-/// Residual over the tolerance from which on the mass balance is restored after every cycle.
-const NEARLY: f64 = 30.0;
 /// Residual with which a stalled iteration is taken for a flow without a steady state, and the
 /// largest error of the heat balance with which following it in time can be worth while.
 const NO_STEADY: f64 = 1e-4;
@@ -349,14 +347,16 @@ impl<'a> Run<'a> {
                 return Ok(Cycles::Limit);
             }
             self.stack.cycle(l)?;
-            // Round-off in the mass balance is asked of the last states only.
-            if finest && best < NEARLY * self.settings.tolerance {
-                self.stack.restore_mass(l);
-            }
             if let Some((field, cell)) = self.stack.broken(l) {
                 return Ok(Cycles::Broke { field, cell });
             }
-            let (row, scales) = self.progress(l, parts.as_deref());
+            let (mut row, mut scales) = self.progress(l, parts.as_deref());
+            // Air in equals air out to round-off: asked of the last states only.
+            let is_last = finest && row.residuals.largest() <= self.settings.tolerance;
+            if is_last && (row.mass_error > MASS_BOUND || row.heat_error > HEAT_BOUND) {
+                self.stack.restore_mass(l);
+                (row, scales) = self.progress(l, parts.as_deref());
+            }
             parts = Some(row.part_max.clone());
             let largest = row.residuals.largest();
             let done = if finest { self.within_bounds(&row) } else { largest < NESTED_TARGET };

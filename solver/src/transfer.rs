@@ -7,7 +7,7 @@
 //! resistance (exact across interfaces), for pressures only among air cells, for velocities with
 //! zero at walls.
 
-use ventrise_mesh::{Coarsening, Mesh};
+use ventrise_mesh::{Coarsening, Mesh, Side};
 
 use crate::level::Level;
 use crate::linear::multigrid::Link;
@@ -18,10 +18,19 @@ use crate::{State, par};
 #[derive(Debug, Clone, Copy)]
 struct Lean {
     parent: usize,
+    /// Whether it leans to lower indices.
+    back: bool,
     other: Option<usize>,
     offset: f64,
     half: f64,
     other_half: f64,
+}
+
+impl Lean {
+    /// The side it leans to at the section's edge, of [before the first, behind the last].
+    fn side(&self, sides: [Side; 2]) -> Side {
+        sides[usize::from(!self.back)]
+    }
 }
 
 /// A fine line between coarse lines `left` and `left + 1`, `share` of the way to the latter.
@@ -128,15 +137,24 @@ impl Transfer {
         });
     }
 
-    /// Adds `scale` times the interpolated coarse correction to a fine state.
-    pub fn prolong(&self, fine: &Level, coarse: &Level, from: &State, to: &mut State, scale: f64) {
+    /// Adds the interpolated coarse state (`whole`) or change of a state to a fine one.
+    pub fn prolong(&self, fine: &Level, coarse: &Level, from: &State, to: &mut State, whole: bool) {
         let (nx, cx) = (fine.nx, coarse.nx);
+        // At the section's edge a temperature leans to what lies outside, its change to none.
+        let outside = |side: Side, n: usize| {
+            let edge = coarse.edges[side.index()][n];
+            (edge.share, if whole { edge.rise } else { 0.0 })
+        };
         par::each_row(&mut to.t, nx, |j, row| {
             let y = self.y[j];
             for (i, t) in row.iter_mut().enumerate() {
                 let x = self.x[i];
                 let k = |n: usize, axis: usize| f64::from(coarse.conductivity[n][axis]);
-                *t += scale * cell_value(&from.t, cx, x, y, k);
+                let edges = [
+                    outside(x.side([Side::Left, Side::Right]), y.parent),
+                    outside(y.side([Side::Bottom, Side::Top]), x.parent),
+                ];
+                *t += cell_value(&from.t, cx, x, y, k, edges);
             }
         });
         par::each_row(&mut to.p, nx, |j, row| {
@@ -144,7 +162,7 @@ impl Transfer {
             for (i, p) in row.iter_mut().enumerate() {
                 if fine.fluid[i + j * nx] {
                     let k = |n: usize, _| if coarse.fluid[n] { 1.0 } else { 0.0 };
-                    *p += scale * cell_value(&from.p, cx, self.x[i], y, k);
+                    *p += cell_value(&from.p, cx, self.x[i], y, k, [(0.0, 0.0); 2]);
                 }
             }
         });
@@ -163,7 +181,7 @@ impl Transfer {
             };
             for (i, u) in row.iter_mut().enumerate() {
                 if fine.u_open[i + j * (nx + 1)] > 0.0 {
-                    *u += scale * blend(self.x_lines[i], value);
+                    *u += blend(self.x_lines[i], value);
                 }
             }
         });
@@ -185,7 +203,7 @@ impl Transfer {
                         || coarse.v_wall[at(x.parent)] > 0.0,
                     )
                 };
-                *v += scale * blend(b, value);
+                *v += blend(b, value);
             }
         });
     }
@@ -217,34 +235,42 @@ fn across(
 }
 
 /// Cell value interpolated by resistance along both axes; conductivity `k(cell, axis)`, zero where
-/// there is no value.
-fn cell_value(c: &[f64], cx: usize, x: Lean, y: Lean, k: impl Fn(usize, usize) -> f64) -> f64 {
+/// there is no value. Beyond the section's edge along x and y: `edges`, each the half cell's share
+/// of the resistance and the value outside.
+fn cell_value(
+    c: &[f64],
+    cx: usize,
+    x: Lean,
+    y: Lean,
+    k: impl Fn(usize, usize) -> f64,
+    edges: [(f64, f64); 2],
+) -> f64 {
     let here = x.parent + y.parent * cx;
-    let weight = |lean: Lean, other: usize, axis: usize| {
+    let weight = |lean: Lean, other: Option<usize>, axis: usize| {
+        let Some(other) = other else { return lean.offset / lean.half * edges[axis].0 };
         let (k0, k1) = (k(here, axis), k(other, axis));
         if k0 == 0.0 || k1 == 0.0 {
             return 0.0;
         }
         lean.offset / (lean.half + lean.other_half * k0 / k1)
     };
-    let (mut wx, mut wy) = (0.0, 0.0);
-    let (mut beside, mut above) = (here, here);
-    if let Some(o) = x.other {
-        beside = o + y.parent * cx;
-        wx = weight(x, beside, 0);
+    let beside = x.other.map(|o| o + y.parent * cx);
+    let above = y.other.map(|o| x.parent + o * cx);
+    let (wx, wy) = (weight(x, beside, 0), weight(y, above, 1));
+    let along = |here: f64, beside: f64| (1.0 - wx) * here + wx * beside;
+    let row = along(c[here], beside.map_or(edges[0].1, |n| c[n]));
+    if wy == 0.0 {
+        return row;
     }
-    if let Some(o) = y.other {
-        above = x.parent + o * cx;
-        wy = weight(y, above, 1);
-    }
-    let mut value = (1.0 - wx) * (1.0 - wy) * c[here] + wx * (1.0 - wy) * c[beside];
-    value += (1.0 - wx) * wy * c[above];
-    if wx > 0.0 && wy > 0.0 {
-        let far = beside + above - here;
-        let far = if k(far, 0) == 0.0 { here } else { far };
-        value += wx * wy * c[far];
-    }
-    value
+    let next = match (above, beside) {
+        (None, _) => edges[1].1,
+        (Some(above), None) => along(c[above], edges[0].1),
+        (Some(above), Some(beside)) => {
+            let far = above + beside - here;
+            along(c[above], c[if k(far, 0) == 0.0 { here } else { far }])
+        }
+    };
+    (1.0 - wy) * row + wy * next
 }
 
 fn leans(fine: &[f64], coarse: &[f64], parent: &[usize]) -> Vec<Lean> {
@@ -259,6 +285,7 @@ fn leans(fine: &[f64], coarse: &[f64], parent: &[usize]) -> Vec<Lean> {
                 if offset > 0.0 { (p + 1 < count).then_some(p + 1) } else { p.checked_sub(1) };
             Lean {
                 parent: *p,
+                back: offset <= 0.0,
                 other,
                 offset: offset.abs(),
                 half: half(*p),

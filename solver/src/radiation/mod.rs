@@ -30,8 +30,6 @@ pub use surfaces::{SideSurface, Surfaces};
 
 use ventrise_mesh::Mesh;
 
-use crate::par;
-
 /// Stefan–Boltzmann constant [W/(m²·K⁴)]. Origin: [codata-2018], exact in the SI of 2019; from
 /// memory.
 pub const STEFAN_BOLTZMANN: f64 = 5.670_374_419e-8;
@@ -113,13 +111,20 @@ impl Radiation {
     pub fn net_heat(&self, temperatures: &[f64]) -> Vec<f64> {
         assert_eq!(temperatures.len(), self.patches.len(), "one temperature per patch");
         let power: Vec<f64> = temperatures.iter().map(|t| STEFAN_BOLTZMANN * t.powi(4)).collect();
-        let mut heat = vec![0.0; power.len()];
-        par::each_row(&mut heat, 1, |i, heat| {
-            let pairs = self.exchange(i).iter().zip(&power);
-            heat[0] = pairs.map(|(g, p)| g * (power[i] - p)).sum();
-        });
-        heat
+        (power.iter().enumerate())
+            .map(|(i, own)| exchanged(self.exchange(i), *own, &power))
+            .collect()
     }
+}
+
+/// Σ_j g_j·(own − p_j), in partial sums.
+fn exchanged(g: &[f64], own: f64, power: &[f64]) -> f64 {
+    const LANES: usize = 8;
+    let mut sums = [0.0; LANES];
+    for (g, power) in g.chunks(LANES).zip(power.chunks(LANES)) {
+        sums.iter_mut().zip(g.iter().zip(power)).for_each(|(s, (g, p))| *s += g * (own - p));
+    }
+    sums.iter().sum()
 }
 
 #[cfg(test)]
