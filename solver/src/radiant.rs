@@ -17,6 +17,7 @@ use std::sync::Arc;
 use ventrise_mesh::{Coarsening, Mesh, Side};
 
 use crate::conduction::cell_conductivity;
+use crate::radiation::emissive_power;
 use crate::{Air, Backing, Owner, Problem, Radiation, STEFAN_BOLTZMANN, SideCondition};
 
 /// Iterations for the patches' temperatures at the most, and the change that ends them [K].
@@ -214,21 +215,24 @@ impl Radiant {
         }
         free.iter_mut().for_each(|t| *t += self.ambient);
         let mut now = free.clone();
-        let mut heat = self.radiation.net_heat(&now);
+        let mut power: Vec<f64> = now.iter().map(|t| emissive_power(*t)).collect();
         for _ in 0..PATCH_STEPS {
             let mut change = 0.0_f64;
             for p in 0..now.len() {
+                // One step of Newton's method for each patch, the others as they are by now.
                 let film = 4.0 * STEFAN_BOLTZMANN * now[p].powi(3) * self.reach[p];
-                let next = (free[p] - self.resistance[p] * (heat[p] - film * now[p]))
+                let heat = self.radiation.net_heat_of(p, &power);
+                let step = (free[p] - now[p] - self.resistance[p] * heat)
                     / (1.0 + self.resistance[p] * film);
-                change = change.max((next - now[p]).abs());
-                now[p] = next;
+                change = change.max(step.abs());
+                now[p] += step;
+                power[p] = emissive_power(now[p]);
             }
-            heat = self.radiation.net_heat(&now);
             if change.is_nan() || change <= PATCH_BOUND {
                 break;
             }
         }
+        let heat = (0..now.len()).map(|p| self.radiation.net_heat_of(p, &power)).collect();
         Patches { heat, temperature: now }
     }
 

@@ -34,11 +34,11 @@ pub(crate) struct Smoothing {
 impl Smoothing {
     /// The usual choice.
     pub const STANDARD: Smoothing = Smoothing {
-        velocity: 0.7,
+        velocity: 0.65,
         temperature: 0.95,
         sweeps: 1,
         pressure: (0.1, 3),
-        iterations: [2, 1],
+        iterations: [2, 2],
     };
 }
 

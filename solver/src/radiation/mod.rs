@@ -110,11 +110,19 @@ impl Radiation {
     /// When there are not as many temperatures as patches.
     pub fn net_heat(&self, temperatures: &[f64]) -> Vec<f64> {
         assert_eq!(temperatures.len(), self.patches.len(), "one temperature per patch");
-        let power: Vec<f64> = temperatures.iter().map(|t| STEFAN_BOLTZMANN * t.powi(4)).collect();
-        (power.iter().enumerate())
-            .map(|(i, own)| exchanged(self.exchange(i), *own, &power))
-            .collect()
+        let power: Vec<f64> = temperatures.iter().map(|t| emissive_power(*t)).collect();
+        (0..power.len()).map(|i| self.net_heat_of(i, &power)).collect()
     }
+
+    /// Net heat that leaves patch `i` [W], given all patches' emissive powers σT⁴ [W/m²].
+    pub(crate) fn net_heat_of(&self, i: usize, power: &[f64]) -> f64 {
+        exchanged(self.exchange(i), power[i], power)
+    }
+}
+
+/// σT⁴ [W/m²].
+pub(crate) fn emissive_power(temperature: f64) -> f64 {
+    STEFAN_BOLTZMANN * temperature.powi(4)
 }
 
 /// Σ_j g_j·(own − p_j), in partial sums.

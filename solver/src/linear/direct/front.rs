@@ -3,10 +3,10 @@
 use super::Singular;
 use super::dissection::Dissection;
 
-/// Least pivot, every row and column being scaled to a largest entry of about one. What is smaller
-/// waits for the next larger piece.
-const LEAST_PIVOT: f64 = 1e-3;
-/// Pivots below this are none, even where nothing is left to wait for.
+/// Least pivot over the largest entry of its column, those of later unknowns' rows included. What
+/// is smaller waits for the next larger piece.
+const LEAST_PIVOT: f64 = 0.01;
+/// Pivots below this are none (every row and column is scaled to a largest entry of about one).
 const NO_PIVOT: f64 = 1e-30;
 /// Columns eliminated before the rest of the front follows.
 const PANEL: usize = 16;
@@ -34,11 +34,12 @@ struct Rest {
     values: Vec<f64>,
 }
 
-/// Eliminates all pieces in order. `entries` of every piece: number of a value, row and column.
+/// Eliminates all pieces in order. `entries` of every piece: number in `values`, row and column of
+/// the front.
 pub(super) fn factorise(
     dissection: &Dissection,
     entries: &[Vec<(u32, u32, u32)>],
-    values: &[f64],
+    values: &[(u32, u32, f64)],
 ) -> Result<Vec<Front>, Singular> {
     let mut rests: Vec<Vec<Rest>> = dissection.pieces.iter().map(|_| Vec::new()).collect();
     let mut fronts = Vec::with_capacity(dissection.pieces.len());
@@ -52,7 +53,7 @@ pub(super) fn factorise(
         let shift = |place: u32| place as usize + if place as usize >= own { waiting } else { 0 };
         let mut front = Dense { values: vec![0.0; size * size], size };
         for (value, row, column) in &entries[k] {
-            *front.at(shift(*row), shift(*column)) += values[*value as usize];
+            *front.at(shift(*row), shift(*column)) += values[*value as usize].2;
         }
         let ids = |which: usize| -> Vec<u32> {
             let waited = children.iter().flat_map(|c| c.waiting[which].iter().copied());
@@ -70,8 +71,7 @@ pub(super) fn factorise(
                 part.iter().zip(&places).for_each(|(value, column)| row[*column] += value);
             }
         }
-        let least = if piece.parent.is_some() { LEAST_PIVOT } else { NO_PIVOT };
-        let pivots = front.eliminate(complete, least, &mut rows, &mut columns);
+        let pivots = front.eliminate(complete, &mut rows, &mut columns);
         if piece.parent.is_none() && pivots < size {
             return Err(Singular);
         }
@@ -118,40 +118,29 @@ impl Dense {
         }
     }
 
-    /// Eliminates the first `complete` rows and columns as far as their pivots reach `least`;
-    /// returns how many. `rows` and `columns` follow the exchanges.
-    fn eliminate(
-        &mut self,
-        complete: usize,
-        least: f64,
-        rows: &mut [u32],
-        columns: &mut [u32],
-    ) -> usize {
+    /// Eliminates the first `complete` rows and columns as far as they have pivots; returns how
+    /// many. `rows` and `columns` follow the exchanges.
+    fn eliminate(&mut self, complete: usize, rows: &mut [u32], columns: &mut [u32]) -> usize {
         let n = self.size;
         let (mut done, mut last) = (0, complete);
         while done < last {
             let end = (done + PANEL).min(last);
             let mut k = done;
             while k < end {
-                let sizes = (k..complete).map(|r| self.values[r * n + k].abs());
-                let (pivot, size) =
-                    sizes.enumerate().fold((0, 0.0), |best, x| if x.1 > best.1 { x } else { best });
-                if size.is_nan() || size < least {
-                    break;
-                }
-                self.swap_rows(k, k + pivot);
-                rows.swap(k, k + pivot);
+                let Some(pivot) = self.pivot(k, complete) else { break };
+                self.swap_rows(k, pivot);
+                rows.swap(k, pivot);
                 let (upper, lower) = self.values.split_at_mut((k + 1) * n);
                 let pivot_row = &upper[k * n..];
                 let inverse = 1.0 / pivot_row[k];
-                for row in lower[..(complete - k - 1) * n].chunks_exact_mut(n) {
+                for row in lower.chunks_exact_mut(n) {
                     let factor = row[k] * inverse;
                     row[k] = factor;
                     subtract(&mut row[k + 1..end], factor, &pivot_row[k + 1..end]);
                 }
                 k += 1;
             }
-            for r in done + 1..complete {
+            for r in done + 1..n {
                 let (upper, row) = self.values.split_at_mut(r * n);
                 let panel = done..k.min(r);
                 let (factors, row) = row[..n].split_at_mut(end);
@@ -164,22 +153,18 @@ impl Dense {
             }
             done = k;
         }
-        // The rows of later unknowns take part in no exchange: each is done at once.
-        let (upper, lower) = self.values.split_at_mut(complete * n);
-        for row in lower.chunks_exact_mut(n) {
-            for start in (0..done).step_by(PANEL) {
-                let end = (start + PANEL).min(done);
-                for k in start..end {
-                    let pivot_row = &upper[k * n..(k + 1) * n];
-                    row[k] /= pivot_row[k];
-                    let factor = row[k];
-                    subtract(&mut row[k + 1..end], factor, &pivot_row[k + 1..end]);
-                }
-                let (factors, rest) = row.split_at_mut(end);
-                subtract_rows(rest, &factors[start..], &upper[start * n..], (end, n));
-            }
-        }
         done
+    }
+
+    /// The row of the best pivot for column k among the complete ones, if it is good enough.
+    fn pivot(&self, k: usize, complete: usize) -> Option<usize> {
+        let largest = |rows: std::ops::Range<usize>| {
+            let sizes = rows.map(|r| (r, self.values[r * self.size + k].abs()));
+            sizes.fold((k, 0.0), |best, x| if x.1 > best.1 { x } else { best })
+        };
+        let (pivot, size) = largest(k..complete);
+        let (_, later) = largest(complete..self.size);
+        (size > NO_PIVOT && size >= LEAST_PIVOT * later).then_some(pivot)
     }
 }
 

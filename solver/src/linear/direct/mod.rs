@@ -43,6 +43,8 @@ pub(crate) struct Factors {
     row_scale: Vec<f64>,
     column_scale: Vec<f64>,
     fronts: Vec<Front>,
+    /// The scaled matrix: row, column and value.
+    entries: Vec<(u32, u32, f64)>,
 }
 
 impl Order {
@@ -74,15 +76,16 @@ impl Order {
         assert_eq!(matrix.nnz(), self.triplets, "the pattern is fixed");
         let position = &self.dissection.position;
         let (row_scale, column_scale) = scales(matrix, position);
-        let values: Vec<f64> = (matrix.data().iter())
+        let entries: Vec<(u32, u32, f64)> = (matrix.data().iter())
             .zip(matrix.row_inds().iter().zip(matrix.col_inds()))
             .map(|(value, (row, column))| {
-                let (row, column) = (position[*row] as usize, position[*column] as usize);
-                value * row_scale[row] * column_scale[column]
+                let (row, column) = (position[*row], position[*column]);
+                let scale = row_scale[row as usize] * column_scale[column as usize];
+                (row, column, value * scale)
             })
             .collect();
-        let fronts = front::factorise(&self.dissection, &self.entries, &values)?;
-        Ok(Factors { position: position.clone(), row_scale, column_scale, fronts })
+        let fronts = front::factorise(&self.dissection, &self.entries, &entries)?;
+        Ok(Factors { position: position.clone(), row_scale, column_scale, fronts, entries })
     }
 }
 
@@ -110,19 +113,31 @@ fn scales(matrix: &TriMat<f64>, position: &[u32]) -> (Vec<f64>, Vec<f64>) {
 }
 
 impl Factors {
-    /// Solves in place.
+    /// Solves in place. What round-off has left of the right side is solved for once more: pivots
+    /// are not always the largest of their column.
     pub fn solve(&self, values: &mut [f64]) {
         let mut right = vec![0.0; values.len()];
         for (value, n) in values.iter().zip(&self.position) {
             right[*n as usize] = value * self.row_scale[*n as usize];
         }
-        let mut work = Vec::new();
-        self.fronts.iter().for_each(|front| front.forward(&mut right, &mut work));
-        let mut solution = vec![0.0; values.len()];
-        self.fronts.iter().rev().for_each(|front| front.backward(&right, &mut solution));
+        let mut solution = self.solved(right.clone());
+        for (row, column, value) in &self.entries {
+            right[*row as usize] -= value * solution[*column as usize];
+        }
+        let change = self.solved(right);
+        solution.iter_mut().zip(change).for_each(|(x, change)| *x += change);
         for (value, n) in values.iter_mut().zip(&self.position) {
             *value = solution[*n as usize] * self.column_scale[*n as usize];
         }
+    }
+
+    /// Solution of the scaled system, by elimination position.
+    fn solved(&self, mut right: Vec<f64>) -> Vec<f64> {
+        let mut work = Vec::new();
+        self.fronts.iter().for_each(|front| front.forward(&mut right, &mut work));
+        let mut solution = vec![0.0; right.len()];
+        self.fronts.iter().rev().for_each(|front| front.backward(&right, &mut solution));
+        solution
     }
 }
 
