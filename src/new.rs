@@ -8,7 +8,7 @@ use std::path::{Path, PathBuf};
 pub type Scenario = (&'static str, &'static str);
 
 /// All scenarios, the first being the one taken when none is asked for.
-pub const SCENARIOS: [Scenario; 11] = [
+pub const SCENARIOS: [Scenario; 12] = [
     ("wall-cabinet", include_str!("../cases/wall-cabinet.toml")),
     ("battery-locker", include_str!("../cases/battery-locker.toml")),
     ("bench-supplies", include_str!("../cases/bench-supplies.toml")),
@@ -19,6 +19,7 @@ pub const SCENARIOS: [Scenario; 11] = [
     ("roadside-box", include_str!("../cases/roadside-box.toml")),
     ("sensor-box", include_str!("../cases/sensor-box.toml")),
     ("sensor-screen", include_str!("../cases/sensor-screen.toml")),
+    ("signal-case", include_str!("../cases/signal-case.toml")),
     ("telemetry-pillar", include_str!("../cases/telemetry-pillar.toml")),
 ];
 

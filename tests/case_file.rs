@@ -8,7 +8,7 @@ use std::path::Path;
 
 use ventrise::case::{AirChoice, Case, CaseError};
 use ventrise_mesh::{Geometry, Side};
-use ventrise_solver::SideCondition;
+use ventrise_solver::{SideCondition, VentKind};
 
 fn reference(name: &str) -> Case {
     let path = Path::new(env!("CARGO_MANIFEST_DIR")).join("tests/reference").join(name);
@@ -55,7 +55,7 @@ fn content(case: &Case) -> String {
         .map(|m| (&m.name, m.conductivity, m.density, m.specific_heat))
         .collect();
     format!(
-        "{:?} {:?} {:?} {:?} {materials:?} {:#?} {:?} {:?} {:?} {:?} {:?} {:?}",
+        "{:?} {:?} {:?} {:?} {materials:?} {:#?} {:?} {:?} {:?} {:?} {:?} {:?} {:?}",
         case.title(),
         case.section(),
         case.ambient(),
@@ -63,6 +63,7 @@ fn content(case: &Case) -> String {
         case.blocks(),
         case.parts(),
         case.slots(),
+        case.fans(),
         case.sides(),
         case.probes(),
         case.solve_choice(),
@@ -225,8 +226,28 @@ fn line_ends_marks_and_plain_ways_of_writing_are_understood() {
     for text in [windows, dotted, marked, whole] {
         let case = Case::parse(&text, "case.toml").unwrap_or_else(|e| panic!("{e}"));
         assert_eq!(case.ambient().temperature, 313.15);
-        assert!(case.slots()[0].loss == 1.5 || case.slots()[0].loss == 1000.0);
+        let loss = case.slots()[0].resistance.law().loss;
+        assert!(loss == 1.5 || loss == 1000.0);
     }
+}
+
+#[test]
+fn a_vent_is_described_in_the_words_of_the_trade() {
+    let vent = |text: &str| {
+        let text = PLAIN.replacen("loss = 1.5", text, 1);
+        let case = Case::parse(&text, "case.toml").unwrap_or_else(|e| panic!("{e}"));
+        *case.slots()[0].resistance.vent().unwrap()
+    };
+    let sheet = "kind = \"perforated\"\nhole = \"3 mm\"\nsheet = \"1 mm\"";
+    let dusty = vent(&format!("{sheet}\nfree-area = \"40 %\"\nblocked = \"25 %\""));
+    assert_eq!(dusty.kind, VentKind::Perforated { hole: 3e-3, sheet: 1e-3 });
+    assert!((dusty.open_share() - 0.3).abs() < 1e-15);
+    let louvre = "kind = \"louvre\"\ngap = \"6 mm\"\nblade = \"12 mm\"\nfree-area = \"55 %\"";
+    assert_eq!(vent(louvre).kind, VentKind::Louvre { gap: 6e-3, blade: 12e-3 });
+    assert_eq!(vent(louvre).blocked, 0.0);
+    // Square mesh, 1.2 mm clear between wires of 0.4 mm: (1.2/1.6)² of the area is free.
+    let mesh = vent("kind = \"mesh\"\nopening = \"1.2 mm\"\nwire = \"0.4 mm\"");
+    assert!((mesh.free_share - 0.5625).abs() < 1e-12);
 }
 
 #[test]

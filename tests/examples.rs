@@ -23,6 +23,7 @@ const EXAMPLES: [(&str, &str, f64, f64); 11] = [
     ("roadside-box", "converter", 26.7, 0.0),
     ("sensor-box", "electronics", 30.2, 0.0),
     ("sensor-screen", "screen", 8.5, 2.26),
+    ("signal-case", "cards", 23.8, 13.47),
     ("telemetry-pillar", "modem", 22.2, 2.00),
     ("wall-cabinet", "rectifier", 27.3, 4.88),
 ];
@@ -165,6 +166,11 @@ fn sensor_box() {
 #[test]
 fn sensor_screen() {
     check("sensor-screen");
+}
+
+#[test]
+fn signal_case() {
+    check("signal-case");
 }
 
 #[test]

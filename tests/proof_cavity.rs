@@ -185,6 +185,7 @@ fn equal_rayleigh_and_prandtl_give_equal_nusselt_at_any_size() {
         solids: vec![],
         blocks: vec![],
         slots: vec![],
+        fans: vec![],
         sides: [
             SideCondition::Temperature(298.15 + 0.5 * difference),
             SideCondition::Temperature(298.15 - 0.5 * difference),

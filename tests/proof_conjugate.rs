@@ -108,6 +108,7 @@ fn two_closed_cavities_share_a_metal_partition() {
         solids: vec![Solid { conductivity: [1e4; 2], density: 1.0, specific_heat: 1.0 }],
         blocks: vec![Block { solid: 0, heat: 0.0 }],
         slots: vec![],
+        fans: vec![],
         sides: [
             SideCondition::Temperature(AMBIENT + 1.0),
             SideCondition::Temperature(AMBIENT - 1.0),

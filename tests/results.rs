@@ -303,3 +303,64 @@ fn field_files_are_left_for_the_independent_reader() {
     }
     fs::write(folder.join("run.txt"), plain(&problem, &solved)).unwrap();
 }
+
+/// The made-up fields in a case whose floor has mesh and a fan with this curve.
+fn with_fan(curve: &str) -> Value {
+    let vent = format!(
+        "kind = \"mesh\"\nfree-area = \"50 %\"\nwire = \"0.5 mm\"\nfan = \"f\"\n\n[[fan]]\nname = \
+         \"f\"\ndirection = \"in\"\nspeed = \"50 %\"\ncurve = {curve}\n"
+    );
+    let (_, _, solution) = made_up();
+    let case = Case::parse(&CASE.replacen("loss = 1.5", &vent, 1), "ring.toml").unwrap();
+    let problem = setup::problem(&case, setup::mesh(&case).unwrap().mesh).unwrap();
+    let run = Run {
+        case: &case,
+        problem: &problem,
+        solution: &solution,
+        mesh_notes: &[],
+        interruption: None,
+        wall_seconds: 1.5,
+        cpu_seconds: 2.5,
+    };
+    serde_json::from_str(&Summary::of(&run, &run.readings()).to_json().unwrap()).unwrap()
+}
+
+#[test]
+fn vents_and_fans_are_told_with_what_was_used() {
+    let s = with_fan("[[\"0 m3/h\", \"16 Pa\"], [\"100 m3/h\", \"0 Pa\"]]");
+    let slot = &s["slots"][0];
+    let area = std::f64::consts::PI * (0.01 - 0.0036);
+    let flow = slot["in_m3_s"].as_f64().unwrap();
+    near(&slot["area_m2"], area);
+    near(&slot["free_area_m2"], 0.5 * area);
+    near(&slot["speed_m_s"], flow / area);
+    // On the wire: u·d/ν with ν = 2e-5/1.2; the law K = 3·(0.51651 + 10.246/Re) at f = 0.5.
+    let reynolds = flow / area * 0.5e-3 * 1.2 / 2e-5;
+    near(&slot["reynolds"], reynolds);
+    near(&slot["loss"], 3.0 * (0.516_51 + 10.246 / reynolds));
+    assert_eq!((&slot["vent"], &s["slots"][1]["vent"]), (&Value::from("mesh"), &Value::Null));
+    near(&s["slots"][1]["free_area_m2"], area);
+    near(&s["slots"][1]["loss"], 1.5);
+    // At half speed 4 Pa at no flow, 50 m³/h free; air and curve have 1.2 kg/m³.
+    let fan = &s["fans"][0];
+    near(&fan["flow_m3_s"], flow);
+    near(&fan["pressure_pa"], 4.0 * (1.0 - 3600.0 * flow / 50.0));
+    near(&fan["free_delivery_share"], 3600.0 * flow / 50.0);
+    let warnings = s["warnings"].to_string();
+    assert!(!warnings.contains("fan"), "{warnings}");
+}
+
+#[test]
+fn operating_points_off_the_curve_and_left_of_a_dip_are_warned_of() {
+    for (curve, words) in [
+        ("[[\"0 m3/h\", \"16 Pa\"], [\"10 m3/h\", \"12 Pa\"]]", "beyond its curve, which ends at"),
+        (
+            "[[\"0 m3/h\", \"9 Pa\"], [\"10 m3/h\", \"7 Pa\"], [\"90 m3/h\", \"8 Pa\"], \
+             [\"99 m3/h\", \"0 Pa\"]]",
+            "left of the dip",
+        ),
+    ] {
+        let warnings = with_fan(curve)["warnings"].to_string();
+        assert!(warnings.contains(words), "{warnings}");
+    }
+}

@@ -20,7 +20,7 @@ const ROUND_OFF: f64 = 1e-13;
 /// Air and heat through one opening: a slot, or what is open of a side.
 #[derive(Debug, Clone, Copy, PartialEq, Default)]
 pub struct OpeningFlow {
-    /// Free area [m²].
+    /// Whole area [m²].
     pub area: f64,
     /// Air that enters [m³/s], at the reference density, ≥ 0.
     pub inflow: f64,

@@ -1,5 +1,7 @@
 //! What the section's edge does: the sides and the slots in them.
 
+use crate::LossLaw;
+
 /// Condition on a side of the section, where no slot is.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub enum SideCondition {
@@ -63,8 +65,17 @@ impl SideCondition {
 /// What happens in a slot.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Slot {
-    /// Loss coefficient K on the speed through the opening [-].
-    pub loss: f64,
+    /// Loss on the speed through the opening.
+    pub law: LossLaw,
     /// Pressure rise that drives air into the section through the slot [Pa] (zero: none).
     pub drive: f64,
+    /// Fan in the slot, an index into [`crate::Description::fans`].
+    pub fan: Option<usize>,
+}
+
+impl Slot {
+    /// A slot of one loss coefficient K on the speed through the opening [-].
+    pub fn with_loss(loss: f64) -> Slot {
+        Slot { law: LossLaw { loss, friction: 0.0 }, drive: 0.0, fan: None }
+    }
 }

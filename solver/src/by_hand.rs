@@ -27,6 +27,7 @@ pub(crate) fn bare(mesh: Mesh) -> Description {
         solids: Vec::new(),
         blocks: Vec::new(),
         slots: Vec::new(),
+        fans: Vec::new(),
         sides: [SideCondition::Adiabatic; 4],
         parts: Vec::new(),
         joints: Vec::new(),
@@ -57,7 +58,7 @@ pub(crate) fn duct(depth: f64) -> (Problem, State) {
     layout.slots = vec![SlotSpan { side: Side::Bottom, span }, SlotSpan { side: Side::Top, span }];
     let mesh = Mesh::from_lines(&layout, vec![0.0, 0.1, 0.2, 0.3], vec![0.0, 0.1, 0.2]).unwrap();
     let state = State::rest(&mesh);
-    let slot = Slot { loss: 1.5, drive: 0.0 };
+    let slot = Slot::with_loss(1.5);
     let problem = Problem::new(Description { slots: vec![slot; 2], ..bare(mesh) }).unwrap();
     (problem, state)
 }

@@ -13,9 +13,10 @@
 use ventrise_mesh::{AIR, Geometry, Side};
 
 use crate::conduction::{side_area, side_cell, side_exchange, x_conductance, y_conductance};
+use crate::fan::SlotFan;
 use crate::following::Following;
 use crate::radiant::Radiant;
-use crate::{Air, Convection, Problem, SideCondition, State};
+use crate::{Air, Convection, Problem, SideCondition, Slot, State};
 
 /// A boundary face through which the section breathes.
 #[derive(Debug, Clone, Copy)]
@@ -32,6 +33,8 @@ pub(crate) struct Opening {
     pub area: f64,
     /// Loss coefficient K [-].
     pub loss: f64,
+    /// Viscous resistance of a vent ½·μ·b [Pa/(m/s)].
+    pub drag: f64,
     /// Pressure that drives air in [Pa].
     pub drive: f64,
 }
@@ -87,10 +90,16 @@ pub(crate) struct Level {
     pub openings: [Vec<Opening>; 4],
     /// Loss coefficient K of every boundary face by side, zero where it is closed.
     pub loss: [Vec<f64>; 4],
+    /// Viscous resistance of the vent in it [Pa/(m/s)], likewise.
+    pub drag: [Vec<f64>; 4],
     /// 0 on open sides, where air moves freely along the side; 1 elsewhere. By side.
     pub sticks: [f64; 4],
     /// Given forces [N], mass [kg/s] and heat [W] of this mesh's own problem.
     pub source: State,
+    /// Running fans.
+    pub fans: Vec<SlotFan>,
+    /// Largest speed that a pressure in a slot, or a fan, can drive [m/s]; zero without.
+    pub driven_speed: f64,
     /// For every air region without an opening: its cells.
     pub closed_regions: Vec<Vec<u32>>,
     /// Heat put in by blocks and sides [W].
@@ -124,12 +133,15 @@ impl Level {
         let d = problem.description();
         let (nx, ny) = (mesh.nx(), mesh.ny());
         let fluid: Vec<bool> = mesh.regions().iter().map(|r| *r == AIR).collect();
-        let openings = Side::ALL.map(|side| openings(problem, side));
-        let loss = Side::ALL.map(|side| {
-            let mut loss = vec![0.0; mesh.slots(side).len()];
-            openings[side.index()].iter().for_each(|o| loss[o.place] = o.loss);
-            loss
-        });
+        let openings = Side::ALL.map(|side| openings(problem, air, side));
+        let by_face = |of: fn(&Opening) -> f64| {
+            Side::ALL.map(|side| {
+                let mut values = vec![0.0; mesh.slots(side).len()];
+                openings[side.index()].iter().for_each(|o| values[o.place] = of(o));
+                values
+            })
+        };
+        let (loss, drag) = (by_face(|o| o.loss), by_face(|o| o.drag));
         let (mut u_open, mut v_open) = (vec![0.0; (nx + 1) * ny], vec![0.0; nx * (ny + 1)]);
         for j in 0..ny {
             for i in 1..nx {
@@ -200,11 +212,14 @@ impl Level {
                 .collect(),
             openings,
             loss,
+            drag,
             sticks: Side::ALL.map(|s| match d.sides[s.index()] {
                 SideCondition::Open => 0.0,
                 _ => 1.0,
             }),
             source: State::rest(mesh),
+            fans: Vec::new(),
+            driven_speed: 0.0,
             closed_regions: Vec::new(),
             heat_in: 0.0,
             radiant: Radiant::new(problem, air, &following.outer),
@@ -213,6 +228,14 @@ impl Level {
         };
         level.set_viscous(problem);
         level.set_thermal(problem);
+        level.fans = running_fans(problem, &level);
+        for fan in &level.fans {
+            fan.add_shut_off(&mut level.source);
+        }
+        let given = level.openings.iter().flatten().map(|o| o.drive.abs());
+        let given = given.map(|drive| (2.0 * drive / air.density).sqrt());
+        let speeds = given.chain(level.fans.iter().map(SlotFan::largest_speed));
+        level.driven_speed = speeds.fold(0.0, f64::max);
         level.closed_regions = closed_regions(&level);
         level
     }
@@ -440,18 +463,19 @@ fn weights(lines: &[f64]) -> Vec<f64> {
         .collect()
 }
 
-fn openings(problem: &Problem, side: Side) -> Vec<Opening> {
+fn openings(problem: &Problem, air: &Air, side: Side) -> Vec<Opening> {
     let mesh = problem.mesh();
     let d = problem.description();
     let (nx, ny) = (mesh.nx(), mesh.ny());
     let open_side = d.sides[side.index()] == SideCondition::Open;
     let mut found = Vec::new();
     for (n, slot) in mesh.slots(side).iter().enumerate() {
-        let (loss, drive) = match slot {
-            Some(s) => (d.slots[*s as usize].loss, d.slots[*s as usize].drive),
-            None if open_side => (0.0, 0.0),
+        let slot = match slot {
+            Some(s) => d.slots[*s as usize],
+            None if open_side => Slot::with_loss(0.0),
             None => continue,
         };
+        let standing = slot.fan.map(|f| &d.fans[f]).filter(|fan| !fan.runs());
         let (i, j) = side_cell(problem, side, n);
         let cell = i + j * nx;
         if mesh.regions()[cell] != AIR {
@@ -470,11 +494,31 @@ fn openings(problem: &Problem, side: Side) -> Vec<Opening> {
             place,
             outward,
             area: side_area(problem, side, n),
-            loss,
-            drive,
+            loss: slot.law.loss + standing.map_or(0.0, |fan| fan.stopped_loss),
+            drag: 0.5 * air.viscosity * slot.law.friction,
+            drive: slot.drive,
         });
     }
     found
+}
+
+/// Fans that turn, each over the open faces of its slot.
+fn running_fans(problem: &Problem, level: &Level) -> Vec<SlotFan> {
+    let d = problem.description();
+    let mut fans = Vec::new();
+    for (s, slot) in d.slots.iter().enumerate() {
+        let Some(fan) = slot.fan.map(|f| &d.fans[f]).filter(|fan| fan.runs()) else { continue };
+        for side in Side::ALL {
+            let places = problem.mesh().slots(side);
+            let of_slot = |o: &&Opening| places[o.place] == Some(s as u32);
+            let openings: Vec<&Opening> =
+                level.openings[side.index()].iter().filter(of_slot).collect();
+            if !openings.is_empty() {
+                fans.push(SlotFan::new(fan, level.air.density, is_vertical(side), &openings));
+            }
+        }
+    }
+    fans
 }
 
 /// Cells of every air region that has no opening.

@@ -13,6 +13,7 @@ mod conduction;
 mod contacts;
 mod equations;
 mod error;
+mod fan;
 mod fas;
 mod film;
 mod following;
@@ -41,16 +42,18 @@ mod still_air;
 mod sway;
 mod transfer;
 mod transient;
+mod vent;
 
 pub use air::{Air, AirModel, standard_pressure};
 pub use balance::{Balance, OpeningFlow, REST_SPEED, SideFlow, balance, side_flows, slot_flows};
 pub use boundary::{OuterFilm, Outside, SideCondition, Slot};
 pub use contacts::{Contact, contacts};
 pub use error::{ProblemError, SolveError};
+pub use fan::{Fan, FanPoint, fan_points};
 pub use heat_law::{HeatLaw, Runaway, block_heats};
 pub use numbers::{
     Numbers, PartTemperature, block_temperatures, cell_velocities, heat_fluxes, numbers,
-    part_temperatures,
+    part_temperatures, slot_reynolds,
 };
 pub use outer::OuterFlow;
 pub use pieces::Pieces;
@@ -61,8 +64,9 @@ pub use radiation::{
     Backing, Correction, Face, Owner, PATCH_COUNT, Patch, Radiation, RadiationError,
     RadiationSource, STEFAN_BOLTZMANN, SideSurface, Surfaces,
 };
-pub use settings::{Convection, DRIFT_BOUND, HEAT_BOUND, MASS_BOUND, SOLVED, Settings};
+pub use settings::{Convection, DRIFT_BOUND, FAN_BOUND, HEAT_BOUND, MASS_BOUND, SOLVED, Settings};
 pub use solution::{Control, Progress, Residuals, Solution, StopReason, Verdict};
 pub use solve::solve;
 pub use state::State;
 pub use still_air::{Facing, still_air_film};
+pub use vent::{LossLaw, Vent, VentKind};

@@ -232,7 +232,8 @@ impl Newton {
         let mut here = rest(level);
         residual::evaluate_local(level, state, rhs, &mut here);
         let largest = |f: &[f64]| f.iter().fold(0.0_f64, |a, b| a.max(b.abs()));
-        let speed = largest(&state.u).max(largest(&state.v)).max(1e-3 * reference_speed(level));
+        let speed = largest(&state.u).max(largest(&state.v));
+        let speed = speed.max(1e-3 * reference_speed(level).max(level.driven_speed));
         // Pressure and temperature stand linearly in every equation: large steps lose nothing.
         let warmth = largest(&state.t).max(source_warmth(level, rhs)).max(1e-6);
         let buoyancy = reference_speed(level).powi(2) * warmth;
@@ -294,6 +295,15 @@ impl Newton {
                             matrix.add_triplet(row, column, a * b * film);
                         }
                     }
+                }
+            });
+        }
+        // Fans: every face of the slot answers to the flow through all of them.
+        for fan in &level.fans {
+            let numbers = if fan.along_x { &numbers.u } else { &numbers.v };
+            fan.each_pair(state, |row, column, slope| {
+                if let (Some(row), Some(column)) = (numbers[row], numbers[column]) {
+                    matrix.add_triplet(row as usize, column as usize, slope);
                 }
             });
         }
@@ -359,9 +369,9 @@ fn reference_speed(level: &Level) -> f64 {
     (level.air.expansion * g * height).sqrt().max(viscous)
 }
 
-/// Time a free-falling parcel takes through the section [s].
+/// Time that a parcel in free fall, or driven through a slot, takes through the section [s].
 fn transit_time(level: &Level) -> f64 {
-    level.dy.iter().sum::<f64>() / reference_speed(level)
+    level.dy.iter().sum::<f64>() / reference_speed(level).max(level.driven_speed)
 }
 
 /// Relative residuals by the state's own scales; `scales` where those are nothing yet.

@@ -5,7 +5,7 @@ use ventrise_mesh::{AIR, Side};
 use crate::balance::{side_face_heat, slot_flows};
 use crate::conduction::{side_area, side_cell, x_conductance, y_conductance};
 use crate::outer::Outer;
-use crate::{Air, Problem, SideCondition, State};
+use crate::{Air, OpeningFlow, Problem, SideCondition, State};
 
 /// Temperatures of a group of blocks, as rises above ambient, and its heat.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -27,7 +27,7 @@ pub struct Numbers {
     pub rayleigh: f64,
     /// μ·c_p/k.
     pub prandtl: f64,
-    /// ρ₀·w·D/μ, the largest of all slots: w the mean speed through the free area [m/s], D the
+    /// ρ₀·w·D/μ, the largest of all slots: w the mean speed through the whole area [m/s], D the
     /// hydraulic diameter [m] (twice the width of a slot or ring, the diameter of a round hole).
     pub vent_reynolds: f64,
     /// Highest speed in a cell [m/s].
@@ -155,7 +155,7 @@ pub fn numbers(problem: &Problem, air: &Air, state: &State) -> Numbers {
     Numbers {
         rayleigh: drive * air.specific_heat * height.powi(3) / (air.viscosity * air.conductivity),
         prandtl: air.viscosity * air.specific_heat / air.conductivity,
-        vent_reynolds: vent_reynolds(problem, air, state),
+        vent_reynolds: slot_reynolds(problem, air, state).into_iter().fold(0.0, f64::max),
         max_speed: speeds.iter().map(|v| v[0].hypot(v[1])).fold(0.0, f64::max),
         max_rise,
         max_air_rise: air_rises.max_by(f64::total_cmp),
@@ -163,14 +163,16 @@ pub fn numbers(problem: &Problem, air: &Air, state: &State) -> Numbers {
     }
 }
 
-fn vent_reynolds(problem: &Problem, air: &Air, state: &State) -> f64 {
+/// Reynolds number of every slot, ρ₀·w·D/μ: w the mean speed through its whole area [m/s], D its
+/// hydraulic diameter [m].
+pub fn slot_reynolds(problem: &Problem, air: &Air, state: &State) -> Vec<f64> {
     let diameters = slot_diameters(problem);
     let flows = slot_flows(problem, air, state);
-    let reynolds =
-        flows.iter().zip(diameters).filter(|(flow, _)| flow.area > 0.0).map(|(flow, d)| {
-            air.density * flow.inflow.max(flow.outflow) / flow.area * d / air.viscosity
-        });
-    reynolds.fold(0.0, f64::max)
+    let of = |(flow, d): (&OpeningFlow, f64)| match flow.area > 0.0 {
+        true => air.density * flow.inflow.max(flow.outflow) / flow.area * d / air.viscosity,
+        false => 0.0,
+    };
+    flows.iter().zip(diameters).map(of).collect()
 }
 
 /// Hydraulic diameter of every slot [m]: four times the area over the wetted edge, ends of a long

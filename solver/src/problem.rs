@@ -4,8 +4,8 @@ use ventrise_mesh::{AIR, Coarsening, Geometry, Mesh, Side};
 
 use crate::radiant::RadiantMap;
 use crate::{
-    AirModel, HeatLaw, OuterFilm, PATCH_COUNT, ProblemError, Radiation, SideCondition, Slot,
-    Surfaces,
+    AirModel, Fan, HeatLaw, LossLaw, OuterFilm, PATCH_COUNT, ProblemError, Radiation,
+    SideCondition, Slot, Surfaces,
 };
 
 /// A solid material.
@@ -116,6 +116,8 @@ pub struct Description {
     pub blocks: Vec<Block>,
     /// One per slot of the mesh, in its order.
     pub slots: Vec<Slot>,
+    /// Fans; each stands in one slot.
+    pub fans: Vec<Fan>,
     /// Conditions by [`Side::index`].
     pub sides: [SideCondition; 4],
     /// Groups of blocks whose temperatures are watched.
@@ -257,8 +259,19 @@ fn check(d: &Description) -> Result<(), ProblemError> {
         }
     }
     for slot in &d.slots {
-        number("loss", slot.loss, slot.loss >= 0.0, "zero or more")?;
+        let LossLaw { loss, friction } = slot.law;
+        number("loss", loss, loss >= 0.0, "zero or more")?;
+        number("friction", friction, friction >= 0.0, "zero or more")?;
         number("drive", slot.drive, true, "finite")?;
+    }
+    for (index, fan) in d.fans.iter().enumerate() {
+        fan.check()?;
+        let uses = d.slots.iter().filter(|s| s.fan == Some(index)).count();
+        number("slots of a fan", uses as f64, uses <= 1, "one at the most")?;
+    }
+    let count = d.fans.len();
+    if let Some(index) = d.slots.iter().filter_map(|s| s.fan).find(|f| *f >= count) {
+        return Err(ProblemError::Index { what: "fan", index, count });
     }
     let mut way_out = !d.slots.is_empty();
     for side in &d.sides {

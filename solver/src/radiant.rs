@@ -410,7 +410,7 @@ mod tests {
             d.solids = vec![Solid { conductivity: [5.0, 90.0], density: 1e3, specific_heat: 1e3 }];
             d.blocks = [3.0, 2.0, -1.0].map(|heat| Block { solid: 0, heat }).to_vec();
             d.parts = vec![vec![0], vec![1], vec![2]];
-            d.slots = vec![Slot { loss: 1.0, drive: 0.0 }; 2];
+            d.slots = vec![Slot::with_loss(1.0); 2];
             d.sides[1] = SideCondition::Film { coefficient: 8.0, temperature: 290.0 };
             let sides = [0.3, 0.8, 0.9, 0.5].map(SideSurface::Wall);
             d.radiation = Some(Surfaces { blocks: vec![0.9, 0.2, 0.6], sides });

@@ -10,9 +10,11 @@ pub(crate) fn evaluate(level: &Level, state: &State, rhs: &State, out: &mut Stat
     if let Some(radiant) = &level.radiant {
         radiant.add(&radiant.patches(&state.t), &mut out.t);
     }
+    level.fans.iter().for_each(|fan| fan.add_lack(state, out));
 }
 
-/// The same without radiation, which couples all surfaces: what remains couples neighbours only.
+/// The same without radiation, which couples all surfaces, and without what fans lack at a flow,
+/// which couples all faces of a slot: what remains couples neighbours only.
 /// One pass: what a row reads stays near for all four equations.
 pub(crate) fn evaluate_local(level: &Level, state: &State, rhs: &State, out: &mut State) {
     let (nx, ny) = (level.nx, level.ny);
@@ -33,7 +35,8 @@ pub(crate) fn evaluate_local(level: &Level, state: &State, rhs: &State, out: &mu
 pub(crate) struct Scales {
     /// Largest mass flow across any mesh line or through all openings [kg/s].
     pub mass: f64,
-    /// Sum of the sizes of buoyancy, pressure and opening forces over the control volumes [N].
+    /// Sum of the sizes of buoyancy and pressure forces over the control volumes, and of what
+    /// drives air in slots [N].
     pub force: f64,
     /// Heat put in by blocks and sides, or taken out by them, whichever is more [W].
     pub heat: f64,
@@ -90,6 +93,9 @@ pub(crate) fn scales(level: &Level, state: &State) -> Scales {
     for j in 0..ny {
         columns.iter_mut().enumerate().for_each(|(i, c)| *c += level.x_flow(&state.u, i, j).abs());
     }
+    let given = level.openings.iter().flatten().map(|o| o.drive.abs() * o.area);
+    let fans = level.fans.iter().map(|fan| fan.force(state));
+    let force = force + given.chain(fans).sum::<f64>();
     let across = columns.iter().fold(0.0_f64, |a, b| a.max(*b));
     // A section at one temperature exchanges nothing but round-off, and air at rest moves by no
     // more than that.

@@ -16,6 +16,9 @@ pub const MASS_BOUND: f64 = 1e-9;
 /// Bound of a settled run for the change of any part's highest temperature over the last outer
 /// iteration, relative to the largest rise of any part.
 pub const DRIFT_BOUND: f64 = 1e-4;
+/// Bound of a settled run for the change of any fan's flow over the last outer iteration, relative
+/// to the flow.
+pub const FAN_BOUND: f64 = 1e-4;
 
 /// Largest relative residual with which a state may be read as a solution at all, settled or not.
 pub const SOLVED: f64 = 1e-2;

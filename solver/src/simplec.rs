@@ -110,6 +110,13 @@ fn momentum_step(level: &Level, work: &mut Work, smoothing: &Smoothing) {
             answer[i] = response(level.x_area[i] * level.dy[j], open[i], &c);
         });
     });
+    for fan in level.fans.iter().filter(|fan| fan.along_x) {
+        fan.each_face(state, |face, force, area, stiffness| {
+            right_u[face] += force as f32;
+            stencil.rest[face] += stiffness as f32;
+            x_response[face] = area as f32 / stencil.rest[face];
+        });
+    }
     solve(stencil, change, right_u, smoothing.sweeps, line);
     par::add(&mut state.u, &change[..right_u.len()], nx + 1);
 
@@ -126,6 +133,13 @@ fn momentum_step(level: &Level, work: &mut Work, smoothing: &Smoothing) {
             answer[i] = response(level.y_area[i], open[i], &c);
         });
     });
+    for fan in level.fans.iter().filter(|fan| !fan.along_x) {
+        fan.each_face(state, |face, force, area, stiffness| {
+            right_v[face] += force as f32;
+            stencil.rest[face] += stiffness as f32;
+            y_response[face] = area as f32 / stencil.rest[face];
+        });
+    }
     solve(stencil, change, right_v, smoothing.sweeps, line);
     par::add(&mut state.v, &change[..right_v.len()], nx);
 }

@@ -44,6 +44,10 @@ pub struct Progress {
     pub part_max: Vec<f64>,
     /// Largest change of any part's temperature over the last iteration [K].
     pub drift: f64,
+    /// Flow of every fan in its direction [m³/s].
+    pub fan_flows: Vec<f64>,
+    /// Largest relative change of a fan's flow over the last iteration [-].
+    pub fan_drift: f64,
 }
 
 /// Whether to go on, answered by the caller after every outer iteration.

@@ -2,11 +2,12 @@
 
 use crate::acceleration::Acceleration;
 use crate::balance::balance;
+use crate::fan::fan_points;
 use crate::fas::{COARSEST_CELLS, Stack};
 use crate::numbers::part_temperatures;
 use crate::renewal::Renewal;
 use crate::residual::Scales;
-use crate::settings::{DRIFT_BOUND, HEAT_BOUND, MASS_BOUND, SOLVED};
+use crate::settings::{DRIFT_BOUND, FAN_BOUND, HEAT_BOUND, MASS_BOUND, SOLVED};
 use crate::simplec::Smoothing;
 use crate::sway::{self, Finding};
 use crate::{
@@ -33,6 +34,8 @@ const FILM_CHECKS: f64 = 0.03;
 /// largest error of the heat balance with which following it in time can be worth while.
 const NO_STEADY: f64 = 1e-4;
 const WANDER_HEAT: f64 = 0.05;
+/// Flow of a fan that counts as none [m³/s].
+const REST_FLOW: f64 = 1e-12;
 /// Cycles within which the residual must at least halve; else the smoothing is damped more.
 const PATIENCE: usize = 12;
 /// Growth of the residual over the best one that counts as divergence.
@@ -50,7 +53,8 @@ const LADDER: [Smoothing; 3] = [
 /// The iteration ends as converged when, on the finest mesh, every residual is within
 /// `settings.tolerance` of its scale, the heat balance within [`HEAT_BOUND`], the mass balance
 /// within [`MASS_BOUND`], no part's temperature moved by more than [`DRIFT_BOUND`] of the largest
-/// rise in the last iteration, and the film temperature stands.
+/// rise in the last iteration, no fan's flow by more than [`FAN_BOUND`] of itself, and the film
+/// temperature stands.
 ///
 /// # Errors
 /// A breakdown that no damping cured.
@@ -422,6 +426,7 @@ impl<'a> Run<'a> {
             && row.heat_error <= HEAT_BOUND
             && row.mass_error <= MASS_BOUND
             && row.drift <= DRIFT_BOUND * rise.max(1e-9)
+            && row.fan_drift <= FAN_BOUND
     }
 
     fn progress(&mut self, l: usize, before: Option<&[f64]>) -> (Progress, Scales) {
@@ -434,6 +439,9 @@ impl<'a> Run<'a> {
         let drift = before.map_or(f64::INFINITY, |before| {
             part_max.iter().zip(before).fold(0.0, |d: f64, (a, b)| d.max((a - b).abs()))
         });
+        let fans = fan_points(problem, air, state);
+        let fan_flows: Vec<f64> = fans.iter().flatten().map(|point| point.flow).collect();
+        let fan_drift = fan_drift(&fan_flows, self.history.last());
         let row = Progress {
             iteration: self.history.len() + 1,
             cells: self.stack.cells(l),
@@ -443,6 +451,8 @@ impl<'a> Run<'a> {
             flow_in: b.mass_in / air.density,
             part_max,
             drift,
+            fan_flows,
+            fan_drift,
         };
         (row, scales)
     }
@@ -548,6 +558,18 @@ impl<'a> Run<'a> {
             history: self.history,
             notes: self.notes,
         }
+    }
+}
+
+/// Largest relative change of a fan's flow since the row before; zero without fans.
+fn fan_drift(flows: &[f64], last: Option<&Progress>) -> f64 {
+    if flows.is_empty() {
+        return 0.0;
+    }
+    match last.filter(|row| row.fan_flows.len() == flows.len()) {
+        Some(row) => (row.fan_flows.iter().zip(flows))
+            .fold(0.0, |d: f64, (a, b)| d.max((a - b).abs() / b.abs().max(REST_FLOW))),
+        None => f64::INFINITY,
     }
 }
 

@@ -25,7 +25,12 @@ pub(super) fn doubts(case: &Case) -> Vec<String> {
         case.sides.iter().any(|s| matches!(s, SideCondition::Temperature(t) if *t != ambient));
     let sunlit = case.sides.iter().any(|s| matches!(s, SideCondition::Outside(o) if o.sun > 0.0));
     if case.blocks.iter().all(|b| b.heat == 0.0) && !fluxes && !driven && !sunlit {
-        doubts.push("there is no heat at all: the air will stay at rest".to_string());
+        let air = if case.is_driven() {
+            "only the fan moves the air"
+        } else {
+            "the air will stay at rest"
+        };
+        doubts.push(format!("there is no heat at all: {air}"));
     }
     for side in Side::ALL {
         match case.sides[side.index()] {
@@ -52,7 +57,9 @@ pub(super) fn doubts(case: &Case) -> Vec<String> {
     }
     doubts.extend(Side::ALL.into_iter().filter_map(|side| conducting_wall(case, side)));
     let open = case.sides.contains(&SideCondition::Open);
-    if let Some(doubt) = trapped(case) {
+    if case.is_driven() {
+        // What follows is about draught alone.
+    } else if let Some(doubt) = trapped(case) {
         doubts.push(doubt);
     } else if !open && !case.slots.is_empty() {
         let heights: Vec<f64> = case.slots.iter().map(|s| case.slot_height(s)).collect();

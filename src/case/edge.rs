@@ -7,10 +7,13 @@ use ventrise_mesh::{Geometry, Side};
 use ventrise_solver::SideCondition;
 
 use super::error::{CaseError, Cause};
-use super::model::{Ambient, Material, OuterSide, Probe, ProbeShape, Section, Slot, side_name};
+use super::model::{
+    Ambient, Fan, Material, OuterSide, Probe, ProbeShape, Resistance, Section, Slot, side_name,
+};
 use super::outside::{read_film, read_outside, refuse_outer_keys};
 use super::parse::{Located, Reader, Scope};
 use super::units::Dimension;
+use super::vents::read_resistance;
 use super::vocabulary::{PROBE, SIDE, SIDE_NAMES, SIDE_WORDS, SIDES, SLOT};
 
 /// A `[[slot]]` table as read.
@@ -22,17 +25,20 @@ pub(super) struct SlotDraft {
     pub side: Option<Located<Side>>,
     pub from: Option<Located<f64>>,
     pub to: Option<Located<f64>>,
-    pub loss: Option<f64>,
+    pub resistance: Option<Resistance>,
+    /// Name of the fan in it.
+    pub fan: Option<Located<String>>,
 }
 
 impl SlotDraft {
-    /// The slot, when everything was read.
-    pub fn finish(self) -> Option<Slot> {
+    /// The slot, when everything was read; its fan is one of `fans`.
+    pub fn finish(self, fans: &[Fan]) -> Option<Slot> {
         Some(Slot {
             name: self.name,
             side: self.side?.value,
             span: [self.from?.value, self.to?.value],
-            loss: self.loss?,
+            resistance: self.resistance?,
+            fan: self.fan.and_then(|fan| fans.iter().position(|f| f.name == fan.value)),
         })
     }
 }
@@ -46,10 +52,8 @@ pub(super) fn read_slots(reader: &mut Reader, top: &Scope) -> Vec<SlotDraft> {
             scope.place = format!("slot \"{}\"", name.value);
         }
         reader.check_keys(&scope, &SLOT);
-        for (key, example) in [("side", "\"bottom\""), ("loss", "1.5")] {
-            if !scope.has(key) {
-                reader.missing(&scope, key, example);
-            }
+        if !scope.has("side") {
+            reader.missing(&scope, "side", "\"bottom\"");
         }
         let side = reader.word(&scope, "side", &SIDE_NAMES, &[]).and_then(|word| {
             let side = Side::ALL.into_iter().find(|s| side_name(*s) == word.value)?;
@@ -64,10 +68,8 @@ pub(super) fn read_slots(reader: &mut Reader, top: &Scope) -> Vec<SlotDraft> {
             }
             _ => false,
         };
-        let loss = reader.number(&scope, "loss").filter(|loss| {
-            let good = (0.0..=1e6).contains(&loss.value);
-            reader.within(&scope, "loss", loss, good, "from 0 to 1e6")
-        });
+        let resistance = read_resistance(reader, &scope);
+        let fan = reader.text(&scope, "fan");
         if let Some(name) = &name
             && slots.iter().any(|s| s.name == name.value)
         {
@@ -81,7 +83,8 @@ pub(super) fn read_slots(reader: &mut Reader, top: &Scope) -> Vec<SlotDraft> {
             side,
             from: from.filter(|_| rising),
             to: to.filter(|_| rising),
-            loss: loss.map(|l| l.value),
+            resistance,
+            fan,
         });
     }
     slots

@@ -15,6 +15,10 @@ const TURBULENT: f64 = 1e9;
 /// Factor of the hand formula for vertical surfaces h = 1.4·(ΔT/L)^(1/4) [W/(m^(7/4)·K^(5/4))].
 const PLATE: f64 = 1.4;
 
+/// Speed of a natural draught in vents, at which their loss is taken [m/s] (common practice, no
+/// source).
+const USUAL_SPEED: f64 = 0.1;
+
 /// A rise [K] beyond which it does not matter how much more it is.
 const HOPELESS: f64 = 1e4;
 
@@ -157,7 +161,8 @@ fn draught(case: &Case, air: &Air) -> Option<Draught> {
     // Conductance A/sqrt(1 + K) and its mean height, below and above the heat.
     let (mut below, mut above, mut top) = (0.0, 0.0, 0.0);
     for slot in case.slots() {
-        let conductance = case.slot_area(slot) / (1.0 + slot.loss).sqrt();
+        let conductance =
+            case.slot_area(slot) / (1.0 + slot.resistance.law().at(USUAL_SPEED, air)).sqrt();
         let height = case.slot_height(slot);
         if height < middle {
             below += conductance;

@@ -9,6 +9,7 @@ mod doubts;
 mod edge;
 mod error;
 mod estimate;
+mod fans;
 mod heat;
 mod joints;
 pub mod judgement;
@@ -27,13 +28,16 @@ pub mod setup;
 mod surfaces;
 mod tables;
 pub mod units;
+mod vents;
 mod vocabulary;
 
 pub use error::{CaseError, CaseErrors, Cause};
 pub use estimate::Estimate;
 pub use model::{
-    AirChoice, Ambient, Block, Case, HeatCurve, Junction, JunctionBy, LimitAt, Material,
-    MeshChoice, OuterSide, Part, Probe, ProbeShape, Section, Slot, SolveChoice, Wall, side_name,
+    AirChoice, Ambient, Block, Case, Fan, HeatCurve, Junction, JunctionBy, LimitAt, Material,
+    MeshChoice, OuterSide, Part, Probe, ProbeShape, Resistance, Section, Slot, SolveChoice, Wall,
+    side_name,
 };
 pub use reference::reference;
 pub use schema::schema;
+pub use vents::kind_words;

@@ -3,7 +3,7 @@
 use std::ops::Range;
 
 use ventrise_mesh::{Geometry, Rectangle, Side};
-use ventrise_solver::{Air, Settings, SideCondition};
+use ventrise_solver::{Air, LossLaw, Settings, SideCondition, Vent};
 
 use super::error::CaseError;
 
@@ -193,8 +193,59 @@ pub struct Slot {
     pub side: Side,
     /// Extent along the side [m].
     pub span: [f64; 2],
-    /// Loss coefficient on the speed through the opening [-].
-    pub loss: f64,
+    /// What it costs the air to pass.
+    pub resistance: Resistance,
+    /// Fan in it, an index into [`Case::fans`].
+    pub fan: Option<usize>,
+}
+
+/// A fan.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Fan {
+    /// Name.
+    pub name: String,
+    /// Points (flow [m³/s], pressure [Pa]) at full speed.
+    pub curve: Vec<[f64; 2]>,
+    /// Density that the curve holds for [kg/m³].
+    pub density: f64,
+    /// Share of full speed; zero: it stands.
+    pub speed: f64,
+    /// Whether it blows into the section.
+    pub inward: bool,
+    /// Loss coefficient of the standing fan on the speed through the slot, when given [-].
+    pub stopped_loss: Option<f64>,
+}
+
+/// What it costs the air to pass a slot.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub enum Resistance {
+    /// Loss coefficient on the speed through the slot's whole area [-].
+    Loss(f64),
+    /// The vent that covers it.
+    Vent(Vent),
+}
+
+impl Resistance {
+    /// The loss law on the speed through the slot's whole area.
+    pub fn law(&self) -> LossLaw {
+        match self {
+            Resistance::Loss(loss) => LossLaw { loss: *loss, friction: 0.0 },
+            Resistance::Vent(vent) => vent.law(),
+        }
+    }
+
+    /// The vent, where there is one.
+    pub fn vent(&self) -> Option<&Vent> {
+        match self {
+            Resistance::Loss(_) => None,
+            Resistance::Vent(vent) => Some(vent),
+        }
+    }
+
+    /// Share of the slot's area that is free; all of it where a loss is given.
+    pub fn open_share(&self) -> f64 {
+        self.vent().map_or(1.0, Vent::open_share)
+    }
 }
 
 /// A named place whose values are reported.
@@ -269,6 +320,7 @@ pub struct Case {
     pub(super) parts: Vec<Part>,
     pub(super) joints: Vec<Joint>,
     pub(super) slots: Vec<Slot>,
+    pub(super) fans: Vec<Fan>,
     pub(super) sides: [SideCondition; 4],
     pub(super) side_emissivities: [Option<f64>; 4],
     pub(super) outer_sides: [Option<OuterSide>; 4],
@@ -333,6 +385,16 @@ impl Case {
     /// Slots, in the order of the file.
     pub fn slots(&self) -> &[Slot] {
         &self.slots
+    }
+
+    /// Fans, in the order of the file.
+    pub fn fans(&self) -> &[Fan] {
+        &self.fans
+    }
+
+    /// Whether a fan turns in one of the slots.
+    pub fn is_driven(&self) -> bool {
+        self.slots.iter().filter_map(|s| s.fan).any(|f| self.fans[f].speed > 0.0)
     }
 
     /// Conditions of the sides, by [`Side::index`].
@@ -402,7 +464,7 @@ impl Case {
         self.blocks.iter().map(|b| b.heat).sum()
     }
 
-    /// Area of a slot [m²]: over the depth, or around the full revolution.
+    /// Whole (gross) area of a slot [m²]: over the depth, or around the full revolution.
     pub fn slot_area(&self, slot: &Slot) -> f64 {
         let [from, to] = slot.span;
         match (self.section.geometry, slot.side) {

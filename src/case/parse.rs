@@ -532,7 +532,14 @@ fn example(key: &str, number: Option<&str>, dimension: Dimension) -> String {
         Ok(value) => value.is_finite() && (value > 0.0 || may_be_zero(key, dimension)),
         Err(_) => false,
     };
-    format!("\"{} {unit}\"", number.filter(usable).unwrap_or("1"))
+    let number = number.filter(usable);
+    match number.and_then(|text| text.parse::<f64>().ok()) {
+        // A share without its unit is meant as a part of one.
+        Some(share) if dimension == Dimension::Share && share <= 1.0 => {
+            format!("\"{} %\"", units::rounded(100.0 * share, 6))
+        }
+        _ => format!("\"{} {unit}\"", number.unwrap_or("1")),
+    }
 }
 
 fn unit_message(

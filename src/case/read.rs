@@ -9,6 +9,7 @@ use toml::de::DeTable;
 use super::blocks::read_blocks;
 use super::edge::{read_probes, read_sides, read_slots};
 use super::error::{CaseError, CaseErrors, Cause};
+use super::fans::read_fans;
 use super::joints::read_joints;
 use super::model::{Case, Origin};
 use super::parse::{Reader, Scope};
@@ -16,7 +17,7 @@ use super::tables::{
     mesh_keys, read_air, read_ambient, read_materials, read_mesh, read_section, read_solve,
 };
 use super::vocabulary::TOP;
-use super::{check, doubts};
+use super::{check, doubts, fans};
 
 /// Most bytes of a case file: ten times what the largest number of blocks takes.
 const LARGEST_FILE: usize = 10_000_000;
@@ -118,6 +119,8 @@ fn read_case(reader: &mut Reader, top: &Scope, text: &str, file: &str) -> Option
     let own = read_materials(reader, top);
     let drafts = read_blocks(reader, top, ambient.as_ref());
     let slots = read_slots(reader, top);
+    let fans = read_fans(reader, top);
+    fans::place(reader, &fans, &slots);
     let sides = read_sides(reader, top, section.as_ref(), ambient.as_ref(), &own);
     let probes = read_probes(reader, top);
     let mesh = read_mesh(reader, top, section.as_ref());
@@ -134,6 +137,7 @@ fn read_case(reader: &mut Reader, top: &Scope, text: &str, file: &str) -> Option
         }
     }
     let sides = sides?;
+    let fans: Vec<_> = fans.into_iter().filter_map(|f| f.fan).collect();
     let mut case = Case {
         title,
         section: section?,
@@ -143,7 +147,8 @@ fn read_case(reader: &mut Reader, top: &Scope, text: &str, file: &str) -> Option
         blocks: bodies.blocks.into_iter().map(|b| b.block).collect(),
         parts: bodies.parts,
         joints,
-        slots: slots.into_iter().filter_map(|s| s.finish()).collect(),
+        slots: slots.into_iter().filter_map(|s| s.finish(&fans)).collect(),
+        fans,
         sides: sides.conditions,
         side_emissivities: sides.emissivities,
         outer_sides: sides.outer,

@@ -3,11 +3,14 @@
 use std::fmt::Write as _;
 
 use ventrise_mesh::{Geometry, Side, Spacing};
-use ventrise_solver::{OuterFilm, Outside, SideCondition};
+use ventrise_solver::{OuterFilm, Outside, SideCondition, Vent};
 
-use super::model::{AirChoice, Block, Case, HeatCurve, JunctionBy, LimitAt, ProbeShape, side_name};
+use super::model::{
+    AirChoice, Block, Case, Fan, HeatCurve, JunctionBy, LimitAt, ProbeShape, Resistance, side_name,
+};
 use super::setup::spacing;
 use super::units::{Dimension, number, write};
+use super::vents::kind_words;
 
 /// Lines of a TOML text.
 #[derive(Default)]
@@ -35,6 +38,34 @@ impl Lines {
     fn lengths(&mut self, key: &str, lengths: [f64; 2]) {
         let [a, b] = lengths.map(|l| quoted(&write(l, "mm")));
         self.line(&format!("{key} = [{a}, {b}]"));
+    }
+}
+
+fn write_vent(lines: &mut Lines, vent: &Vent) {
+    let (kind, sizes) = kind_words(&vent.kind);
+    lines.text("kind", kind);
+    lines.quantity("free-area", vent.free_share, Dimension::Share);
+    if vent.blocked > 0.0 {
+        lines.quantity("blocked", vent.blocked, Dimension::Share);
+    }
+    for (key, size) in sizes {
+        lines.quantity(key, size, Dimension::Length);
+    }
+}
+
+fn write_fan(lines: &mut Lines, fan: &Fan) {
+    lines.header("[[fan]]");
+    lines.text("name", &fan.name);
+    let point = |[flow, pressure]: &[f64; 2]| {
+        format!("[{}, {}]", quoted(&write(*flow, "m3/h")), quoted(&write(*pressure, "Pa")))
+    };
+    let points: Vec<String> = fan.curve.iter().map(point).collect();
+    lines.line(&format!("curve = [{}]", points.join(", ")));
+    lines.quantity("density", fan.density, Dimension::Density);
+    lines.quantity("speed", fan.speed, Dimension::Share);
+    lines.text("direction", if fan.inward { "in" } else { "out" });
+    if let Some(loss) = fan.stopped_loss {
+        lines.line(&format!("stopped-loss = {}", number(loss)));
     }
 }
 
@@ -263,8 +294,15 @@ impl Case {
             lines.text("side", side_name(slot.side));
             lines.quantity("from", slot.span[0], Dimension::Length);
             lines.quantity("to", slot.span[1], Dimension::Length);
-            lines.line(&format!("loss = {}", number(slot.loss)));
+            match &slot.resistance {
+                Resistance::Loss(loss) => lines.line(&format!("loss = {}", number(*loss))),
+                Resistance::Vent(vent) => write_vent(lines, vent),
+            }
+            if let Some(fan) = slot.fan {
+                lines.text("fan", &self.fans[fan].name);
+            }
         }
+        self.fans.iter().for_each(|fan| write_fan(lines, fan));
         lines.header("[sides]");
         for side in Side::ALL {
             let emissivity = self.side_emissivities[side.index()];

@@ -2,8 +2,8 @@
 
 use ventrise_mesh::{Generated, Layout, Mesh, MeshError, Side, SlotSpan, Spacing, generate};
 use ventrise_solver::{
-    AirModel, Block, Description, HeatLaw, Joint, Problem, ProblemError, Settings, SideCondition,
-    SideSurface, Slot, Solid, Surfaces,
+    AirModel, Block, Description, Fan, HeatLaw, Joint, Problem, ProblemError, Settings,
+    SideCondition, SideSurface, Slot, Solid, Surfaces,
 };
 
 use super::estimate::{Estimate, GRAVITY};
@@ -98,7 +98,8 @@ pub fn problem(case: &Case, mesh: Mesh) -> Result<Problem, ProblemError> {
         gravity: [0.0, -GRAVITY],
         solids: case.materials().iter().map(solid).collect(),
         blocks: case.blocks().iter().map(|b| Block { solid: b.material, heat: b.heat }).collect(),
-        slots: case.slots().iter().map(|s| Slot { loss: s.loss, drive: 0.0 }).collect(),
+        slots: case.slots().iter().map(slot).collect(),
+        fans: case.fans().iter().map(super::Fan::curve_fan).collect(),
         sides: *case.sides(),
         parts: case.parts().iter().map(|p| p.blocks.clone()).collect(),
         joints: case
@@ -113,6 +114,23 @@ pub fn problem(case: &Case, mesh: Mesh) -> Result<Problem, ProblemError> {
         sources: None,
         radiation: surfaces(case),
     })
+}
+
+fn slot(slot: &super::Slot) -> Slot {
+    Slot { law: slot.resistance.law(), drive: 0.0, fan: slot.fan }
+}
+
+impl super::Fan {
+    /// The fan as the equations see it.
+    pub fn curve_fan(&self) -> Fan {
+        Fan {
+            curve: self.curve.clone(),
+            density: self.density,
+            speed: self.speed,
+            inward: self.inward,
+            stopped_loss: self.stopped_loss.unwrap_or(0.0),
+        }
+    }
 }
 
 /// How the surfaces radiate; `None` where the case gives no emissivity.

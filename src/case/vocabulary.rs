@@ -37,12 +37,13 @@ pub(super) const TOP: Table = Table {
         key("block", List(&Inner(&BLOCK)), Without("no solid"), "solid rectangles"),
         key("joint", List(&Inner(&JOINT)), Without("perfect contact"), "contact resistances"),
         key("slot", List(&Inner(&SLOT)), Without("no opening"), "openings in the edge of the section"),
+        key("fan", List(&Inner(&FAN)), Without("draught alone"), "fans in slots"),
         key("sides", Inner(&SIDES), Without("adiabatic sides"), "what the edge does where no slot is"),
         key("probe", List(&Inner(&PROBE)), Without("none"), "places whose values are reported"),
         key("mesh", Inner(&MESH), Without("chosen from the case"), "how fine the section is divided"),
         key("solve", Inner(&SOLVE), Without("the usual bounds"), "when to stop"),
     ],
-    later: &["fan"],
+    later: &[],
     rules: &[],
     example: "title = \"Charger in a wall box\"\n",
 };
@@ -214,12 +215,47 @@ pub(super) const SLOT: Table = Table {
         key("side", Word(&SIDE_NAMES), Required, "the side it lies in"),
         key("from", Quantity(Dimension::Length, ""), Required, "where it begins along the side"),
         key("to", Quantity(Dimension::Length, "more than from"), Required, "where it ends"),
-        key("loss", Number(0.0, 1e6, "from 0 to 1e6"), Required, "loss coefficient on the speed through the opening: what of the dynamic pressure is lost beyond the speed itself"),
+        key("loss", Number(0.0, 1e6, "from 0 to 1e6"), Without("-"), "loss coefficient on the mean speed through the whole opening: what of the dynamic pressure is lost beyond the speed itself"),
+        key("kind", Word(&["louvre", "perforated", "mesh"]), Without("-"), "what covers the opening, instead of loss; its loss then follows the Reynolds number of the result"),
+        key("free-area", Quantity(Dimension::Share, "from 1 % to 100 %"), Without("-"), "clear share of the opening"),
+        key("blocked", Quantity(Dimension::Share, "from 0 % to 95 %"), Default("\"0 %\""), "share of the free area lost to dust, leaves or paint"),
+        key("gap", Quantity(Dimension::Length, "from 0.01 mm to 500 mm"), Without("-"), "clear width between the blades of a louvre"),
+        key("blade", Quantity(Dimension::Length, "from 0.01 mm to 500 mm"), Without("-"), "length of the blades along the flow"),
+        key("hole", Quantity(Dimension::Length, "from 0.01 mm to 500 mm"), Without("-"), "diameter of the holes of perforated sheet"),
+        key("sheet", Quantity(Dimension::Length, "from 0.01 mm to 500 mm"), Without("-"), "thickness of perforated sheet"),
+        key("wire", Quantity(Dimension::Length, "from 0.01 mm to 500 mm"), Without("-"), "thickness of the wires of a mesh"),
+        key("opening", Quantity(Dimension::Length, "from 0.01 mm to 500 mm"), Without("-"), "clear width between the wires of a mesh, instead of free-area"),
+        key("fan", Text, Without("no fan"), "name of the fan that stands in it"),
     ],
-    later: &["fan", "free-area", "kind"],
-    rules: &[],
+    later: &[],
+    rules: &[
+        Rule::OneOf(&[&["loss"], &["kind"]]),
+        Rule::Never("loss", &["free-area", "blocked", "gap", "blade", "hole", "sheet", "wire", "opening"]),
+        Rule::Needs("kind", "louvre", &["free-area", "gap", "blade"]),
+        Rule::Needs("kind", "perforated", &["free-area", "hole", "sheet"]),
+        Rule::Needs("kind", "mesh", &["wire"]),
+        Rule::Never("free-area", &["opening"]),
+    ],
     example: "[[slot]]\nname = \"floor\"\nside = \"bottom\"\nfrom = \"40 mm\"\nto = \"100 mm\"\nloss = 1.5\n\n\
-              [[slot]]\nname = \"roof\"\nside = \"top\"\nfrom = \"40 mm\"\nto = \"100 mm\"\nloss = 2.5\n",
+              [[slot]]\nname = \"roof\"\nside = \"top\"\nfrom = \"40 mm\"\nto = \"100 mm\"\nkind = \"perforated\"\nfree-area = \"60 %\"\nhole = \"4 mm\"\nsheet = \"1 mm\"\nfan = \"backup\"\n",
+};
+
+#[rustfmt::skip]
+pub(super) const FAN: Table = Table {
+    header: "[[fan]]",
+    what: "a fan",
+    says: "A fan in one slot, spread over the whole of it. Flows are those of the whole slot: over the depth or the full revolution.",
+    keys: &[
+        key("name", Text, Required, "what the slot calls it"),
+        key("curve", List(&Pair(&[Quantity(Dimension::VolumeFlow, ""), Quantity(Dimension::Pressure, "")], "")), Required, "points of flow and pressure at full speed, flows rising from 0"),
+        key("density", Quantity(Dimension::Density, "from 0.1 kg/m3 to 5 kg/m3"), Default("\"1.2 kg/m3\""), "density of the air for which the curve holds"),
+        key("speed", Quantity(Dimension::Share, "from 0 % to 200 %"), Default("\"100 %\""), "its speed; by the fan laws flow goes with it, pressure with its square"),
+        key("direction", Word(&["in", "out"]), Required, "whether it blows into the section or out of it"),
+        key("stopped-loss", Number(0.0, 1e6, "from 0 to 1e6"), Without("-"), "loss coefficient of the standing fan on the speed through its slot; needed at speed 0"),
+    ],
+    later: &[],
+    rules: &[],
+    example: "[[fan]]\nname = \"backup\"\ncurve = [[\"0 m3/h\", \"14 Pa\"], [\"20 m3/h\", \"9 Pa\"], [\"38 m3/h\", \"0 Pa\"]]\nspeed = \"40 %\"\ndirection = \"out\"\n",
 };
 
 #[rustfmt::skip]

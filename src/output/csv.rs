@@ -121,6 +121,10 @@ pub fn slots(summary: &Summary) -> String {
         "mean_pressure_pa",
         "heat_w",
         "area_m2",
+        "free_area_m2",
+        "speed_m_s",
+        "loss",
+        "reynolds",
     ]);
     for s in &summary.slots {
         table.row([
@@ -132,6 +136,10 @@ pub fn slots(summary: &Summary) -> String {
             number(s.mean_pressure_pa),
             number(s.heat_w),
             number(s.area_m2),
+            number(s.free_area_m2),
+            number(s.speed_m_s),
+            perhaps(s.loss),
+            number(s.reynolds),
         ]);
     }
     table.0

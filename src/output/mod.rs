@@ -3,7 +3,8 @@
 use std::io;
 
 pub mod by_hand;
-mod csv;
+pub mod csv;
+pub mod fans;
 pub mod folder;
 pub mod outer_heat;
 pub mod overview;
@@ -12,6 +13,7 @@ pub mod readings;
 pub mod report;
 pub mod results;
 pub mod screen;
+pub mod slots;
 pub mod summary;
 pub mod table;
 pub mod told;

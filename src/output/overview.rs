@@ -12,6 +12,7 @@ use crate::memory;
 
 use super::readings::celsius;
 use super::side_name;
+use super::slots::resistance_words;
 use super::words::{counted, fixed, grouped, mm, shortened, sized};
 
 /// Seconds in an hour: flows are shown per hour.
@@ -131,17 +132,23 @@ impl<'a> Overview<'a> {
     fn edge(&self, out: &mut dyn Write) -> io::Result<()> {
         writeln!(out, "Slots     {}", self.case.slots().len())?;
         for slot in self.case.slots() {
+            let gross = 1e4 * self.case.slot_area(slot);
+            let free = match slot.resistance.vent() {
+                Some(vent) => format!(" gross, {} cm2 free", fixed(gross * vent.open_share(), 2)),
+                None => String::new(),
+            };
             writeln!(
                 out,
-                "  {}: {}, {} to {} mm, {} cm2, loss {}",
+                "  {}: {}, {} to {} mm, {} cm2{free}, {}",
                 shortened(&slot.name, NAME),
                 side_name(slot.side),
                 mm(slot.span[0]),
                 mm(slot.span[1]),
-                fixed(1e4 * self.case.slot_area(slot), 2),
-                slot.loss
+                fixed(gross, 2),
+                resistance_words(&slot.resistance)
             )?;
         }
+        self.fans(out)?;
         let sides = Side::ALL.map(|side| {
             let axis = side == Side::Left && self.case.section().geometry == Geometry::Axisymmetric;
             let what =
@@ -166,6 +173,37 @@ impl<'a> Overview<'a> {
         more(out, self.case.joints().len())?;
         let radiation = if self.case.radiates() { "between all surfaces" } else { "not modelled" };
         writeln!(out, "Radiation {radiation}")
+    }
+
+    fn fans(&self, out: &mut dyn Write) -> io::Result<()> {
+        if !self.case.fans().is_empty() {
+            writeln!(out, "Fans      {}", self.case.fans().len())?;
+        }
+        for (n, fan) in self.case.fans().iter().enumerate() {
+            let slot = self.case.slots().iter().find(|s| s.fan == Some(n));
+            let place = slot.map_or("in no slot".into(), |s| {
+                format!("{} at {}", if fan.inward { "in" } else { "out" }, shortened(&s.name, NAME))
+            });
+            let name = shortened(&fan.name, NAME);
+            if fan.speed == 0.0 {
+                let loss = fan.stopped_loss.unwrap_or(0.0);
+                writeln!(out, "  {name}: {place}, stands, loss {loss} more")?;
+                continue;
+            }
+            // As the fan laws have it at the ambient's density.
+            let curve = fan.curve_fan();
+            let density = Estimate::of(self.case).air.density;
+            let free = curve
+                .free_delivery()
+                .map_or("none".into(), |free| format!("{} m3/h", sized(3600.0 * free, 2, 0.0)));
+            writeln!(
+                out,
+                "  {name}: {place}, {} % of full speed, up to {} Pa, free delivery {free}",
+                fixed(100.0 * fan.speed, 1),
+                sized(curve.pressure(0.0, density)[0], 2, 0.0)
+            )?;
+        }
+        Ok(())
     }
 
     fn probes(&self, out: &mut dyn Write) -> io::Result<()> {

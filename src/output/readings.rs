@@ -2,9 +2,10 @@
 
 use ventrise_mesh::AIR;
 use ventrise_solver::{
-    Balance, Numbers, OpeningFlow, PartTemperature, Problem, RadiantHeat, STEFAN_BOLTZMANN, Sample,
-    Sampler, SideFlow, Solution, balance, block_heats, block_temperatures, cell_velocities,
-    heat_fluxes, numbers, part_temperatures, radiant_heat, side_flows, slot_flows,
+    Balance, FanPoint, Numbers, OpeningFlow, PartTemperature, Problem, RadiantHeat,
+    STEFAN_BOLTZMANN, Sample, Sampler, SideFlow, Solution, balance, block_heats,
+    block_temperatures, cell_velocities, fan_points, heat_fluxes, numbers, part_temperatures,
+    radiant_heat, side_flows, slot_flows, slot_reynolds,
 };
 
 use crate::case::{Case, ProbeShape};
@@ -60,6 +61,10 @@ pub struct Readings {
     pub heats: Vec<f64>,
     /// Slots, in the case's order.
     pub slots: Vec<OpeningFlow>,
+    /// Reynolds number of every slot [-], in the case's order.
+    pub slot_reynolds: Vec<f64>,
+    /// Operating points of the fans, in the case's order.
+    pub fans: Vec<Option<FanPoint>>,
     /// Sides.
     pub sides: [SideFlow; 4],
     /// Balance.
@@ -94,6 +99,8 @@ impl Run<'_> {
             blocks: block_temperatures(problem, state),
             heats: block_heats(problem, state),
             slots: slot_flows(problem, air, state),
+            slot_reynolds: slot_reynolds(problem, air, state),
+            fans: fan_points(problem, air, state),
             sides: side_flows(problem, air, state),
             balance: balance(problem, air, state),
             numbers: numbers(problem, air, state),

@@ -5,6 +5,7 @@ use std::path::Path;
 
 use unicode_width::UnicodeWidthStr;
 
+use super::fans::cells as fan_cells;
 use super::readings::Readings;
 use super::summary::{Part, Summary};
 pub(super) use super::words::fixed;
@@ -32,6 +33,8 @@ pub fn report(
     writeln!(out)?;
     parts(out, summary, readings)?;
     slots(out, summary)?;
+    vents(out, summary)?;
+    fans(out, summary)?;
     outer(out, summary)?;
     heat(out, summary)?;
     balances(out, summary, readings)?;
@@ -162,6 +165,46 @@ fn outer(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
         let film = std::iter::once(sized(o.film_w_m2_k, 2, 0.0));
         let cells: Vec<String> = heat.into_iter().chain(rest).chain(film).collect();
         writeln!(out, "{}{}", in_column(&format!("{} side", side.name), w), columns(&cells))?;
+    }
+    writeln!(out)
+}
+
+/// Areas and losses of the slots, where a vent covers one of them.
+fn vents(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
+    if summary.slots.iter().all(|s| s.vent.is_none()) {
+        return Ok(());
+    }
+    let w = name_width(summary.slots.iter().map(|s| s.name.as_str()));
+    let header = ["gross cm2", "free cm2", "m/s", "loss K", "Re"].map(String::from);
+    writeln!(out, "{:w$}{}", "Vent", columns(&header))?;
+    for slot in &summary.slots {
+        let cells = [
+            fixed(1e4 * slot.area_m2, 2),
+            fixed(1e4 * slot.free_area_m2, 2),
+            sized(slot.speed_m_s, 3, 0.0),
+            shown(slot.loss, 2),
+            fixed(slot.reynolds, 0),
+        ];
+        let kind = slot.vent.unwrap_or("loss as given");
+        writeln!(out, "{}{}  {kind}", in_column(&slot.name, w), columns(&cells))?;
+    }
+    writeln!(out, "  m/s and K on the gross area; Re of gaps, holes or wires")?;
+    writeln!(out)
+}
+
+/// Where fans work.
+fn fans(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
+    if summary.fans.is_empty() {
+        return Ok(());
+    }
+    let w = name_width(summary.fans.iter().map(|f| f.name.as_str()));
+    let header = ["speed %", "m3/h", "Pa", "free m3/h", "of it %"].map(String::from);
+    writeln!(out, "{:w$}{}", "Fan", columns(&header))?;
+    for fan in &summary.fans {
+        let point = [fan.speed, fan.flow_m3_s, fan.pressure_pa];
+        let cells = fan_cells(point, [fan.free_delivery_m3_s, fan.free_delivery_share]);
+        let place = format!("{} at \"{}\"", fan.direction, fan.slot);
+        writeln!(out, "{}{}  {place}", in_column(&fan.name, w), columns(&cells))?;
     }
     writeln!(out)
 }

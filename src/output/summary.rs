@@ -10,9 +10,11 @@ use ventrise_solver::{SOLVED, Sample, Solution, StopReason, Verdict};
 use crate::case::{Case, LimitAt, ProbeShape};
 
 use super::by_hand::ByHand;
+use super::fans::{Fan, fans};
 use super::outer_heat::OuterHeat;
 use super::readings::{Interruption, Readings, Run};
 use super::side_name;
+use super::slots::{Slot, slots};
 use super::warnings::warnings;
 
 /// Spread of temperatures beyond which the linear density law is off by more than a tenth [K]:
@@ -68,6 +70,9 @@ pub struct Summary {
     pub parts: Vec<Part>,
     /// Slots, in the case's order.
     pub slots: Vec<Slot>,
+    /// Fans, in the case's order.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub fans: Vec<Fan>,
     /// Sides: left, right, bottom, top.
     pub sides: Vec<SideHeat>,
     /// Probes, in the case's order.
@@ -233,29 +238,6 @@ pub struct Part {
     pub resistance_k_w: Option<f64>,
 }
 
-/// A slot.
-#[derive(Debug, Clone, Serialize)]
-pub struct Slot {
-    /// Name.
-    pub name: String,
-    /// Side it lies in.
-    pub side: &'static str,
-    /// Air that enters [m³/s].
-    pub in_m3_s: f64,
-    /// Air that leaves [m³/s].
-    pub out_m3_s: f64,
-    /// Mean temperature of the leaving air [°C].
-    pub out_mean_c: Option<f64>,
-    /// Mean pressure behind the slot [Pa].
-    pub mean_pressure_pa: f64,
-    /// Heat carried out [W].
-    pub heat_w: f64,
-    /// Free area [m²].
-    pub area_m2: f64,
-    /// Lowest and highest net flow in while the flow sways [m³/s].
-    pub net_in_band_m3_s: Option<[f64; 2]>,
-}
-
 /// A side.
 #[derive(Debug, Clone, Serialize)]
 pub struct SideHeat {
@@ -331,7 +313,7 @@ impl Summary {
         let last = solution.history.last().cloned().unwrap_or_default();
         let (air, numbers, balance) = (&solution.air, &readings.numbers, &readings.balance);
         let heat_of = |side: &ventrise_solver::SideFlow| side.heat();
-        Summary {
+        let mut summary = Summary {
             ventrise: env!("CARGO_PKG_VERSION"),
             case: CaseName { title: case.title().into(), sha256: case.sha256().into() },
             solved: solved(solution),
@@ -398,14 +380,17 @@ impl Summary {
                 radiation: readings.radiant.as_ref().map_or(0.0, |r| r.openings),
             },
             parts: parts(case, readings, solution),
-            slots: slots(case, readings, &solution.verdict),
+            slots: slots(case, air, readings, &solution.verdict),
+            fans: fans(case, readings),
             sides: sides(readings),
             probes: probes(case, readings),
             blocks: blocks(case, readings),
             materials: case.materials().iter().map(|m| m.name.clone()).collect(),
             by_hand: numbers.max_air_rise.and_then(|_| ByHand::of(case)),
-            warnings: warnings(run, readings),
-        }
+            warnings: Vec::new(),
+        };
+        summary.warnings = warnings(run, readings, &summary.slots);
+        summary
     }
 
     /// The file's text.
@@ -512,26 +497,6 @@ fn hottest_junction(case: &Case, readings: &Readings, part: &crate::case::Part) 
         Some(hottest + junction.resistance * readings.heats[*b])
     };
     part.blocks.iter().filter_map(of).max_by(f64::total_cmp)
-}
-
-fn slots(case: &Case, readings: &Readings, verdict: &Verdict) -> Vec<Slot> {
-    let band = |n: usize| match verdict {
-        Verdict::Swaying { slot_band, .. } => slot_band.get(n).copied(),
-        _ => None,
-    };
-    let slot =
-        |(n, (slot, flow)): (usize, (&crate::case::Slot, &ventrise_solver::OpeningFlow))| Slot {
-            name: slot.name.clone(),
-            side: side_name(slot.side),
-            in_m3_s: flow.inflow,
-            out_m3_s: flow.outflow,
-            out_mean_c: flow.out_mean_rise.map(|rise| readings.ambient + rise),
-            mean_pressure_pa: flow.mean_pressure,
-            heat_w: flow.heat,
-            area_m2: flow.area,
-            net_in_band_m3_s: band(n),
-        };
-    case.slots().iter().zip(&readings.slots).enumerate().map(slot).collect()
 }
 
 fn sides(readings: &Readings) -> Vec<SideHeat> {

@@ -59,6 +59,9 @@ pub struct Told {
     /// Slots.
     #[serde(default)]
     pub slots: Vec<ToldSlot>,
+    /// Fans.
+    #[serde(default)]
+    pub fans: Vec<ToldFan>,
     /// Sides.
     #[serde(default)]
     pub sides: Vec<ToldSide>,
@@ -246,9 +249,52 @@ pub struct ToldSlot {
     /// Heat carried out [W].
     #[serde(default)]
     pub heat_w: f64,
-    /// Free area [m²].
+    /// Whole area [m²].
     #[serde(default)]
     pub area_m2: Option<f64>,
+    /// Free area [m²].
+    #[serde(default)]
+    pub free_area_m2: Option<f64>,
+    /// Mean speed through the whole area [m/s].
+    #[serde(default)]
+    pub speed_m_s: Option<f64>,
+    /// Loss coefficient on that speed.
+    #[serde(default)]
+    pub loss: Option<f64>,
+    /// Reynolds number.
+    #[serde(default)]
+    pub reynolds: Option<f64>,
+    /// Kind of the vent, if there is one.
+    #[serde(default)]
+    pub vent: Option<String>,
+}
+
+/// A fan.
+#[derive(Debug, Clone, Deserialize)]
+pub struct ToldFan {
+    /// Name.
+    pub name: String,
+    /// Its slot.
+    #[serde(default)]
+    pub slot: String,
+    /// `in` or `out`.
+    #[serde(default)]
+    pub direction: String,
+    /// Share of full speed.
+    #[serde(default)]
+    pub speed: f64,
+    /// Flow in its direction [m³/s].
+    #[serde(default)]
+    pub flow_m3_s: f64,
+    /// Pressure rise [Pa].
+    #[serde(default)]
+    pub pressure_pa: f64,
+    /// Flow without pressure rise [m³/s].
+    #[serde(default)]
+    pub free_delivery_m3_s: Option<f64>,
+    /// The flow as a share of it.
+    #[serde(default)]
+    pub free_delivery_share: Option<f64>,
 }
 
 /// What leaves an outer face.

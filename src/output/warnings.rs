@@ -5,8 +5,10 @@ use ventrise_solver::contacts;
 
 use crate::case::HeatCurve;
 
+use super::fans;
 use super::readings::{Readings, Run};
 use super::side_name;
+use super::slots::{self, Slot};
 use super::summary::{BOUSSINESQ_SPREAD, TURBULENT_REYNOLDS};
 
 /// Radiation left out that is worth a warning, as a share of the heat put in.
@@ -20,7 +22,7 @@ const TOUCHED: f64 = 55.0;
 const WORST_VIEW_DEFECT: f64 = 2e-3;
 
 /// Sentences about the case, the mesh, the run and its result.
-pub(super) fn warnings(run: &Run, readings: &Readings) -> Vec<String> {
+pub(super) fn warnings(run: &Run, readings: &Readings, slots: &[Slot]) -> Vec<String> {
     let mut warnings = run.case.warnings();
     warnings.extend_from_slice(run.mesh_notes);
     warnings.extend_from_slice(&run.solution.notes);
@@ -113,5 +115,7 @@ pub(super) fn warnings(run: &Run, readings: &Readings) -> Vec<String> {
             warnings.push(format!("slot \"{}\" breathes in and out at once", slot.name));
         }
     }
+    warnings.extend(slots::warnings(run.case, slots));
+    warnings.extend(fans::warnings(run.case, readings));
     warnings
 }

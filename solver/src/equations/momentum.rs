@@ -194,8 +194,8 @@ impl<'a> XRow<'a> {
         let mut slope = 0.0;
         if !(LEFT && RIGHT) {
             let (side, outward) = if LEFT { (1, 1.0) } else { (0, -1.0) };
-            let loss = self.level.loss[side][self.j];
-            let [thrust, stiffness] = opening_force(self.density, area, loss, outward, here);
+            let law = [self.level.loss[side][self.j], self.level.drag[side][self.j]];
+            let [thrust, stiffness] = opening_force(self.density, area, law, outward, here);
             force += thrust;
             slope = stiffness;
         }
@@ -249,6 +249,7 @@ struct YRow<'a> {
     across: &'a [f64],
     wall: &'a [f64],
     loss: &'a [f64],
+    drag: &'a [f64],
     rhs: &'a [f64],
 }
 
@@ -277,6 +278,7 @@ impl<'a> YRow<'a> {
             across: &level.v_across[corners(j)],
             wall: &level.v_wall[cells(j)],
             loss: &level.loss[if j == 0 { 2 } else { 3 }][..nx],
+            drag: &level.drag[if j == 0 { 2 } else { 3 }][..nx],
             rhs: &rhs[cells(j)],
         }
     }
@@ -338,8 +340,8 @@ impl<'a> YRow<'a> {
         let mut slope = 0.0;
         if !(LOW && HIGH) {
             let outward = if LOW { 1.0 } else { -1.0 };
-            let [thrust, stiffness] =
-                opening_force(self.density, area, self.loss[i], outward, here);
+            let law = [self.loss[i], self.drag[i]];
+            let [thrust, stiffness] = opening_force(self.density, area, law, outward, here);
             force += thrust;
             slope = stiffness;
         }
@@ -364,10 +366,18 @@ impl<'a> YRow<'a> {
 /// Force of an opening on its half control volume [N] and the size of its slope [kg/s].
 ///
 /// The pressure outside the face is −(1 + K)·ρ₀u_n²/2 for air entering (ambient total pressure
-/// through the loss) and +K·ρ₀u_n²/2 for air leaving; both oppose the flow.
+/// through the loss) and +K·ρ₀u_n²/2 for air leaving, and in a vent `drag`·u_n more; all oppose
+/// the flow.
 #[inline(always)]
-fn opening_force(density: f64, area: f64, loss: f64, outward: f64, speed: f64) -> [f64; 2] {
+fn opening_force(
+    density: f64,
+    area: f64,
+    [loss, drag]: [f64; 2],
+    outward: f64,
+    speed: f64,
+) -> [f64; 2] {
     let factor = if speed * outward < 0.0 { 1.0 + loss } else { loss };
     let slope = factor * density * area * speed.abs();
-    [-0.5 * slope * speed, slope]
+    let drag = drag * area;
+    [-0.5 * slope * speed - drag * speed, slope + drag]
 }

@@ -92,7 +92,7 @@ impl Duct {
         // Friction of the developed flow plus the kinetic energy it takes.
         let friction = self.friction() / self.reynolds * self.length;
         let drive = 0.5 * (friction + 2.0);
-        d.slots = vec![Slot { loss: 0.0, drive }, Slot { loss: 0.0, drive: 0.0 }];
+        d.slots = vec![Slot { drive, ..Slot::with_loss(0.0) }, Slot::with_loss(0.0)];
         let hot = SideCondition::Temperature(AMBIENT + 1.0);
         if self.heated != HeatedWalls::None {
             d.sides[Side::Right.index()] = hot;

@@ -11,6 +11,7 @@ mod lid;
 mod lines;
 mod manufactured;
 mod read;
+mod shaft;
 mod vented;
 
 pub use cavity::{
@@ -27,6 +28,7 @@ pub use read::{
     side_heat, slot_flow, stream_at, stream_function, u_along_y, v_along_x, wall_flux,
     x_plane_heat,
 };
+pub use shaft::Shaft;
 pub use vented::{Channel, HousingResult, RingHousing, SlotHousing, Stack};
 
 use ventrise_mesh::{Layout, Mesh, MeshError};
@@ -62,6 +64,7 @@ fn plain(layout: &Layout, x: Vec<f64>, y: Vec<f64>, air: Air) -> Result<Descript
         solids: Vec::new(),
         blocks: Vec::new(),
         slots: Vec::new(),
+        fans: Vec::new(),
         sides: [SideCondition::Adiabatic; 4],
         parts: Vec::new(),
         joints: Vec::new(),

@@ -100,7 +100,7 @@ impl Stack {
         let mut d = plain(&layout, x, y, self.air)?;
         d.ambient = self.ambient;
         d.gravity = [0.0, -self.gravity];
-        d.slots = self.loss.map(|loss| Slot { loss, drive: 0.0 }).to_vec();
+        d.slots = self.loss.map(Slot::with_loss).to_vec();
         d.sides[Side::Left.index()] = SideCondition::Symmetry;
         d.sides[Side::Right.index()] = SideCondition::Symmetry;
         let (nx, ny) = (d.mesh.nx(), d.mesh.ny());
@@ -206,7 +206,7 @@ impl SlotHousing {
         d.gravity = [0.0, -HOUSING_GRAVITY];
         d.solids.push(solid(180.0));
         d.blocks.push(Block { solid: 0, heat: self.heat });
-        d.slots = vec![Slot { loss: 1.5, drive: 0.0 }; 4];
+        d.slots = vec![Slot::with_loss(1.5); 4];
         d.parts.push(vec![0]);
         Ok(Problem::new(d)?)
     }
@@ -258,7 +258,7 @@ impl RingHousing {
         d.solids.push(solid(180.0));
         d.blocks.push(Block { solid: 0, heat: self.heat });
         d.blocks.extend(vec![Block { solid: 0, heat: 0.0 }; 6]);
-        d.slots = vec![Slot { loss: 1.5, drive: 0.0 }; 2];
+        d.slots = vec![Slot::with_loss(1.5); 2];
         d.parts.push(vec![0]);
         Ok(Problem::new(d)?)
     }

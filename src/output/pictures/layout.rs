@@ -6,6 +6,7 @@ use ventrise_solver::{OuterFilm, SideCondition};
 use crate::case::units::rounded;
 use crate::case::{Case, ProbeShape, Slot, side_name};
 use crate::output::readings::celsius;
+use crate::output::slots::resistance_words;
 use crate::output::words::mm;
 
 use super::colour::{AIR_MARK, COOLED, FAINT, HEATED, INK, MESH, PAPER, SOLID};
@@ -213,14 +214,15 @@ fn key(svg: &mut Svg, case: &Case, top: f64) -> f64 {
         });
     }
     for (n, slot) in case.slots().iter().enumerate().take(LISTED) {
+        let fan = slot.fan.map_or(String::new(), |f| format!(", fan {}", case.fans()[f].name));
         let text = format!(
-            "{}: {}, {} to {} mm, {} cm², loss {}",
+            "{}: {}, {} to {} mm, {} cm², {}{fan}",
             slot.name,
             side_name(slot.side),
             millimetres(slot.span[0]),
             millimetres(slot.span[1]),
             significant(1e4 * case.slot_area(slot)),
-            number(slot.loss)
+            resistance_words(&slot.resistance)
         );
         row(svg, &text, &|svg, y| badge(svg, [22.0, y - 4.5], &letter(n)));
     }

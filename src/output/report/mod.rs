@@ -99,6 +99,8 @@ fn page(results: &Results, pictures: &[Picture]) -> Result<String, minijinja::Er
         paths_note => rows::paths_note(results),
         outer => rows::outer(results),
         slots => rows::slots(results),
+        vents => rows::vents(results),
+        fans => rows::fans(results),
         probes => rows::probes(results),
         state => rows::state(results),
         validity => rows::validity(results),

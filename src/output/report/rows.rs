@@ -4,6 +4,7 @@ use serde::Serialize;
 use ventrise_solver::{HEAT_BOUND, MASS_BOUND};
 
 use crate::case::units::rounded;
+use crate::output::fans;
 use crate::output::results::Results;
 use crate::output::summary::{BOUSSINESQ_SPREAD, TURBULENT_REYNOLDS};
 use crate::output::told::{ToldOuter, ToldPart};
@@ -239,6 +240,57 @@ pub fn slots(results: &Results) -> Table {
         ],
         rows,
         note: "Pressure: mean behind the slot, against still outside air at its height.".into(),
+    }
+}
+
+/// Areas and losses of the slots; nothing where no vent covers one.
+pub fn vents(results: &Results) -> Table {
+    let slots = &results.told.slots;
+    if slots.iter().all(|s| s.vent.is_none()) {
+        return Table::default();
+    }
+    let row = |s: &crate::output::told::ToldSlot| {
+        vec![
+            s.name.clone(),
+            s.vent.clone().unwrap_or_else(|| "loss as given".into()),
+            perhaps(s.area_m2.map(|a| 1e4 * a), 1),
+            perhaps(s.free_area_m2.map(|a| 1e4 * a), 1),
+            of_size(s.speed_m_s, 3),
+            perhaps(s.loss, 2),
+            perhaps(s.reynolds, 0),
+        ]
+    };
+    Table {
+        header: vec!["Slot", "Vent", "Gross, cm²", "Free, cm²", "Speed, m/s", "Loss K", "Reynolds"],
+        rows: slots.iter().map(row).collect(),
+        note: "Speed: mean through the gross area, to which K refers. Reynolds number: of the \
+               vent's gaps, holes or wires; of the slot where a loss is given."
+            .into(),
+    }
+}
+
+/// Where fans work.
+pub fn fans(results: &Results) -> Table {
+    let row = |f: &crate::output::told::ToldFan| {
+        let point = [f.speed, f.flow_m3_s, f.pressure_pa];
+        let cells = fans::cells(point, [f.free_delivery_m3_s, f.free_delivery_share]);
+        let place = format!("{}, {}", f.slot, f.direction);
+        [f.name.clone(), place].into_iter().chain(cells).collect()
+    };
+    Table {
+        header: vec![
+            "Fan",
+            "Slot, direction",
+            "Speed, %",
+            "Flow, m³/h",
+            "Pressure, Pa",
+            "Free, m³/h",
+            "Of it, %",
+        ],
+        rows: results.told.fans.iter().map(row).collect(),
+        note: "The operating point on the curve at this speed and density of the air. Free: the \
+               flow without any pressure rise."
+            .into(),
     }
 }
 

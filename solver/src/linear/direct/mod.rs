@@ -49,8 +49,8 @@ pub(crate) struct Factors {
 
 impl Order {
     /// For the triplets of `matrix` (its values do not matter), unknown n lying in the cell
-    /// `cells[n]` (column, row) of the grid. Unknowns that share an entry must lie in neighbouring
-    /// cells at most.
+    /// `cells[n]` (column, row) of the grid. Unknowns that share an entry should lie in neighbouring
+    /// cells; the few that do not (the faces of a fan's slot) make larger fronts.
     pub fn new(cells: &[(u32, u32)], matrix: &TriMat<f64>) -> Order {
         let (rows, columns) = (matrix.row_inds(), matrix.col_inds());
         let dissection = Dissection::new(cells, rows, columns);

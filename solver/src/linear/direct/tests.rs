@@ -50,8 +50,15 @@ fn system(nx: u32, ny: u32, scale: f64) -> (Vec<(u32, u32)>, TriMat<f64>) {
 /// right side where rows differ so much in size that two sound eliminations differ too.
 #[test]
 fn factors_solve_what_a_dense_elimination_solves() {
-    for (nx, ny, scale) in [(1, 1, 1.0), (2, 7, 1.0), (9, 9, 1e-6), (17, 12, 1.0), (8, 30, 1e5)] {
-        let (cells, matrix) = system(nx, ny, scale);
+    let grids = [(1, 1, 1.0), (2, 7, 1.0), (9, 9, 1e-6), (17, 12, 1.0), (8, 30, 1e5)];
+    for ((nx, ny, scale), with_fan) in grids.into_iter().flat_map(|g| [(g, false), (g, true)]) {
+        let (cells, mut matrix) = system(nx, ny, scale);
+        if with_fan {
+            // The velocities of the first row all depend on each other, like those of a fan's slot.
+            for (a, b) in (0..nx).flat_map(|a| (0..nx).map(move |b| (a as usize, b as usize))) {
+                matrix.add_triplet(3 * a + 1, 3 * b + 1, 0.4);
+            }
+        }
         let n = cells.len();
         let mut dense = Mat::<f64>::zeros(n, n);
         matrix.triplet_iter().for_each(|(v, (r, c))| dense[(r, c)] += v);
