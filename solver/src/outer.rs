@@ -174,7 +174,8 @@ impl Outer {
                 mean = sum / area;
                 let before = h;
                 (h, stiffening) = film(problem, side, &outside, mean);
-                if !((h - before).abs() > BOUND * h) {
+                let change = (h - before).abs();
+                if change.is_nan() || change <= BOUND * h {
                     break;
                 }
             }
@@ -304,7 +305,7 @@ impl Face {
             let next = (surface - excess / slope).max(1.0);
             let change = (next - surface).abs();
             surface = next;
-            if !(change > BOUND * surface) {
+            if change.is_nan() || change <= BOUND * surface {
                 break;
             }
         }
