@@ -46,6 +46,7 @@ fn lump(points: &[[f64; 2]]) -> Problem {
         slots: Vec::new(),
         sides,
         parts: vec![vec![0]],
+        fans: Vec::new(),
         joints: Vec::new(),
         sources: None,
         radiation: None,

@@ -52,6 +52,7 @@ fn plate(side: Side, outside: Outside, heat: f64) -> Problem {
         slots: Vec::new(),
         sides,
         parts: vec![vec![0]],
+        fans: Vec::new(),
         joints: Vec::new(),
         sources: None,
         radiation: None,
