@@ -13,7 +13,7 @@ use ventrise_solver::{
 
 /// Every example with its hottest part, that part's rise [K] and the air drawn in [m³/h] on the
 /// example's own mesh, as its comments state them (0: no air passes).
-const EXAMPLES: [(&str, &str, f64, f64); 11] = [
+const EXAMPLES: [(&str, &str, f64, f64); 12] = [
     ("battery-locker", "pack", 24.6, 2.94),
     ("bench-supplies", "highest sink", 26.6, 3.87),
     ("dry-transformer", "inner winding", 41.3, 1.28),

@@ -62,6 +62,7 @@ fn nusselt(row: &Row, cells: usize) -> ([f64; 2], [f64; 2], f64) {
             SideCondition::Adiabatic,
         ],
         parts: Vec::new(),
+        fans: Vec::new(),
         joints: Vec::new(),
         sources: None,
         heat_laws: Vec::new(),
