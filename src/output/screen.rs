@@ -225,8 +225,11 @@ fn heat(out: &mut dyn Write, summary: &Summary) -> io::Result<()> {
         }
     }
     if summary.parts.iter().any(|p| p.radiated_w.is_some()) {
-        let radiated = sized(summary.heat_paths_w.radiation, 2, scale);
-        writeln!(out, "  {:22}{radiated:>10}", "radiated, openings")?;
+        // A closed box has no opening to radiate through.
+        if summary.heat_paths_w.radiation != 0.0 {
+            let radiated = sized(summary.heat_paths_w.radiation, 2, scale);
+            writeln!(out, "  {:22}{radiated:>10}", "radiated, openings")?;
+        }
         for part in &summary.parts {
             if let Some(heat) = part.radiated_w {
                 let what = format!("of \"{}\" radiated", part.name);
