@@ -119,6 +119,13 @@ impl Results {
         Results::new(&texts, fields)
     }
 
+    /// Heat that all blocks release at the result [W].
+    pub fn heat(&self) -> f64 {
+        let parts = self.told.parts.iter().zip(self.case.parts());
+        let follows: f64 = parts.map(|(told, part)| told.heat_w - part.heat).sum();
+        self.case.heat() + follows
+    }
+
     /// Ambient temperature [°C].
     pub fn ambient(&self) -> f64 {
         celsius(self.case.ambient().temperature)

@@ -6,7 +6,7 @@ use crate::output::results::Results;
 use crate::output::told::{ToldPart, ToldRunaway};
 use crate::output::words::fixed;
 
-use super::rows::number;
+use crate::case::units::rounded;
 
 /// An answer.
 #[derive(Debug, Clone, PartialEq, Serialize)]
@@ -21,7 +21,7 @@ pub struct Answer {
 
 /// What was asked.
 pub fn question(results: &Results) -> String {
-    let (ambient, heat) = (fixed(results.ambient(), 1), number(results.case.heat()));
+    let (ambient, heat) = (fixed(results.ambient(), 1), rounded(results.heat(), 4));
     if results.told.parts.iter().any(|p| p.limit_c.is_some()) {
         format!(
             "Does every part stay below its limit at an ambient of {ambient} °C with {heat} W \

@@ -17,6 +17,7 @@ use super::readings::{Readings, Run};
 use super::results::{Results, ResultsError, Texts};
 use super::summary::Summary;
 use super::words::{fixed, mm};
+use crate::case::units::rounded;
 
 /// The picture that stands beside the margins.
 const FIRST: &str = "margins.svg";
@@ -133,7 +134,7 @@ fn facts(results: &Results) -> Vec<[String; 2]> {
     };
     vec![
         ["Ambient".into(), format!("{} °C, {place}", fixed(results.ambient(), 1))],
-        ["Heat released".into(), format!("{} W", rows::number(case.heat()))],
+        ["Heat released".into(), format!("{} W", rounded(results.heat(), 4))],
         size,
         ["Verdict".into(), told.verdict.clone()],
     ]

@@ -90,7 +90,7 @@ pub fn margins(results: &Results) -> Table {
             judged.into(),
         ];
         let junction = junctions.then(|| perhaps(p.junction_c, 1));
-        let start = [p.name.clone(), number(p.heat_w)].into_iter().chain(radiated);
+        let start = [p.name.clone(), rounded(p.heat_w, 4)].into_iter().chain(radiated);
         start.chain([max]).chain(junction).chain(numbers).collect()
     };
     let radiated = radiates.then_some("Radiated, W");
