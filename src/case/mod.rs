@@ -16,6 +16,7 @@ pub mod judgement;
 mod keys;
 pub mod materials;
 mod meshing;
+mod mistakes;
 mod model;
 mod outside;
 mod overlap;
